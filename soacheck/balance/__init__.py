@@ -1,0 +1,1 @@
+"""Heat made against heat removed: the operating temperatures of a duty."""

@@ -1,0 +1,1 @@
+"""One power transistor: its ratings and thermal data, as its maker's sheet gives them."""

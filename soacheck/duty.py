@@ -1,0 +1,83 @@
+"""Duty: all that a load kind returns about one operating situation of a stage.
+
+A load kind turns its parameters into duties; everything after it (balance, limits, pictures) knows duties only.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field
+from typing import Literal
+
+from soacheck.device.ratings import Device
+from soacheck.locus import Locus
+from soacheck.table import Missing
+from soacheck.trace import FloatArray, Traced, frozen
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Members:
+    """Alternatives inside one duty (held points, levels): each limit takes its own worst.
+
+    value: (1 or case, member) in SI, or (1, 1) zero when the duty is a single situation.
+    """
+
+    name: str = ""  # "level", "V_CE", "V_out"; empty when there is only one
+    unit: str = ""
+    value: FloatArray = field(default_factory=lambda: frozen([[0.0]]))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Drive:
+    """What the base or gate gets in this duty, as far as it is stated (magnitudes)."""
+
+    V_off: Traced | None = None  # reverse base-emitter or gate-source voltage while off [V]
+    V_on: Traced | None = None  # gate-source voltage while on [V]
+    I_B: Traced | None = None  # base current while on [A]
+    I_on: Traced | None = None  # current that this drive must carry in saturation / on [A], per device
+    saturates: bool = False  # the duty relies on saturation (on-state) being reached
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Fitted:
+    """The device as it sits in the circuit: which half, how many share the current, how unevenly.
+
+    share is the worst device's part of the total current, 1/count when it is even or stated so. share_missing is
+    set when more than one device shares and nothing says how evenly: current-dependent findings are then unproven.
+    """
+
+    device: Device
+    half: str | None = None  # push-pull with a complement: "upper" / "lower"
+    count: int = 1  # devices in parallel
+    share: Traced
+    share_missing: Missing | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Duty:
+    """One operating situation of a stage, for the worst of its parallel devices.
+
+    locus: function of the junction temperature (case, member) [K], or None while unknown; gives the Locus.
+    heat_ratio: dissipation of all devices of the stage over this device's, (1 or case, 1 or member). [1]
+    facts: traced values of the duty for the sheet, the governing formula first.
+    unknown: what the load kind lacked; findings that need the locus are then unproven.
+    after: name of the duty whose temperatures a one-shot duty starts from; None: the hottest steady duty.
+    T_start: junction temperature just before a one-shot duty, where the user states it.
+    listed: False for a duty that only carries findings (`any-level`) and has no row of its own.
+    """
+
+    name: str
+    half: str | None = None
+    members: Members = field(default_factory=Members)
+    locus: Callable[[FloatArray | None], Locus] | None
+    heat_ratio: FloatArray
+    facts: tuple[Traced, ...] = ()
+    unknown: tuple[Missing, ...] = ()
+    after: str | None = None
+    T_start: Traced | None = None
+    drive: Drive | None = None
+    termination: Literal["open", "resistor", "reverse"] = "open"  # what the base sees while only leakage flows
+    R_BE: Traced | None = None  # with termination "resistor" [ohm]
+    I_B_peak: Traced | None = None  # base current at the current peak, where the kind knows it better than I/h_FE
+    listed: bool = True
+    temperature_follows: bool = False  # whether locus depends on its temperature argument

@@ -1,0 +1,53 @@
+"""What can go wrong that is not a fault in soacheck itself.
+
+Every exception that the program raises on purpose is a `SoacheckError`; anything else is a bug and keeps its
+traceback.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+
+class SoacheckError(Exception):
+    """Base of all errors that soacheck raises on purpose."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Problem:
+    """One thing wrong with an input: where it stands, as it was written, and what would be right."""
+
+    problem: str  # what is wrong, one sentence without a full stop
+    remedy: str  # a line that would be right, or what to do
+    file: str = ""  # path as the user gave it; empty when the value came from the command line or the library
+    line: int | None = None  # 1-based
+    key: str = ""  # dotted path as in the file, `max.P_tot`
+    value: str = ""  # the value as written
+
+    def __str__(self) -> str:
+        place = self.file + (f":{self.line}" if self.line is not None else "")
+        what = self.key + (f" = {self.value}" if self.value else "")
+        head = ": ".join(part for part in (place, what) if part)
+        body = f"  problem: {self.problem}\n  remedy:  {self.remedy}"
+        return f"{head}\n{body}" if head else body
+
+
+class InputError(SoacheckError):
+    """The input cannot be used. Holds every problem that was found, in the order of the file."""
+
+    def __init__(self, *problems: Problem) -> None:
+        super().__init__("\n".join(str(problem) for problem in problems))
+        self.problems = problems
+
+
+class QuantityError(SoacheckError, ValueError):
+    """A text or object is not a physical quantity of the kind that is wanted."""
+
+    def __init__(self, problem: str, remedy: str) -> None:
+        super().__init__(f"{problem}; {remedy}")
+        self.problem = problem
+        self.remedy = remedy
+
+
+class OutputError(SoacheckError):
+    """A result could not be written."""

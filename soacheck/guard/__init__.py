@@ -1,0 +1,1 @@
+"""Checks for known mistakes of use, one module per family."""

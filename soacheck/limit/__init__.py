@@ -1,0 +1,1 @@
+"""Limits: one module per limit, data in, findings out."""

@@ -1,0 +1,194 @@
+"""Findings and results: what `check` returns and the only thing that pictures, sheets and JSON are made of."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from enum import IntEnum
+
+import numpy as np
+
+from soacheck.table import Missing
+from soacheck.trace import BoolArray, FloatArray, IntArray, Traced
+
+
+class Status(IntEnum):
+    """The order in which a worst status is taken."""
+
+    WITHIN = 0
+    MARGINAL = 1
+    UNPROVEN = 2
+    EXCEEDS = 3
+
+    @property
+    def word(self) -> str:
+        return self.name.lower()
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Reason:
+    """A sentence about a finding and the cases it is true of. `applies` (1 or case,)."""
+
+    text: str
+    applies: BoolArray
+    missing: tuple[Missing, ...] = ()
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Where:
+    """The point that touches the limit, each (case,), NaN where it does not exist. region: code of device.laws, -1 none."""
+
+    t: FloatArray
+    v: FloatArray
+    i: FloatArray
+    region: IntArray
+    member: FloatArray  # value of the duty's member (level, V_CE, ...), NaN when the duty is a single situation
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Finding:
+    """One limit checked for one duty.
+
+    applied, allowed: traced, (case,), None when unknown. utilisation (case,): applied/allowed; NaN when it has no
+    number (allowance 0, or not known). status (case,): codes of Status.
+    member_name: name of what `where.member` is ("level", "V_CE"); empty when there is none.
+    """
+
+    limit: str
+    duty: str
+    half: str | None = None
+    applied: Traced | None = None
+    allowed: Traced | None = None
+    unit: str = "1"
+    utilisation: FloatArray
+    status: IntArray
+    where: Where
+    member_name: str = ""
+    basis: str  # the rule in one line, with its formula in symbols
+    reasons: tuple[Reason, ...] = ()
+    trace: tuple[Traced, ...] = ()  # what an engineer needs to redo it, besides applied and allowed
+
+    def missing(self, case: int) -> tuple[str, ...]:
+        """Dotted paths of what this case lacks, without repetition."""
+        keys: dict[str, None] = {}
+        for reason in self.reasons:
+            if reason.applies[case if reason.applies.size > 1 else 0]:
+                keys.update(dict.fromkeys(item.key for item in reason.missing))
+        return tuple(keys)
+
+
+def status_of(utilisation: FloatArray, marginal_from: FloatArray) -> IntArray:
+    """Status by utilisation alone; what is not a number is unproven. Shapes (case,), broadcasting."""
+    u, m = np.broadcast_arrays(np.asarray(utilisation, dtype=np.float64), np.asarray(marginal_from, dtype=np.float64))
+    status = np.full(u.shape, int(Status.UNPROVEN), dtype=np.int64)
+    status[u > 1] = int(Status.EXCEEDS)
+    status[u <= 1] = int(Status.MARGINAL)
+    status[u <= np.minimum(m, 1.0)] = int(Status.WITHIN)
+    return status
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Series:
+    """What pictures draw of one duty, for one case: arrays over (member or time,), SI, kelvin."""
+
+    t: FloatArray
+    v: FloatArray
+    i: FloatArray
+    region: IntArray
+    T_j: FloatArray  # NaN where unknown
+    T_case: FloatArray
+    T_heatsink: FloatArray
+    use: str  # held, once, repeated
+    turn_off: BoolArray
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class DutyResult:
+    """One duty's figures, each traced (case,), None when unknown. Temperatures in kelvin, unit "degC"."""
+
+    name: str
+    half: str | None
+    P_mean: Traced | None = None
+    P_peak: Traced | None = None
+    V_peak: Traced | None = None
+    I_peak: Traced | None = None
+    I_mean: Traced | None = None
+    I_rms: Traced | None = None
+    I_B_peak: Traced | None = None
+    T_j_peak: Traced | None = None
+    T_j_mean: Traced | None = None
+    T_case: Traced | None = None
+    T_heatsink: Traced | None = None
+    R_th_total: Traced | None = None
+    facts: tuple[Traced, ...] = ()
+    series: Series | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Caution:
+    id: str
+    text: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class StageFacts:
+    title: str
+    file: str
+    sha256: str
+    revision: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DeviceFacts:
+    name: str
+    file: str
+    sha256: str
+    ratings_from: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class SafeAreaPicture:
+    """For the safe-area picture of one half: printed and scaled curves of the governing duty, V and A.
+
+    curves: (label, printed (n, 2), scaled (m, 2)); lines: named rating lines (label, value).
+    """
+
+    half: str | None
+    duty: str
+    T_ref: float
+    T: float
+    curves: tuple[tuple[str, FloatArray, FloatArray], ...]
+    V_max: float
+    I_max: float
+    I_peak: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Characteristics:
+    """For the `line` picture: output characteristics (label, v (n,), i (n,)) for a few base currents or gate drives."""
+
+    half: str | None
+    curves: tuple[tuple[str, FloatArray, FloatArray], ...] = ()
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Result:
+    """The answer to one stage, decided: every array has a case axis of length 1.
+
+    `spread` says whether the stage states uncertainties; without any the verdict line says "nominal values only".
+    nominal: utilisation of each finding at nominal values, in the order of `findings`, NaN when there is none.
+    """
+
+    stage: StageFacts
+    device: DeviceFacts
+    complement: DeviceFacts | None = None
+    verdict: Status
+    duties: tuple[DutyResult, ...]
+    findings: tuple[Finding, ...]  # by status, then utilisation, worst first
+    nominal: tuple[float, ...]
+    spread: bool
+    not_analysed: tuple[str, ...] = ()
+    assumptions: tuple[str, ...] = ()
+    cautions: tuple[Caution, ...] = ()
+    inputs: tuple[Traced, ...] = ()  # every stated input, for the sheet
+    safe_area: tuple[SafeAreaPicture, ...] = ()
+    characteristics: tuple[Characteristics, ...] = field(default=())

@@ -1,0 +1,1 @@
+"""Renderings of a result; nothing is computed here."""
