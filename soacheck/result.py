@@ -8,7 +8,7 @@ from enum import IntEnum
 import numpy as np
 
 from soacheck.table import Missing
-from soacheck.trace import BoolArray, FloatArray, IntArray, Traced
+from soacheck.trace import BoolArray, FloatArray, IntArray, Traced, frozen
 
 
 class Status(IntEnum):
@@ -88,7 +88,12 @@ def status_of(utilisation: FloatArray, marginal_from: FloatArray) -> IntArray:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Series:
-    """What pictures draw of one duty, for one case: arrays over (member or time,), SI, kelvin."""
+    """What pictures draw of one duty, for one case: arrays over (member or time,), SI, kelvin.
+
+    P_allowed: mean dissipation allowed at the case temperature of each held point, as the rules derate it, (member,);
+    empty for duties over time, where the finding `dissipation` holds the one figure.
+    T_air: air at the sink, (1,) or over the points, empty where unknown.
+    """
 
     t: FloatArray
     v: FloatArray
@@ -99,6 +104,28 @@ class Series:
     T_heatsink: FloatArray
     use: str  # held, once, repeated
     turn_off: BoolArray
+    P_allowed: FloatArray = field(default_factory=lambda: frozen([]))
+    T_air: FloatArray = field(default_factory=lambda: frozen([]))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Sweep:
+    """A duty whose members are judged one by one (`any-level`), for one case: figures over the member, SI, kelvin.
+
+    x (member,): what the members are, rising; the others (member,) with NaN where unknown, empty where never known.
+    """
+
+    duty: str
+    half: str | None
+    name: str  # "level", as in Finding.member_name
+    unit: str
+    x: FloatArray
+    P_mean: FloatArray
+    P_allowed: FloatArray = field(default_factory=lambda: frozen([]))
+    T_j_peak: FloatArray = field(default_factory=lambda: frozen([]))
+    T_case: FloatArray = field(default_factory=lambda: frozen([]))
+    T_heatsink: FloatArray = field(default_factory=lambda: frozen([]))
+    T_air: FloatArray = field(default_factory=lambda: frozen([]))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -143,13 +170,17 @@ class DeviceFacts:
     file: str
     sha256: str
     ratings_from: str
+    kind: str = ""  # "npn", "n-mosfet", ...: decides the words for regions and the symbols of the axes
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class SafeAreaPicture:
     """For the safe-area picture of one half: printed and scaled curves of the governing duty, V and A.
 
-    curves: (label, printed (n, 2), scaled (m, 2)); lines: named rating lines (label, value).
+    curves: (label, printed (n, 2), scaled (m, 2)); a scaled curve of shape (0, 2) allows nothing at this temperature.
+    V_max, I_max, I_peak: the ratings themselves, NaN where the device states none.
+    v, i: locus of the governing finding where no listed duty has it (`any-level`), empty otherwise.
+    factor: what the rules leave of the safe area; it is in `scaled` already.
     """
 
     half: str | None
@@ -160,6 +191,9 @@ class SafeAreaPicture:
     V_max: float
     I_max: float
     I_peak: float
+    v: FloatArray = field(default_factory=lambda: frozen([]))
+    i: FloatArray = field(default_factory=lambda: frozen([]))
+    factor: float = 1.0
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -192,3 +226,4 @@ class Result:
     inputs: tuple[Traced, ...] = ()  # every stated input, for the sheet
     safe_area: tuple[SafeAreaPicture, ...] = ()
     characteristics: tuple[Characteristics, ...] = field(default=())
+    sweeps: tuple[Sweep, ...] = ()
