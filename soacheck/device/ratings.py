@@ -1,4 +1,4 @@
-"""The device as frozen data. Symbols follow the file: a MOSFET's `V_max` has the symbol V_DSS, an IGBT's V_CES."""
+"""The device as frozen data. Symbols follow the file: `V_max` of a MOSFET is V_DSS, of an IGBT V_CES."""
 
 from __future__ import annotations
 
@@ -69,8 +69,9 @@ class MaxRatings:
 class ThermalData:
     """Junction-to-case thermal data. `form` says which of the three forms of Z_th_jc was written, if any.
 
-    pulse, value: (n,) s and K/W of a single-pulse curve.  foster, cauer: (n, 2) R [K/W] and tau [s], or R and C [J/K].
-    R_th_jc is always there after reading when the sheet gives it or P_tot: see `R_th_jc_derived`.
+    pulse, value: (n,) s and K/W of a single-pulse curve.  foster, cauer: (n, 2) R [K/W] and tau [s], or R
+    and C [J/K]. R_th_jc is always there after reading when the sheet gives it or P_tot: see
+    `R_th_jc_derived`.
     """
 
     R_th_jc: Traced | None
@@ -121,7 +122,7 @@ class SafeAreaDerating:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Typical:
-    """Characteristics. Tempcos in V/K. Where the file is silent a field is None; no common-practice value hides here."""
+    """Characteristics; tempcos in V/K. A field is None where the file is silent: nothing is assumed here."""
 
     h_FE: Triple | None = None
     h_FE_I_C: Traced | None = None
