@@ -9,6 +9,12 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 
+def plain(text: str, most: int = 60) -> str:
+    """User text for a message: control characters and other invisible signs escaped, at most `most` characters."""
+    cut = text if len(text) <= most else text[: most - 3] + "..."
+    return "".join(ch if ch.isprintable() else ch.encode("unicode_escape").decode("ascii") for ch in cut)
+
+
 class SoacheckError(Exception):
     """Base of all errors that soacheck raises on purpose."""
 
@@ -23,13 +29,21 @@ class Problem:
     line: int | None = None  # 1-based
     key: str = ""  # dotted path as in the file, `max.P_tot`
     value: str = ""  # the value as written
+    column: int | None = None  # 1-based, of a syntax error
 
     def __str__(self) -> str:
-        place = self.file + (f":{self.line}" if self.line is not None else "")
-        what = self.key + (f" = {self.value}" if self.value else "")
+        place = plain(self.file, 4096)
+        for number in (self.line, self.column):
+            place += f":{number}" if number is not None else ""
+        what = plain(self.key, 200) + (f" = {plain(self.value, 200)}" if self.value else "")
         head = ": ".join(part for part in (place, what) if part)
-        body = f"  problem: {self.problem}\n  remedy:  {self.remedy}"
+        body = f"  problem: {_lines(self.problem)}\n  remedy:  {_lines(self.remedy)}"
         return f"{head}\n{body}" if head else body
+
+
+def _lines(text: str) -> str:
+    """Several lines stay several lines, set under the first; nothing else in them reaches a terminal unescaped."""
+    return "\n           ".join(plain(line, 2000) for line in text.split("\n"))
 
 
 class InputError(SoacheckError):
@@ -43,10 +57,11 @@ class InputError(SoacheckError):
 class QuantityError(SoacheckError, ValueError):
     """A text or object is not a physical quantity of the kind that is wanted."""
 
-    def __init__(self, problem: str, remedy: str) -> None:
+    def __init__(self, problem: str, remedy: str, instead: str = "") -> None:
         super().__init__(f"{problem}; {remedy}")
         self.problem = problem
         self.remedy = remedy
+        self.instead = instead  # a text that would be read, "150 W"; empty when none can be offered
 
 
 class OutputError(SoacheckError):
