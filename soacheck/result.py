@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from enum import IntEnum
 
 import numpy as np
@@ -74,6 +74,42 @@ class Finding:
             if reason.applies[case if reason.applies.size > 1 else 0]:
                 keys.update(dict.fromkeys(item.key for item in reason.missing))
         return tuple(keys)
+
+
+    def at(self, case: int) -> Finding:
+        """The same finding for one case, every array with a case axis of length 1."""
+        memo: dict[int, Traced] = {}
+
+        def one(value: Traced | None) -> Traced | None:
+            return None if value is None else one_case(value, case, memo)
+
+        def pick(array: FloatArray) -> FloatArray:
+            return np.asarray([array[case if array.size > 1 else 0]])
+
+        where = Where(
+            t=pick(self.where.t), v=pick(self.where.v), i=pick(self.where.i), member=pick(self.where.member),
+            region=np.asarray([self.where.region[case if self.where.region.size > 1 else 0]]),
+        )  # fmt: skip
+        holds = tuple(
+            replace(reason, applies=np.asarray([True]))
+            for reason in self.reasons
+            if reason.applies[case if reason.applies.size > 1 else 0]
+        )
+        return replace(
+            self, applied=one(self.applied), allowed=one(self.allowed), utilisation=pick(self.utilisation),
+            status=np.asarray([self.status[case if self.status.size > 1 else 0]]), where=where, reasons=holds,
+            trace=tuple(one_case(value, case, memo) for value in self.trace),
+        )  # fmt: skip
+
+
+def one_case(value: Traced, case: int, memo: dict[int, Traced]) -> Traced:
+    """A traced value and all it rests on, for one case; `memo` keeps shared inputs shared."""
+    for node in value.walk():
+        if id(node) not in memo:
+            memo[id(node)] = replace(
+                node, value=np.asarray([node.at(case)]), inputs=tuple(memo[id(child)] for child in node.inputs)
+            )
+    return memo[id(value)]
 
 
 def status_of(utilisation: FloatArray, marginal_from: FloatArray) -> IntArray:

@@ -40,6 +40,10 @@ class LoadKind(Protocol):
         """How many devices share one current (push-pull: pairs)."""
         ...
 
+    def halves(self, load: Any) -> int:
+        """2 for a kind whose circuit has a complementary half, else 1."""
+        ...
+
     def not_analysed(self, load: Any) -> tuple[str, ...]:
         """What this kind leaves out because the file does not state it, by name: "shorted output (no I_limit)"."""
         ...

@@ -1,0 +1,293 @@
+"""The main job: every duty of a stage against every limit."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterable
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from soacheck.balance.chain import chain, hottest
+from soacheck.balance.operating import Operating, before_of, needs_sink_bound, settle
+from soacheck.balance.place import Place, place_of
+from soacheck.device import laws
+from soacheck.device.ratings import Device
+from soacheck.duty import Duty, Fitted
+from soacheck.guard import GUARDS, Raised, Seen
+from soacheck.limit import LIMITS, safe_area
+from soacheck.limit.judged import Judged
+from soacheck.locus import Use
+from soacheck.result import (
+    Caution,
+    Characteristics,
+    DeviceFacts,
+    DutyResult,
+    Finding,
+    Reason,
+    Result,
+    SafeAreaPicture,
+    Series,
+    StageFacts,
+    Status,
+)
+from soacheck.stage import Stage
+from soacheck.table import CasePlan, Missing
+from soacheck.trace import FloatArray, Traced, derived
+
+BLOCK = 16  # cases worked out together; fixed, so that the answer does not depend on anything else
+
+# Limits of the contract that this version does not decide.
+NOT_DECIDED = (
+    "runaway (dissipation that grows with temperature; figures are at the stated characteristics)",
+    "avalanche",
+    "touch-temperature",
+    "insulation",
+)
+SINK_CAPACITY = Missing(key="heat_path.heatsink.C_th", where="mass of the sink times its specific heat; a long shot warms it")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Sitting:
+    """One half of a stage worked out for some cases."""
+
+    fitted: Fitted
+    place: Place
+    judged: tuple[Judged, ...]
+    findings: tuple[Finding, ...]
+
+
+def check(stage: Stage) -> Result:
+    """The answer to one stage, decided on the worst corner of the uncertainties that the stage file states."""
+    plan = CasePlan.corners(stage.spreads) if stage.spreads else CasePlan()
+    worst: list[Finding] = []
+    cases: list[int] = []
+    nominal: list[float] = []
+    for start in range(0, plan.count, BLOCK):
+        part = plan.block(start, min(start + BLOCK, plan.count))
+        findings = [f for sitting in evaluate(stage.over(part)) for f in sitting.findings]
+        if start == 0:
+            nominal = [float(f.utilisation[0]) for f in findings]
+        for k, finding in enumerate(findings):
+            case = worst_case(finding, part.count)
+            one = finding.at(case)
+            if start == 0:
+                worst.append(one)
+                cases.append(case)
+            elif _badness(one) > _badness(worst[k]):
+                worst[k], cases[k] = one, start + case
+    return _decide(stage, plan, worst, cases, nominal)
+
+
+def evaluate(stage: Stage) -> tuple[Sitting, ...]:
+    """Every half, duty and limit of a stage, for all cases of its plan at once."""
+    return tuple(_sit(stage, half.fitted, place_of(half.fitted.device, half.ladder, stage.heat_path, stage.devices))
+                 for half in stage.halves)  # fmt: skip
+
+
+def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
+    cases = stage.plan.count
+    duties = stage.kind.duties(stage.load, fitted)
+    settled = _settle_all(duties, place, cases)
+    judged, findings = [], []
+    for duty in duties:
+        operating, lower = settled[id(duty)]
+        asked = Judged(device=fitted.device, fitted=fitted, duty=duty, operating=operating, rules=stage.rules, cases=cases)
+        judged.append(asked)
+        of_duty = [f for limit in LIMITS for f in limit(asked)]
+        if lower is not None:
+            again = [f for limit in LIMITS for f in limit(replace(asked, operating=lower))]
+            of_duty = [_either(upper, low) for upper, low in zip(of_duty, again, strict=True)]
+        findings += of_duty
+    return Sitting(fitted=fitted, place=place, judged=tuple(judged), findings=tuple(findings))
+
+
+def _settle_all(duties: Iterable[Duty], place: Place, cases: int) -> dict[int, tuple[Operating, Operating | None]]:
+    """Steady duties first, then the shots that start from them; a shot that outlasts a sink of unknown heat capacity gets
+    its upper and its lower bound."""
+    settled: dict[int, tuple[Operating, Operating | None]] = {}
+    shots = []
+    for duty in duties:
+        if duty.locus is not None and duty.locus(None).use is Use.ONCE:
+            shots.append(duty)
+        else:
+            settled[id(duty)] = settle(duty, place, cases), None
+    steady = [operating for operating, _ in settled.values()]
+    for duty in shots:
+        wanted = [op for op in steady if duty.after is None or op.duty.name == duty.after]
+        before = before_of(wanted)
+        held = settle(duty, place, cases, before=before)
+        if needs_sink_bound(duty, place):
+            settled[id(duty)] = settle(duty, place, cases, before=before, sink_follows=True), held
+        else:
+            settled[id(duty)] = held, None
+    return settled
+
+
+def _either(upper: Finding, lower: Finding) -> Finding:
+    """A finding between two bounds: the upper one decides `within`, `exceeds` needs the lower one too."""
+    open_ = (upper.status == Status.EXCEEDS) & (lower.status != Status.EXCEEDS)
+    if not bool(np.any(open_)):
+        return upper
+    reason = Reason(
+        text="The shot warms a sink whose heat capacity is not stated: held at its start it would do, following at once it would not.",
+        applies=open_, missing=(SINK_CAPACITY,),
+    )  # fmt: skip
+    return replace(upper, status=np.where(open_, int(Status.UNPROVEN), upper.status), reasons=(*upper.reasons, reason))
+
+
+def _badness(finding: Finding) -> tuple[int, float]:
+    """Order of findings: by status, then utilisation; an excess without a number comes first."""
+    status, u = int(finding.status[0]), float(finding.utilisation[0])
+    if math.isnan(u):
+        return status, math.inf if status == Status.EXCEEDS else -math.inf
+    return status, u
+
+
+def worst_case(finding: Finding, cases: int) -> int:
+    """The case that decides a finding."""
+    u = np.broadcast_to(finding.utilisation, (cases,))
+    status = np.broadcast_to(finding.status, (cases,))
+    empty = np.where(status == int(Status.EXCEEDS), np.inf, -np.inf)
+    order = np.lexsort((np.where(np.isnan(u), empty, u), status))
+    top = order[-1]
+    same = (status == status[top]) & ((u == u[top]) | (np.isnan(u) & np.isnan(u[top])))
+    return int(np.argmax(same))
+
+
+def _decide(stage: Stage, plan: CasePlan, worst: list[Finding], cases: list[int], nominal: list[float]) -> Result:
+    """Guards, order, verdict; duties and pictures at the case that governs."""
+    first = max(range(len(worst)), key=lambda k: (*_badness(worst[k]), -k)) if worst else None
+    governing = cases[first] if first is not None else 0
+    sittings = evaluate(stage.over(plan.block(governing, governing + 1)))
+    cautions: list[Caution] = [
+        Caution(id=i, text=t) for half in stage.halves for i, t in half.fitted.device.cautions
+    ] + [Caution(id=i, text=t) for i, t in stage.document.cautions]
+    decided: list[Finding] = []
+    position = 0
+    for sitting in sittings:
+        own = worst[position : position + len(sitting.findings)]
+        position += len(sitting.findings)
+        seen = Seen(place=sitting.place, judged=sitting.judged, findings=tuple(own))
+        raised = [r for guard in GUARDS for r in guard(seen)]
+        cautions += [Caution(id=r.id, text=r.text) for r in raised]
+        decided += [_lowered(finding, raised) for finding in own]
+    order = sorted(range(len(decided)), key=lambda k: _badness(decided[k]), reverse=True)
+    verdict = Status(max((int(f.status[0]) for f in decided), default=int(Status.UNPROVEN)))
+    return Result(
+        stage=StageFacts(title=stage.title, file=stage.file, sha256=stage.sha256, revision=stage.revision),
+        device=_facts(stage.halves[0].fitted.device),
+        complement=_facts(stage.halves[1].fitted.device) if len(stage.halves) > 1 else None,
+        verdict=verdict,
+        duties=tuple(_duty_result(s, j) for s in sittings for j in s.judged if j.duty.listed),
+        findings=tuple(decided[k] for k in order),
+        nominal=tuple(nominal[k] for k in order),
+        spread=bool(stage.spreads),
+        not_analysed=_not_analysed(stage),
+        assumptions=_assumptions(stage, plan, governing),
+        cautions=tuple(dict.fromkeys(cautions)),
+        inputs=(*stage.document.stated(),),
+        safe_area=_pictures(sittings),
+        characteristics=tuple(_characteristics(s) for s in sittings),
+    )  # fmt: skip
+
+
+def _lowered(finding: Finding, raised: list[Raised]) -> Finding:
+    for guard in raised:
+        if finding.limit in guard.lowers and finding.status[0] < Status.UNPROVEN:
+            reason = Reason(text=guard.text, applies=np.asarray([True]), missing=guard.missing)
+            finding = replace(finding, status=np.asarray([int(Status.UNPROVEN)]), reasons=(*finding.reasons, reason))
+    return finding
+
+
+def _facts(device: Device) -> DeviceFacts:
+    return DeviceFacts(name=device.name, file=device.file, sha256=device.sha256, ratings_from=device.ratings_from)
+
+
+def _duty_result(sitting: Sitting, judged: Judged) -> DutyResult:
+    figures = chain(judged.operating, sitting.place)
+    duty, operating = judged.duty, judged.operating
+    return DutyResult(
+        name=duty.name, half=duty.half, P_mean=figures.P_mean, P_peak=figures.P_peak, V_peak=figures.V_peak,
+        I_peak=figures.I_peak, I_mean=figures.I_mean, I_rms=figures.I_rms, I_B_peak=_base_current(judged, figures.I_peak),
+        T_j_peak=figures.T_j_peak, T_j_mean=figures.T_j_mean, T_case=figures.T_case, T_heatsink=figures.T_heatsink,
+        R_th_total=figures.R_th_total, facts=duty.facts, series=_series(sitting, operating),
+    )  # fmt: skip
+
+
+def _base_current(judged: Judged, I_peak: Traced | None) -> Traced | None:
+    """Base current at the current peak, from the least gain that the sheet vouches for."""
+    if judged.duty.I_B_peak is not None or not judged.device.bipolar or I_peak is None:
+        return judged.duty.I_B_peak
+    h_FE = judged.device.typical.h_FE
+    if h_FE is None or h_FE.low is None:
+        return None
+    return derived("I_B_peak", "I_peak / h_FE", "A", I_peak, h_FE.low.named("h_FE"))
+
+
+def _series(sitting: Sitting, operating: Operating) -> Series | None:
+    locus = operating.locus
+    if locus is None:
+        return None
+    member = hottest(operating)[0]
+    held = locus.use is Use.HELD
+    shape = (1, *locus.shape[1:])
+
+    def line(a: FloatArray) -> FloatArray:
+        full = np.broadcast_to(a, shape)
+        return np.array(full[0, :, 0] if held else full[0, member, :])
+
+    v, i = line(locus.v), line(locus.i)
+    region = laws.regions(sitting.fitted.device, v, i)
+    if locus.region is not None:
+        full = np.broadcast_to(locus.region, shape)
+        region = np.array(full[0, :, 0] if held else full[0, member, :])
+    turn_off = np.zeros(v.shape, dtype=bool)
+    if locus.turn_off is not None and not held:
+        turn_off = np.array(np.broadcast_to(locus.turn_off, shape)[0, member])
+    return Series(
+        t=line(locus.t), v=v, i=i, region=region, T_j=line(operating.T_j), T_case=line(operating.T_case_t),
+        T_heatsink=line(operating.T_heatsink_t), use=locus.use.value, turn_off=turn_off,
+    )  # fmt: skip
+
+
+def _pictures(sittings: tuple[Sitting, ...]) -> tuple[SafeAreaPicture, ...]:
+    """The safe area of each half at its hottest listed duty."""
+    pictures = []
+    for sitting in sittings:
+        drawn = [j for j in sitting.judged if j.operating.locus is not None and sitting.fitted.device.soa]
+        if drawn:
+            by = max(drawn, key=lambda j: float(np.nan_to_num(np.max(j.operating.T_j_bound), nan=-1.0)))
+            pictures.append(safe_area.picture(by, 0))
+    return tuple(pictures)
+
+
+def _characteristics(sitting: Sitting) -> Characteristics:
+    loci = [j.operating.locus for j in sitting.judged if j.operating.locus is not None]
+    if not loci:
+        return Characteristics(half=sitting.fitted.half)
+    v_max = max(float(np.max(locus.v_peak)) for locus in loci)
+    i_max = max(float(np.max(locus.i_peak)) for locus in loci)
+    return Characteristics(half=sitting.fitted.half, curves=laws.characteristics(sitting.fitted.device, v_max, i_max))
+
+
+def _not_analysed(stage: Stage) -> tuple[str, ...]:
+    other = ("the other half of the stage (stage.complement not stated)",) if stage.half_open else ()
+    return (*stage.kind.not_analysed(stage.load), *other, *NOT_DECIDED)
+
+
+def _assumptions(stage: Stage, plan: CasePlan, governing: int) -> tuple[str, ...]:
+    said = list(stage.document.assumptions)
+    for half in stage.halves:
+        said += [f"{half.fitted.device.name}: {text}" for text in half.fitted.device.assumptions]
+        if half.ladder is not None and half.ladder.how:
+            said.append(f"{half.fitted.device.name}: {half.ladder.how}")
+    path = stage.heat_path
+    if path.shared_by is None and path.sink == "resistance":
+        said.append(f"the sink is shared by every device of the stage, {stage.devices} (heat_path.shared_by not stated)")
+    if path.sink == "resistance" and path.C_th_sink is None:
+        said.append("the sink stays at its mean temperature over a period, and at its start over a shot of up to 1 s (common practice)")
+    if stage.spreads and governing > 0:
+        corner = ", ".join(f"{key} = {values[governing]:.6g}" for key, values in sorted(plan.values.items()))
+        said.append(f"duties are shown at the corner that governs: {corner} (SI units)")
+    return tuple(dict.fromkeys(said))

@@ -1,0 +1,64 @@
+"""Guards about the signal and the load of a stage."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from soacheck.guard.seen import Raised, Seen
+from soacheck.limit.judged import Judged
+
+# Multiples of the resistive case at the same modulus of impedance (derivation: class-B stage on a sine, ideal swing;
+# mean maximum 1/cos(phi) up to 50.46 degrees, then at full drive; peak 8 sin^3(30 deg + phi/3)).
+ANGLES = ((45, 1.41421, 2.82843), (60, 1.90789, 3.59627))
+
+
+def _duty(seen: Seen, name: str) -> Judged | None:
+    return next((judged for judged in seen.judged if judged.duty.name == name), None)
+
+
+def _mean(judged: Judged) -> float:
+    return float(np.max(judged.operating.P_mean)) if judged.operating.locus is not None else float("nan")
+
+
+def class_b_worst(seen: Seen) -> tuple[Raised, ...]:
+    """class-b-worst: full power is not what heats a class-B stage most."""
+    worst, full = _duty(seen, "worst-level"), _duty(seen, "full-level")
+    if worst is None or full is None or not _mean(worst) > 1.005 * _mean(full):
+        return ()
+    return (
+        Raised(
+            id="class-b-worst",
+            text=(
+                f"The greatest mean dissipation, {_mean(worst):.3g} W a device, is not at full level "
+                f"({_mean(full):.3g} W): for a resistive load it stands at 2/pi of the rail."
+            ),
+        ),
+    )
+
+
+def pure_resistance(seen: Seen) -> tuple[Raised, ...]:
+    """pure-resistance: a loudspeaker or motor has a load angle."""
+    for name in ("worst-level", "at-level"):
+        judged = _duty(seen, name)
+        if judged is None:
+            continue
+        angle = next((fact for fact in judged.duty.facts if fact.symbol == "phi"), None)
+        if angle is None or bool(np.any(np.abs(angle.value) > 1e-9)):
+            continue
+        P_mean, P_peak = _mean(judged), float(np.max(judged.operating.P_peak))
+        watts = name == "worst-level"
+        said = "; ".join(
+            f"{degrees} degrees mean x {mean:.3g}, peak x {peak:.3g}"
+            + (f" ({mean * P_mean:.3g} W, {peak * P_peak:.3g} W a device)" if watts else "")
+            for degrees, mean, peak in ANGLES
+        )
+        return (
+            Raised(
+                id="pure-resistance",
+                text=(
+                    "The load is taken as a pure resistance. A loudspeaker or motor of the same impedance turns the load: "
+                    f"{said}, against the worst level of the resistance (class B)."
+                ),
+            ),
+        )
+    return ()
