@@ -8,32 +8,29 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from soacheck.balance.chain import chain, hottest
+from soacheck import drawn
+from soacheck.balance.chain import chain
 from soacheck.balance.operating import Operating, before_of, needs_sink_bound, settle
 from soacheck.balance.place import Place, place_of
-from soacheck.device import laws
 from soacheck.device.ratings import Device
 from soacheck.duty import Duty, Fitted
 from soacheck.guard import GUARDS, Raised, Seen
-from soacheck.limit import LIMITS, safe_area
+from soacheck.limit import LIMITS
 from soacheck.limit.judged import Judged
 from soacheck.locus import Use
 from soacheck.result import (
     Caution,
-    Characteristics,
     DeviceFacts,
     DutyResult,
     Finding,
     Reason,
     Result,
-    SafeAreaPicture,
-    Series,
     StageFacts,
     Status,
 )
 from soacheck.stage import Stage
 from soacheck.table import CasePlan, Missing
-from soacheck.trace import FloatArray, Traced, derived
+from soacheck.trace import Traced, derived
 
 BLOCK = 16  # cases worked out together; fixed, so that the answer does not depend on anything else
 
@@ -187,8 +184,9 @@ def _decide(stage: Stage, plan: CasePlan, worst: list[Finding], cases: list[int]
         assumptions=_assumptions(stage, plan, governing),
         cautions=tuple(dict.fromkeys(cautions)),
         inputs=(*stage.document.stated(),),
-        safe_area=_pictures(sittings),
-        characteristics=tuple(_characteristics(s) for s in sittings),
+        safe_area=tuple(p for s in sittings for p in drawn.safe_areas(s.judged)),
+        characteristics=tuple(drawn.characteristics(s.judged) for s in sittings),
+        sweeps=tuple(sweep for s in sittings for sweep in drawn.sweeps(s.judged)),
     )  # fmt: skip
 
 
@@ -201,17 +199,17 @@ def _lowered(finding: Finding, raised: list[Raised]) -> Finding:
 
 
 def _facts(device: Device) -> DeviceFacts:
-    return DeviceFacts(name=device.name, file=device.file, sha256=device.sha256, ratings_from=device.ratings_from)
+    return DeviceFacts(name=device.name, file=device.file, sha256=device.sha256, ratings_from=device.ratings_from, kind=device.kind)
 
 
 def _duty_result(sitting: Sitting, judged: Judged) -> DutyResult:
     figures = chain(judged.operating, sitting.place)
-    duty, operating = judged.duty, judged.operating
+    duty = judged.duty
     return DutyResult(
         name=duty.name, half=duty.half, P_mean=figures.P_mean, P_peak=figures.P_peak, V_peak=figures.V_peak,
         I_peak=figures.I_peak, I_mean=figures.I_mean, I_rms=figures.I_rms, I_B_peak=_base_current(judged, figures.I_peak),
         T_j_peak=figures.T_j_peak, T_j_mean=figures.T_j_mean, T_case=figures.T_case, T_heatsink=figures.T_heatsink,
-        R_th_total=figures.R_th_total, facts=duty.facts, series=_series(sitting, operating),
+        R_th_total=figures.R_th_total, facts=duty.facts, series=drawn.series(judged),
     )  # fmt: skip
 
 
@@ -223,52 +221,6 @@ def _base_current(judged: Judged, I_peak: Traced | None) -> Traced | None:
     if h_FE is None or h_FE.low is None:
         return None
     return derived("I_B_peak", "I_peak / h_FE", "A", I_peak, h_FE.low.named("h_FE"))
-
-
-def _series(sitting: Sitting, operating: Operating) -> Series | None:
-    locus = operating.locus
-    if locus is None:
-        return None
-    member = hottest(operating)[0]
-    held = locus.use is Use.HELD
-    shape = (1, *locus.shape[1:])
-
-    def line(a: FloatArray) -> FloatArray:
-        full = np.broadcast_to(a, shape)
-        return np.array(full[0, :, 0] if held else full[0, member, :])
-
-    v, i = line(locus.v), line(locus.i)
-    region = laws.regions(sitting.fitted.device, v, i)
-    if locus.region is not None:
-        full = np.broadcast_to(locus.region, shape)
-        region = np.array(full[0, :, 0] if held else full[0, member, :])
-    turn_off = np.zeros(v.shape, dtype=bool)
-    if locus.turn_off is not None and not held:
-        turn_off = np.array(np.broadcast_to(locus.turn_off, shape)[0, member])
-    return Series(
-        t=line(locus.t), v=v, i=i, region=region, T_j=line(operating.T_j), T_case=line(operating.T_case_t),
-        T_heatsink=line(operating.T_heatsink_t), use=locus.use.value, turn_off=turn_off,
-    )  # fmt: skip
-
-
-def _pictures(sittings: tuple[Sitting, ...]) -> tuple[SafeAreaPicture, ...]:
-    """The safe area of each half at its hottest listed duty."""
-    pictures = []
-    for sitting in sittings:
-        drawn = [j for j in sitting.judged if j.operating.locus is not None and sitting.fitted.device.soa]
-        if drawn:
-            by = max(drawn, key=lambda j: float(np.nan_to_num(np.max(j.operating.T_j_bound), nan=-1.0)))
-            pictures.append(safe_area.picture(by, 0))
-    return tuple(pictures)
-
-
-def _characteristics(sitting: Sitting) -> Characteristics:
-    loci = [j.operating.locus for j in sitting.judged if j.operating.locus is not None]
-    if not loci:
-        return Characteristics(half=sitting.fitted.half)
-    v_max = max(float(np.max(locus.v_peak)) for locus in loci)
-    i_max = max(float(np.max(locus.i_peak)) for locus in loci)
-    return Characteristics(half=sitting.fitted.half, curves=laws.characteristics(sitting.fitted.device, v_max, i_max))
 
 
 def _not_analysed(stage: Stage) -> tuple[str, ...]:
