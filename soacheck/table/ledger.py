@@ -1,0 +1,75 @@
+"""What a document's readers find out as they go: problems, spreads, assumptions, cautions. Each is noted once."""
+
+from __future__ import annotations
+
+import re
+import tomllib
+from dataclasses import dataclass, field
+
+from soacheck.errors import InputError, Problem, QuantityError
+from soacheck.table.declare import Spread
+from soacheck.table.positions import place_of
+from soacheck.table.toml_text import Source
+
+_PLAIN_NAME = re.compile(r"[A-Za-z0-9_-]+")
+_LONGEST_VALUE = 60
+
+
+def joined(path: str, name: str) -> str:
+    """The dotted path of a key; a name that is not a bare TOML key is quoted."""
+    if not _PLAIN_NAME.fullmatch(name):
+        name = '"' + name.replace("\\", "\\\\").replace('"', '\\"') + '"'
+    return f"{path}.{name}" if path else name
+
+
+def as_written(text: str) -> str:
+    """A value's text in the file for a message: a string in single quotes, anything else as it stands, cut short."""
+    if text[:1] in ("'", '"'):
+        text = f"'{tomllib.loads('x = ' + text)['x']}'"
+    text = " ".join(text.split()) if "\n" in text else text
+    return text if len(text) <= _LONGEST_VALUE else text[: _LONGEST_VALUE - 3] + "..."
+
+
+@dataclass(slots=True)
+class Ledger:
+    """Shared by a document and all its copies over other cases."""
+
+    source: Source
+    spreads: dict[str, Spread] = field(default_factory=dict)
+    assumptions: dict[str, None] = field(default_factory=dict)  # an ordered set
+    cautions: dict[tuple[str, str], None] = field(default_factory=dict)
+    _problems: dict[tuple[str, str], str] = field(default_factory=dict)  # (dotted key, problem) -> remedy
+
+    def refuse(self, dotted: str, problem: str, remedy: str) -> None:
+        """Note an input error about a key."""
+        self._problems.setdefault((dotted, problem), remedy)
+
+    def refuse_quantity(self, dotted: str, name: str, error: QuantityError) -> None:
+        """Note a text that is not the quantity wanted, with the line that would be right."""
+        remedy = error.remedy
+        if error.instead:
+            line = f'{name} = "{error.instead}"' if name else f'"{error.instead}"'
+            remedy = line if remedy.startswith(f'write "{error.instead}"') else f"{remedy} {line}"
+        self.refuse(dotted, error.problem, remedy)
+
+    def caution(self, identity: str, text: str) -> None:
+        self.cautions.setdefault((identity, text))
+
+    def problems(self) -> tuple[Problem, ...]:
+        """Everything that was refused, in the order of the file."""
+        found = []
+        for (dotted, problem), remedy in self._problems.items():
+            place = place_of(self.source.text, dotted)
+            found.append(
+                Problem(
+                    file=self.source.file, line=place.line if place else None, key=dotted,
+                    value=as_written(place.value) if place and place.value else "",
+                    problem=problem, remedy=remedy,
+                )
+            )  # fmt: skip
+        return tuple(sorted(found, key=lambda item: item.line if item.line is not None else len(self.source.text)))
+
+    def finish(self) -> None:
+        """Raise InputError when anything was refused."""
+        if self._problems:
+            raise InputError(*self.problems())
