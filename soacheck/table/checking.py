@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any
 
+from soacheck.errors import plain
 from soacheck.quantity import DIMENSIONS
 from soacheck.table.cells import Sheet, is_inline_quantity
 from soacheck.table.declare import Key
@@ -18,6 +19,8 @@ def check_table(sheet: Sheet, path: str, table: str, data: Mapping[str, Any]) ->
     own = declared.own(table)
     offered: set[str] = set()
     for name, raw in data.items():
+        if ledger.full:
+            return
         dotted = joined(path, name)
         inner = f"{table}.{name}" if table else name
         key = own.get(name)
@@ -30,17 +33,19 @@ def check_table(sheet: Sheet, path: str, table: str, data: Mapping[str, Any]) ->
                 ledger.refuse(dotted, f"{name} is a table", f"write its keys under [{inner}]")
         else:
             problem, remedy, near = declared.unknown(table, name, data)
+            if near and isinstance(raw, str):  # the line that would be right
+                remedy += f' {near} = "{plain(raw)}"'
             ledger.refuse(dotted, problem, remedy)
             offered.add(near)
     for name, key in own.items():
         if key.required and name not in data and name not in offered and not key.not_built:
-            ledger.refuse(joined(path, name), "this key is wanted and absent", _how_to_state(key))
+            ledger.refuse(joined(path, name), "this key is wanted and absent", _how_to_state(key, "[" in path))
     if not path:
         for name in declared.top_tables() - data.keys() - offered:
             check_table(sheet, name, name, {})
 
 
-def _how_to_state(key: Key) -> str:
+def _how_to_state(key: Key, of_array: bool) -> str:
     if key.form == "choice":
         line = f'{key.name} = "{key.choices[0]}"'
     elif key.form in ("text", "tree", "table", "tables"):
@@ -49,7 +54,8 @@ def _how_to_state(key: Key) -> str:
         line = f'{key.name} = "... {DIMENSIONS[key.dimension]}"'
     else:
         line = f"{key.name} = ..."
-    text = f"add {line}" + (f" under [{key.table}]" if key.table else "")
+    header = f"[[{key.table}]]" if of_array and "." not in key.table else f"[{key.table}]"
+    text = f"add {line}" + (f" under {header}" if key.table else "")
     return text + (f" ({key.where})" if key.where else "")
 
 

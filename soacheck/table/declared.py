@@ -68,7 +68,8 @@ class Declared:
             right = self._same(name, homes[0])
             if not homes[0]:
                 return problem, f"{right} stands at the top of the file", ""
-            return f"{shown} does not belong under {where}", f"put {right} under [{homes[0]}]", ""
+            misplaced = f"{shown} does not belong under {where}" if table else f"{shown} stands outside its table"
+            return misplaced, f"put {right} under [{homes[0]}]", ""
         near = nearest(name, own, _NEAR)
         opposite = {_RATINGS: _CHARACTERISTICS, _CHARACTERISTICS: _RATINGS}.get(table)
         if near and opposite and max((likeness(name, k) for k in self.own(opposite)), default=0.0) > best:
@@ -90,4 +91,4 @@ class Declared:
         twin = next(
             (key.name for key in self.own(foreign.table).values() if foreign.role and key.role == foreign.role), ""
         )
-        return problem, f"write {twin} here" if twin else "leave it out", twin
+        return problem, f"here it is {twin}:" if twin else "leave it out", twin

@@ -13,6 +13,7 @@ from soacheck.table.toml_text import Source
 
 _PLAIN_NAME = re.compile(r"[A-Za-z0-9_-]+")
 _LONGEST_VALUE = 60
+MOST_PROBLEMS = 100  # a file with more is not a rating or stage file; looking for near names would take seconds
 
 
 def joined(path: str, name: str) -> str:
@@ -40,9 +41,15 @@ class Ledger:
     cautions: dict[tuple[str, str], None] = field(default_factory=dict)
     _problems: dict[tuple[str, str], str] = field(default_factory=dict)  # (dotted key, problem) -> remedy
 
+    @property
+    def full(self) -> bool:
+        """Whether so much is wrong that nothing more is looked for."""
+        return len(self._problems) >= MOST_PROBLEMS
+
     def refuse(self, dotted: str, problem: str, remedy: str) -> None:
         """Note an input error about a key."""
-        self._problems.setdefault((dotted, problem), remedy)
+        if not self.full:
+            self._problems.setdefault((dotted, problem), remedy)
 
     def refuse_quantity(self, dotted: str, name: str, error: QuantityError) -> None:
         """Note a text that is not the quantity wanted, with the line that would be right."""
@@ -67,7 +74,11 @@ class Ledger:
                     problem=problem, remedy=remedy,
                 )
             )  # fmt: skip
-        return tuple(sorted(found, key=lambda item: item.line if item.line is not None else len(self.source.text)))
+        found.sort(key=lambda item: len(self.source.text) if item.line is None else item.line)
+        if self.full:
+            remedy = "put these right first"
+            found.append(Problem(file=self.source.file, problem="there is more, not listed here", remedy=remedy))
+        return tuple(found)
 
     def finish(self) -> None:
         """Raise InputError when anything was refused."""

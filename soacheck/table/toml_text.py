@@ -168,7 +168,7 @@ def _syntax(error: ValueError, text: str, shown_as: str) -> Problem:
             return Problem(file=shown_as, problem="a number with thousands of digits", remedy="write it as 1e3")
         line = len(text.rstrip().split("\n"))
         message += ", and the file ends"
-    here = lines[line - 1] if line <= len(lines) else ""
+    here = lines[line - 1][:500] if line <= len(lines) else ""
     problem = f"not valid TOML: {plain(message, 120)}"
     if column is not None and here.isprintable() and len(here) <= 200:
         problem += f"\n{here}\n{' ' * (min(column, len(here) + 1) - 1)}^"

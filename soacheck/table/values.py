@@ -240,10 +240,16 @@ def _tolerance(key: Key, dotted: str, raw: object, nominal: float, ledger: Ledge
         wanted = Key(table="", name="tol", dimension="temperature difference", sign="non-negative", band=(0.0, 500.0))
         margin = single(wanted, dotted, "tol", raw, ledger)
     else:
-        wanted = Key(table="", name="tol", dimension="ratio", sign="non-negative", band=(0.0, 1.0))
+        wanted = Key(table="", name="tol", dimension="ratio", sign="non-negative", band=(0.0, 0.99))
         share = single(wanted, dotted, "tol", raw, ledger)
         margin = None if share is None else share * abs(nominal)
-    return None if margin is None else (nominal - margin, nominal + margin)
+    if margin is None:
+        return None
+    low, high = nominal - margin, nominal + margin
+    if key.band is not None and not (key.band[0] <= low and high <= key.band[1]):
+        ledger.refuse(dotted, "the value with this tolerance leaves what is plausible here", "check the tolerance")
+        return None
+    return low, high
 
 
 def _points(key: Key, dotted: str, raw: object, ledger: Ledger) -> FloatArray | None:
@@ -257,6 +263,8 @@ def _points(key: Key, dotted: str, raw: object, ledger: Ledger) -> FloatArray | 
     good = True
     rows: list[list[float]] = []
     for number, element in enumerate(raw, 1):
+        if ledger.full:
+            return None
         cells = element if isinstance(element, list) else [element]
         if len(cells) != width or (width > 1 and not isinstance(element, list)):
             ledger.refuse(f"{dotted}[{number}]", f"a point has {width} values here", remedy)
