@@ -1,0 +1,215 @@
+"""Duties of a push-pull stage: idle, the levels asked for, a shorted output."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import numpy as np
+
+from soacheck.duty import Duty, Fitted, Members
+from soacheck.load.parts import push_pull_facts as facts
+from soacheck.load.parts.levels import Driven, every_level, fractions, frequencies
+from soacheck.load.parts.push_pull_stage import PushPull, column, driven_by, law_of
+from soacheck.load.parts.swing import OVERDRIVE, clipped, held
+from soacheck.locus import Locus, Use
+from soacheck.trace import FloatArray, Traced, found, frozen, given
+
+_ROUNDS, _POINTS = 5, 9
+
+
+def every_duty(load: PushPull, fitted: Fitted) -> tuple[Duty, ...]:
+    """All duties, for the worst of the parallel devices of one half."""
+    driven = driven_by(load, fitted)
+    if load.f is None:
+        levels = _held_levels(load, fitted, driven)
+    elif load.level == "any":
+        levels = _any_level(load, fitted, driven)
+    else:
+        levels = _at_level(load, fitted, driven)
+    return (_idle(load, fitted, driven), *levels, *_shorted(load, fitted))
+
+
+def _always(locus: Locus) -> Callable[[FloatArray | None], Locus]:
+    def at(T_j: FloatArray | None) -> Locus:
+        return locus  # the currents follow the load, not the temperature
+
+    return at
+
+
+def _heat(load: PushPull, fitted: Fitted, halves: float | FloatArray) -> FloatArray:
+    """Dissipation of all devices over the worst one's: each half is 1/share of its worst device, (case, 1)."""
+    return np.asarray(load.amplifiers * halves / column(fitted.share), dtype=np.float64)
+
+
+def _idle(load: PushPull, fitted: Fitted, driven: Driven) -> Duty:
+    zero = np.zeros((1, 1))
+    point = held(driven.output, zero, np.ones((1, 1)))
+    return Duty(
+        name="idle", half=fitted.half, locus=_always(point.locus), heat_ratio=_heat(load, fitted, 2.0),
+        facts=facts.idle_facts(load, fitted),
+    )  # fmt: skip
+
+
+def _grid_of(load: PushPull, driven: Driven) -> FloatArray:
+    """Frequencies looked at, (case, n): one, both ends for a resistance, else chosen from the load's course."""
+    if load.f is None:
+        raise ValueError("a held output has no frequency")
+    low, high = column(load.f[0]), column(load.f[1])
+    if load.one_frequency:
+        return low
+    low, high = np.broadcast_arrays(low, high)
+    if load.resistive:
+        return np.concatenate([low, high], axis=1)
+    return frequencies(driven, low, high, load.table_rows())
+
+
+def _f_fact(load: PushPull, f: FloatArray, what: str) -> Traced:
+    """The frequency of a duty, (case,)."""
+    if load.f is None:
+        raise ValueError("a held output has no frequency")
+    if load.one_frequency:
+        return load.f[0].named("f")
+    ends = (load.f[0].named("f_low"), load.f[1].named("f_high"))
+    return found("f", f[:, 0], "Hz", f"frequency of the stated range with the {what}", *ends)
+
+
+def _any_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ...]:
+    levels = every_level(driven, _grid_of(load, driven), class_b_only=load.class_b, resistance=load.resistive)
+    heat = _heat(load, fitted, 2.0)
+    worst_sheet = facts.sheet_of(load, fitted, _f_fact(load, levels.worst_f, "greatest mean dissipation"))
+    if load.class_b:
+        V = facts.worst_swing(worst_sheet)
+    else:
+        V = found("V", levels.worst_V[:, 0], "V",
+                  f"level of greatest mean dissipation, searched; {law_of(fitted.device.kind)}",
+                  worst_sheet.named["V_rail"], worst_sheet.named["V_max"], worst_sheet.named["Z_mod"],
+                  worst_sheet.named["phi"], load.I_Q.named("I_Q"))  # fmt: skip
+    full_sheet = facts.sheet_of(
+        load, fitted, _f_fact(load, levels.full_f, "greatest mean dissipation at full level")
+    )
+    full_V = full_sheet.of("V", "V_max", "V")
+    worst = Duty(
+        name="worst-level", half=fitted.half, locus=_always(levels.worst), heat_ratio=heat,
+        facts=facts.sine_facts(worst_sheet, V, levels.worst.p_mean[:, 0], fitted),
+    )  # fmt: skip
+    full = Duty(
+        name="full-level", half=fitted.half, locus=_always(levels.full), heat_ratio=heat,
+        facts=facts.sine_facts(full_sheet, full_V, levels.full.p_mean[:, 0], fitted),
+    )  # fmt: skip
+    every = Duty(
+        name="any-level", half=fitted.half, locus=_always(levels.locus), heat_ratio=heat, listed=False,
+        members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels.V)), facts=worst.facts,
+    )  # fmt: skip
+    return worst, full, every
+
+
+def _at_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ...]:
+    """A stated or clipped level, at each frequency of the range."""
+    f = _grid_of(load, driven)
+    V = np.stack([_stated(load, fitted, f[:, n]).value for n in range(f.shape[1])], axis=1)
+    if load.level == "clipped":
+        R = load.resistance() if load.resistive else None
+        locus = clipped(driven.output, V, f, R, load.Z_at)
+    else:
+        V_max = driven.swing(load.Z_at(f))
+        locus = driven.at(V / V_max, f)[1]
+    P = locus.p_mean
+    hottest = np.argmax(P, axis=1)[:, None]
+    at = np.broadcast_to(f, P.shape)
+    sheet = facts.sheet_of(
+        load, fitted, _f_fact(load, np.take_along_axis(at, hottest, 1), "greatest mean dissipation")
+    )
+    swing, mean = facts.stated_swing(sheet), np.take_along_axis(P, hottest, 1)[:, 0]
+    made = (facts.clipped_facts(sheet, swing, mean, OVERDRIVE) if load.level == "clipped"
+            else facts.sine_facts(sheet, swing, mean, fitted))  # fmt: skip
+    one = f.shape[1] == 1
+    return (
+        Duty(
+            name="at-level", half=fitted.half, locus=_always(locus), heat_ratio=_heat(load, fitted, 2.0), facts=made,
+            members=Members() if one else Members(name="f", unit="Hz", value=frozen(at)),
+        ),
+    )  # fmt: skip
+
+
+def _stated(load: PushPull, fitted: Fitted, f: FloatArray) -> Traced:
+    return facts.stated_swing(facts.sheet_of(load, fitted, given("f", f, "Hz", "load.f")))
+
+
+def _held_levels(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ...]:
+    """Each output voltage held for ever: one half of each amplifier carries the load."""
+    R = load.resistance()
+    sheet = facts.sheet_of(load, fitted, None)
+    V_max = column(sheet.named["V_max"])
+    if load.level != "any":
+        return (_held_duty("at-level", load, fitted, driven, facts.stated_swing(sheet), sheet),)
+    if load.class_b:
+        V = facts.worst_held(sheet)
+    else:
+        V = found("V", _worst_held(driven, V_max, R)[:, 0], "V", f"searched; {law_of(fitted.device.kind)}",
+                  *sheet.named.values(), load.I_Q.named("I_Q"))  # fmt: skip
+    worst = _held_duty("worst-level", load, fitted, driven, V, sheet)
+    full = _held_duty("full-level", load, fitted, driven, sheet.of("V", "V_max", "V"), sheet)
+    grid = V_max * fractions(True)
+    rows = max(grid.shape[0], V.value.shape[0])
+    both = [np.broadcast_to(x, (rows, x.shape[1])) for x in (grid, column(V))]
+    levels = np.concatenate(both, axis=1)
+    line = held(driven.output, levels, R)
+    # One figure for the sink: that of the level which heats it most. Others heat it less, as they should.
+    P = line.locus.p_mean
+    top = np.argmax(P * line.halves, axis=1)[:, None]
+    halves = np.take_along_axis(np.broadcast_to(line.halves, P.shape), top, 1)
+    every = Duty(
+        name="any-level", half=fitted.half, locus=_always(line.locus), heat_ratio=_heat(load, fitted, halves),
+        listed=False, members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels)),
+        facts=worst.facts,
+    )  # fmt: skip
+    return worst, full, every
+
+
+def _held_duty(
+    name: str, load: PushPull, fitted: Fitted, driven: Driven, V: Traced, sheet: facts.Sheet
+) -> Duty:
+    point = held(driven.output, column(V), load.resistance())
+    return Duty(
+        name=name, half=fitted.half, locus=_always(point.locus), heat_ratio=_heat(load, fitted, point.halves),
+        facts=facts.held_facts(sheet, V, point.locus.p_mean[:, 0], fitted),
+    )  # fmt: skip
+
+
+def _worst_held(driven: Driven, V_max: FloatArray, R: FloatArray) -> FloatArray:
+    """Held output voltage of greatest dissipation, (case, 1), by a grid that narrows around its best."""
+    low, high = np.zeros((1, 1)), V_max
+    for n in range(_ROUNDS + 1):
+        tried = low + (high - low) * np.linspace(0, 1, 65 if n == 0 else _POINTS)
+        P = held(driven.output, tried, R).locus.p_mean
+        tried = np.broadcast_to(tried, P.shape)
+        best = np.argmax(P, axis=1)[:, None]
+        low = np.take_along_axis(tried, np.maximum(best - 1, 0), 1)
+        high = np.take_along_axis(tried, np.minimum(best + 1, tried.shape[1] - 1), 1)
+    return np.asarray(np.take_along_axis(tried, best, 1), dtype=np.float64)
+
+
+def _shorted(load: PushPull, fitted: Fitted) -> tuple[Duty, ...]:
+    """The output at 0 V, the half at its current limit: for ever, half of each period, or once."""
+    if load.I_limit is None:
+        return ()
+    total = load.I_limit.value
+    v = np.maximum(load.V_rail.value - load.R_E.value / load.pairs * total, 0.0)[:, None, None]
+    i = (total * fitted.share.value)[:, None, None]
+    half_time = load.f is not None and load.fault_time is None
+    if load.fault_time is not None:
+        t = load.fault_time.value[:, None, None] * np.array([0.0, 1.0])
+        locus = Locus(t=t, v=v, i=i, use=Use.ONCE)
+    elif load.f is not None:
+        # The lowest frequency of the range: the longest half periods at the same mean.
+        t = np.array([0.0, 0.5, 0.5, 1.0]) / load.f[0].value[:, None, None]
+        locus = Locus(t=t, v=v, i=i * np.array([1.0, 1.0, 0.0, 0.0]), use=Use.REPEATED)
+    else:
+        locus = Locus(t=np.zeros((1, 1, 1)), v=v, i=i, use=Use.HELD)
+    return (
+        Duty(
+            name="shorted-output", half=fitted.half, locus=_always(locus),
+            heat_ratio=_heat(load, fitted, 2.0 if half_time else 1.0),
+            facts=facts.shorted_facts(load, fitted, half_time=half_time),
+        ),
+    )  # fmt: skip
