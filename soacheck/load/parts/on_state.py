@@ -1,8 +1,8 @@
 """The lower end of a load line: what stands across the device when it is fully on.
 
 A bipolar transistor keeps a saturation voltage, a MOSFET an on-resistance, an IGBT a knee and a slope; all
-three are V_0 + R_on * i. Which of the stated values counts depends on the question: the line is longest with the
-lowest drop, conduction costs most with the highest one.
+three are V_0 + R_on * i. Which of the stated values counts depends on the question: the line is longest with
+the lowest drop, conduction costs most with the highest one.
 """
 
 from __future__ import annotations

@@ -1,8 +1,8 @@
 """The quiescent point of a single-ended stage from its bias network.
 
-A bipolar transistor draws base current from a source V_th through R_th (Thevenin's equivalent of the network);
-a gate draws none, and the transfer characteristic is a straight line of slope g_fs from the threshold. The point
-then stands on the load line: not above its upper end, where the device is fully on, and not below leakage.
+A bipolar transistor draws base current from a source V_th through R_th (Thevenin's equivalent of the
+network); a gate draws none, and the transfer characteristic is a straight line of slope g_fs from the threshold.
+The point then stands on the load line: not above its upper end, where the device is fully on, and not below leakage.
 Everything is at 25 degC: how the point moves with the junction is the matter of thermal runaway.
 """
 
@@ -122,7 +122,8 @@ def _by_base(bias: Bias, circuit: Circuit, on: OnState) -> Quiescent | tuple[Mis
     def point(h_FE: Traced, V_BE: Traced) -> Point:
         return _base_point(source, h_FE.named("h_FE"), V_BE.named("V_BE"), circuit, on)
 
-    h_FE = typical.h_FE or _read_gain(circuit, partial(point, V_BE=typical.V_BE.middle))
+    V_BE = _stated(typical.V_BE.middle)
+    h_FE = typical.h_FE or _read_gain(circuit, partial(point, V_BE=V_BE))
     return _over_spread(point, h_FE, typical.V_BE)
 
 
@@ -272,7 +273,7 @@ def _over_spread(point: Callable[[Traced, Traced], Point], gain: Triple, volts: 
     """Points over the stated spread of gain and of V_BE or V_GS_th together.
 
     The current rises with the gain and falls with the voltage, so that the pairs (low, high) and (high, low)
-    hold the extremes. What lies between stands on the load line: the members run along it, so that the greatest
+    hold the extremes. What lies between stands on the load line: members run along it, so that the greatest
     dissipation is met where it lies between the extremes.
     """
     g_low, g_mid, g_high = (_stated(node) for node in (gain.low, gain.middle, gain.high))
