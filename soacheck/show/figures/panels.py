@@ -1,0 +1,121 @@
+"""Which rows the pictures of power and temperature have: a sweep over levels, a held line, a run in time."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+
+from soacheck.result import Result, Series, Sweep
+from soacheck.show.figures import page, read, words
+from soacheck.show.figures.read import Drawn
+from soacheck.show.text import ZERO_CELSIUS
+from soacheck.trace import FloatArray, IntArray
+
+MOST_ROWS = 3
+_EMPTY = np.empty(0)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Panel:
+    """One row: what is on its x axis, and the figures over it in SI and kelvin, empty where never known.
+
+    P is the power at the points of a run in time, the mean power elsewhere.
+    """
+
+    duty: str
+    title: str
+    timed: bool
+    x: FloatArray
+    x_name: str
+    P: FloatArray
+    P_allowed: FloatArray
+    T_j: FloatArray
+    T_case: FloatArray
+    T_heatsink: FloatArray
+    T_air: FloatArray
+    thinned: bool
+
+
+def panels(
+    result: Result, half: str | None, wanted: Callable[[Panel], bool]
+) -> tuple[list[Panel], list[str]]:
+    """The rows in the order sweep, held lines, runs in time, at most three; and the duties left out."""
+    duties = read.drawn(result, half)
+    kind = read.device_kind(result, half)
+    found = [_swept(sweep) for sweep in result.sweeps if sweep.half == half and sweep.x.size > 1]
+    found += [_held(duty, kind) for duty in duties if duty.held and duty.points > 1]
+    found += [
+        _timed(duty) for duty in _by_weight(result, half, [d for d in duties if not d.held and d.points > 1])
+    ]
+    if not found:
+        found = [_held(duty, kind) for duty in duties if duty.points == 1]
+    found = [panel for panel in found if wanted(panel)]
+    return found[:MOST_ROWS], [panel.duty for panel in found[MOST_ROWS:]]
+
+
+def _by_weight(result: Result, half: str | None, duties: list[Drawn]) -> list[Drawn]:
+    """The hottest first, so that what is left out is the least of them."""
+
+    def weight(duty: Drawn) -> float:
+        finding = read.of_duty(result, "junction-temperature", duty.name, half)
+        used = float(finding.utilisation[0]) if finding is not None else np.nan
+        return -used if np.isfinite(used) else np.inf
+
+    return sorted(duties, key=weight)
+
+
+def _swept(sweep: Sweep) -> Panel:
+    unit = f" ({sweep.unit})" if sweep.unit and sweep.unit != "1" else ""
+    what = "peak voltage at the load" if sweep.name == "level" else sweep.name
+    return Panel(
+        duty=sweep.duty, title=f"{sweep.duty}: each point is a {sweep.name} that may last", timed=False,
+        x=sweep.x, x_name=f"{what}{unit}", P=sweep.P_mean, P_allowed=sweep.P_allowed, T_j=sweep.T_j_peak,
+        T_case=sweep.T_case, T_heatsink=sweep.T_heatsink, T_air=sweep.T_air, thinned=False,
+    )  # fmt: skip
+
+
+def _held(duty: Drawn, kind: str) -> Panel:
+    series = duty.series
+    order = np.argsort(series.v, kind="stable")
+    return Panel(
+        duty=duty.name, title=f"{duty.name}: each point may be held", timed=False, x=series.v[order],
+        x_name=words.voltage_axis(kind), P=(series.v * series.i)[order], thinned=False,
+        **_figures(series, order),
+    )  # fmt: skip
+
+
+def _timed(duty: Drawn) -> Panel:
+    series = duty.series
+    power = series.v * series.i
+    keep = page.thinned(
+        power, *(column for column in (series.T_j, series.T_case) if column.size == power.size)
+    )
+    t = series.t[keep] - series.t[0]
+    factor, sign = words.prefix(float(t[-1]))
+    what = "one shot" if series.use == "once" else "one period"
+    return Panel(
+        duty=duty.name, title=f"{duty.name}: {what}", timed=True, x=t / factor, x_name=f"time ({sign}s)",
+        P=power[keep], thinned=keep.size < power.size, **_figures(series, keep),
+    )  # fmt: skip
+
+
+def _figures(series: Series, order: IntArray) -> dict[str, FloatArray]:
+    """The columns of a series in the order of the panel; one value stands for all points."""
+    count = series.v.size
+
+    def over(column: FloatArray) -> FloatArray:
+        if column.size == count:
+            return column[order]
+        return np.full(order.size, column[0]) if column.size == 1 else _EMPTY
+
+    return {
+        "P_allowed": over(series.P_allowed), "T_j": over(series.T_j), "T_case": over(series.T_case),
+        "T_heatsink": over(series.T_heatsink), "T_air": over(series.T_air),
+    }  # fmt: skip
+
+
+def in_celsius(kelvin: FloatArray) -> FloatArray:
+    """For the axes."""
+    return kelvin - ZERO_CELSIUS
