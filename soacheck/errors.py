@@ -10,7 +10,7 @@ from dataclasses import dataclass
 
 
 def plain(text: str, most: int = 60) -> str:
-    """User text for a message: control characters and other invisible signs escaped, at most `most` characters."""
+    """User text for a message: invisible signs and control characters escaped, cut to `most` characters."""
     cut = text if len(text) <= most else text[: most - 3] + "..."
     return "".join(ch if ch.isprintable() else ch.encode("unicode_escape").decode("ascii") for ch in cut)
 
@@ -42,7 +42,7 @@ class Problem:
 
 
 def _lines(text: str) -> str:
-    """Several lines stay several lines, set under the first; nothing else in them reaches a terminal unescaped."""
+    """Several lines stay several lines, set under the first; all else that is invisible is escaped."""
     return "\n           ".join(plain(line, 2000) for line in text.split("\n"))
 
 

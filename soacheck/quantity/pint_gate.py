@@ -1,8 +1,8 @@
 """The narrow gate to pint, and the only importer of it.
 
-A text reaches pint only as a unit of at most four factors of letters, never with its number: pint reads expressions,
-skips what it does not understand ("1,5 V" is 15 V to it) and takes constants for units. Values of other programs
-that hold pint quantities pass here too. pint is loaded on first need.
+A text reaches pint only as a unit of at most four factors of letters, never with its number: pint reads
+expressions, skips what it does not understand ("1,5 V" is 15 V to it) and takes constants for units. Values
+of other programs that hold pint quantities pass here too. pint is loaded on first need.
 """
 
 from __future__ import annotations
@@ -19,8 +19,9 @@ from soacheck.quantity.units import DIMENSIONS, ZERO_CELSIUS, canonical
 
 _FACTOR = r"[A-Za-z\u00b5\u03a9\u00b0%]{1,12}(?:\^[1-4])?"
 _GATE = re.compile(rf"{_FACTOR}(?:[*/]{_FACTOR}){{0,3}}")
-# Constants of nature and of mathematics that pint takes for units, and names that it reads otherwise than the trade.
-_NOT_UNITS = frozenset("e c k pi M lambda tau Nm a u".split())
+# Constants of nature and of mathematics that pint takes for units, and names that it reads otherwise than
+# the trade.
+_NOT_UNITS = frozenset(["e", "c", "k", "pi", "M", "lambda", "tau", "Nm", "a", "u"])
 
 _PINT_UNITS = {
     "ratio": "dimensionless", "temperature": "kelvin", "temperature difference": "kelvin",
@@ -30,7 +31,8 @@ _PINT_UNITS = {
 
 @lru_cache(maxsize=1)
 def _registry() -> Any:
-    """A registry of our own: that of the user's program may have been set to convert offset units silently."""
+    """A registry of our own: that of the user's program may have been set to convert offset units
+    silently."""
     import pint
 
     return pint.UnitRegistry()
@@ -54,7 +56,7 @@ def from_text(value: float, spelling: str, written: str, number: str, dimension:
         double, _ = _converted(registry.Quantity(2 * value, unit), dimension)
     except QuantityError:
         raise
-    except Exception as error:  # pint raises AttributeError, AssertionError and others for a text that it cannot read
+    except Exception as error:  # pint's failures have no common base: AttributeError, AssertionError, ...
         raise refusal.unknown_unit(number, spelling, written, dimension) from error
     if dimension != "temperature" and not math.isclose(double, 2 * si):  # decibels and their like
         raise refusal.unknown_unit(number, spelling, written, dimension)
@@ -78,7 +80,8 @@ def from_pint(value: Any, dimension: str) -> tuple[float, str]:
         raise
     except Exception as error:  # DimensionalityError, OffsetUnitCalculusError, ...: no common base in pint
         raise QuantityError(
-            f"{refusal.a(dimension)} is wanted here, not {text}", f"convert it to {DIMENSIONS[dimension]} first"
+            f"{refusal.a(dimension)} is wanted here, not {text}",
+            f"convert it to {DIMENSIONS[dimension]} first",
         ) from error
 
 
@@ -100,7 +103,7 @@ def as_pint(si: float, dimension: str) -> Any:
     """An SI value as a quantity of pint's application registry; a temperature comes out in degC."""
     import pint
 
-    registry = pint.get_application_registry()
+    registry: Any = pint.get_application_registry()  # type: ignore[no-untyped-call]  # pint leaves it untyped
     if dimension == "temperature":
         return registry.Quantity(si - ZERO_CELSIUS, "degC")
     return registry.Quantity(si, _PINT_UNITS.get(dimension, canonical(DIMENSIONS[dimension])))

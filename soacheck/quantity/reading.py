@@ -1,4 +1,4 @@
-"""Text "number unit" to an SI float. Nothing is evaluated; whatever is not a number and a known unit is refused."""
+"""Text "number unit" to an SI float. Nothing is evaluated; all but a number and a known unit is refused."""
 
 from __future__ import annotations
 
@@ -18,7 +18,7 @@ _QUANTITY = re.compile(rf"({_NUMBER})(?: *([^0-9+\-., eE][^\n\r]*)| +([eE][^\n\r
 
 @dataclass(frozen=True, slots=True)
 class Reading:
-    """A text read as a quantity: SI value (kelvin for temperatures), and what a reader of the report must be told."""
+    """A text read as a quantity: SI value (kelvin for temperatures), and what a report must say about it."""
 
     si: float
     caution: str = ""  # set when the unit went through pint
@@ -34,13 +34,13 @@ def read(value: object, dimension: str, band: tuple[float, float] | None = None)
         unit = UNITS.get(match[2]) if match else None
         if match and unit and unit.dimension == dimension:  # the usual case, in about a microsecond
             si = float(match[1]) * unit.multiplier / unit.divisor + unit.offset
-            return Reading(_checked(si, value, match[1], match[2], dimension, band))
+            return Reading(_checked(si, value, match[1], match[2], dimension=dimension, band=band))
         return _read_text(value, dimension, band)
     if isinstance(value, str):
         return _read_text(str(value), dimension, band)
     if pint_gate.is_pint(value):
         si, text = pint_gate.from_pint(value, dimension)
-        return Reading(_checked(si, text, "", "", dimension, band))
+        return Reading(_checked(si, text, "", "", dimension=dimension, band=band))
     raise refusal.not_text(value, dimension)
 
 
@@ -62,15 +62,21 @@ def _read_text(value: str, dimension: str, band: tuple[float, float] | None) -> 
     if unit is None:
         refusal.trap(number, spelling, written, dimension)
         si, caution = pint_gate.from_text(float(number), spelling, written, number, dimension)
-        return Reading(_checked(si, value, number, spelling, dimension, band), caution)
+        return Reading(_checked(si, value, number, spelling, dimension=dimension, band=band), caution)
     if unit.dimension != dimension:
         raise refusal.wrong_dimension(number, spelling, written, unit.dimension, dimension)
     si = float(number) * unit.multiplier / unit.divisor + unit.offset
-    return Reading(_checked(si, value, number, spelling, dimension, band))
+    return Reading(_checked(si, value, number, spelling, dimension=dimension, band=band))
 
 
 def _checked(
-    si: float, text: str, number: str, spelling: str, dimension: str, band: tuple[float, float] | None
+    si: float,
+    text: str,
+    number: str,
+    spelling: str,
+    *,
+    dimension: str,
+    band: tuple[float, float] | None,
 ) -> float:
     """The value, if it is finite, possible and plausible."""
     if not math.isfinite(si):
@@ -78,5 +84,5 @@ def _checked(
     if dimension == "temperature" and si < 0:
         raise QuantityError(f"{text.strip()} is below absolute zero", "check the sign and the unit")
     if band is not None and not band[0] <= si <= band[1]:
-        raise refusal.implausible(si, text, number, spelling, dimension, band)
+        raise refusal.implausible(si, text, number, spelling, dimension=dimension, band=band)
     return si + 0.0  # a minus zero is a zero

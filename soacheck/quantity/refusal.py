@@ -1,4 +1,4 @@
-"""Why a text is not the quantity that is wanted, and what to write instead. Only reached when something is wrong."""
+"""Why a text is not the quantity that is wanted, and what to write instead."""
 
 from __future__ import annotations
 
@@ -10,10 +10,15 @@ from soacheck.quantity.units import DIMENSIONS, UNITS, ZERO_CELSIUS, canonical
 from soacheck.quantity.writing import write
 
 _NAMES = {"ratio": "percentage", "voltage tempco": "temperature coefficient of a voltage"}
-_MARKED = re.compile(r"([pnumkKMGRVvAWF]|ohm)([0-9]{1,3})(?: ?(.*))?")  # 4k7, 2R2, 3V3: the prefix as decimal point
-_CONDUCTIVITY = frozenset(("W/mK", "W/m K", "W/m*K", "W/m degC", "W/mdegC", "W/m*degC", "W/Km", "W/K m", "W/K*m"))
-_RESISTOR = {"R": "ohm", "r": "ohm", "E": "ohm", "k": "kohm", "K": "kohm", "M": "Mohm", "meg": "Mohm", "Meg": "Mohm",
-             "MEG": "Mohm", "m": "mohm"}  # fmt: skip
+# 4k7, 2R2, 3V3: the prefix as decimal point
+_MARKED = re.compile(r"([pnumkKMGRVvAWF]|ohm)([0-9]{1,3})(?: ?(.*))?")
+_CONDUCTIVITY = frozenset(
+    ("W/mK", "W/m K", "W/m*K", "W/m degC", "W/mdegC", "W/m*degC", "W/Km", "W/K m", "W/K*m")
+)
+_RESISTOR = {
+    "R": "ohm", "r": "ohm", "E": "ohm", "m": "mohm", "k": "kohm", "K": "kohm", "M": "Mohm", "meg": "Mohm",
+    "Meg": "Mohm", "MEG": "Mohm",
+}  # fmt: skip
 _NUMBER_ONLY = re.compile(r"[+-]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?", re.ASCII)
 _COMMA = re.compile(r"([+-]?[0-9]+),([0-9]+) *(.*)", re.ASCII)
 _GROUPED = re.compile(r"([+-]?[0-9]{1,3}(?:[ _'][0-9]{3})+(?:\.[0-9]*)?) *([^0-9]*)", re.ASCII)
@@ -41,23 +46,31 @@ def not_text(value: object, dimension: str) -> QuantityError:
         return _example("true and false are not quantities", dimension)
     if isinstance(value, int | float):
         return _bare(f"{value:.12g}" if abs(value) < 1e300 else "1", dimension)
-    kind = "a list" if isinstance(value, list | tuple) else "a table" if isinstance(value, dict) else "a date or time"
-    if not isinstance(value, list | tuple | dict) and type(value).__module__ != "datetime":
-        kind = f"a {type(value).__name__}"
+    kind = f"a {type(value).__name__}"
+    if isinstance(value, list | tuple):
+        kind = "a list"
+    elif isinstance(value, dict):
+        kind = "a table"
+    elif type(value).__module__ == "datetime":
+        kind = "a date or time"
     return _example(f"{kind} stands where {a(dimension)} is wanted", dimension)
 
 
 def _bare(number: str, dimension: str) -> QuantityError:
     if dimension == "ratio":
         return _instead("a ratio is written in per cent", f"{float(number) * 100:.12g} %")
-    return _instead(f"a number without a unit; {a(dimension)} is wanted here", f"{number} {DIMENSIONS[dimension]}")
+    return _instead(
+        f"a number without a unit; {a(dimension)} is wanted here", f"{number} {DIMENSIONS[dimension]}"
+    )
 
 
 def _example(problem: str, dimension: str) -> QuantityError:
-    return QuantityError(problem, f'write a number and a unit in quotes, such as "10 {output_unit(dimension)}"')
+    return QuantityError(
+        problem, f'write a number and a unit in quotes, such as "10 {output_unit(dimension)}"'
+    )
 
 
-def not_a_quantity(text: str, dimension: str) -> QuantityError:
+def not_a_quantity(text: str, dimension: str) -> QuantityError:  # noqa: PLR0911 one return per mistake known
     """For a text that is not a number followed by a unit. `text` has its signs made plain and is stripped."""
     lowered = text.lower().lstrip("+-")
     unit = output_unit(dimension)
@@ -81,11 +94,15 @@ def not_a_quantity(text: str, dimension: str) -> QuantityError:
         return _example("a comma stands in the text", dimension)
     if match := _GROUPED.fullmatch(text):
         digits = re.sub("[ _']", "", match[1])
-        return _instead("the digits of a number are written together", f"{digits} {plain(match[2].strip()) or unit}")
+        return _instead(
+            "the digits of a number are written together", f"{digits} {plain(match[2].strip()) or unit}"
+        )
     if not any(ch.isdigit() for ch in text):
         return _example(f"no number in {plain(text)!r}", dimension)
     if _RANGE.match(text):
-        return _example("two numbers; a range is a list of two quantities, or min and max in a table", dimension)
+        return _example(
+            "two numbers; a range is a list of two quantities, or min and max in a table", dimension
+        )
     if any(sign in text for sign in "*^/()") and text[0] in "0123456789.+-(":
         return _example("nothing is evaluated: no arithmetic, one number and its unit", dimension)
     if re.match(r"[+-]?[0-9.]+[eE](?![+-]?[0-9])", text):
@@ -94,7 +111,7 @@ def not_a_quantity(text: str, dimension: str) -> QuantityError:
 
 
 def trap(number: str, spelling: str, written: str, dimension: str) -> None:
-    """Refuse what looks like a unit and means another; returns when the unit may be one that only pint knows."""
+    """Refuse what looks like a unit and means another; returns when pint alone may know the unit."""
     resistor = _RESISTOR.get(spelling)
     if resistor and dimension == "resistance":
         raise _instead(f"{plain(written)} alone is not a unit of resistance", f"{number} {resistor}")
@@ -114,7 +131,10 @@ def trap(number: str, spelling: str, written: str, dimension: str) -> None:
             raise _instead(f"{plain(written)} is not a thermal resistance", f"{number} K/W")
     if dimension == "voltage tempco" and (match := re.fullmatch(r"([mu]?V)/(?:C|c|k|deg|degK)", spelling)):
         raise _instead(f"{plain(written)} is not a voltage per kelvin", f"{number} {match[1]}/K")
-    if spelling in ("c", "degc", "degK", "\u0394K", "\u0394degC", "dK", "F", "k") and "temperature" in dimension:
+    if (
+        spelling in ("c", "degc", "degK", "\u0394K", "\u0394degC", "dK", "F", "k")
+        and "temperature" in dimension
+    ):
         unit = "degC" if dimension == "temperature" else "K"
         raise _instead(f"{plain(written)} is not how {a(dimension)} is written", f"{number} {unit}")
     if _folded(spelling):
@@ -147,13 +167,17 @@ def unknown_unit(number: str, spelling: str, written: str, dimension: str) -> Qu
     same_case = tuple(name for name in _folded(spelling) if UNITS[name].dimension == dimension)
     if same_case:
         offers = " or ".join(f'"{number} {name}"' for name in same_case[:2])
-        return QuantityError(f"{problem}; upper and lower case differ", f"was {offers} meant?", f"{number} {same_case[0]}")
+        return QuantityError(
+            f"{problem}; upper and lower case differ", f"was {offers} meant?", f"{number} {same_case[0]}"
+        )
     fitting = [name for name, unit in UNITS.items() if unit.dimension == dimension]
     near = get_close_matches(spelling[:40], fitting, n=1, cutoff=0.6)
     if near:
         return QuantityError(problem, f'was "{number} {near[0]}" meant?', f"{number} {near[0]}")
     unit = output_unit(dimension)
-    return QuantityError(f"{problem}; {a(dimension)} is wanted here", f'write it in {unit}: "{number} {unit}"')
+    return QuantityError(
+        f"{problem}; {a(dimension)} is wanted here", f'write it in {unit}: "{number} {unit}"'
+    )
 
 
 def temperature_kinds(number: str, unit: str, offset: bool, dimension: str) -> None:
@@ -182,16 +206,22 @@ def wrong_dimension(number: str, spelling: str, written: str, found: str, dimens
         if spelling in ("C", "deg"):
             unit = "degC" if dimension == "temperature" else "K"
             meaning = "coulomb" if spelling == "C" else "an angle"
-            return _instead(f"{a(dimension)} is wanted here, {plain(written)} alone is {meaning}", f"{number} {unit}")
+            return _instead(
+                f"{a(dimension)} is wanted here, {plain(written)} alone is {meaning}", f"{number} {unit}"
+            )
     if spelling in ("K", "m") and dimension == "resistance":
-        return _instead(f"{plain(written)} alone is not a unit of resistance", f"{number} {_RESISTOR[spelling]}")
+        return _instead(
+            f"{plain(written)} alone is not a unit of resistance", f"{number} {_RESISTOR[spelling]}"
+        )
     offers = [name for name in _folded(spelling) if UNITS[name].dimension == dimension]
     unit = offers[0] if offers else output_unit(dimension)
-    return _instead(f"{a(dimension)} is wanted here, {plain(written)} measures {a(found)}", f"{number} {unit}")
+    return _instead(
+        f"{a(dimension)} is wanted here, {plain(written)} measures {a(found)}", f"{number} {unit}"
+    )
 
 
 def implausible(
-    si: float, text: str, number: str, spelling: str, dimension: str, band: tuple[float, float]
+    si: float, text: str, number: str, spelling: str, *, dimension: str, band: tuple[float, float]
 ) -> QuantityError:
     """For a value outside the plausible range of its key."""
     low, high = (write(edge, dimension) for edge in band)

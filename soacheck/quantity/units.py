@@ -1,7 +1,7 @@
-"""The unit table: what each dimension may be written in, and how a spelling is brought to the one that the table has.
+"""The unit table: what each dimension may be written in, and how spellings are brought to the table's own.
 
-A unit is held as multiplier and divisor, not as one factor: 10 us is 10 / 1e6, which is exactly the float 1e-5,
-while 10 * 1e-6 is not.
+A unit is held as multiplier and divisor, not as one factor: 10 us is 10 / 1e6, which is exactly the float
+1e-5, while 10 * 1e-6 is not.
 """
 
 from __future__ import annotations
@@ -15,9 +15,9 @@ DIMENSIONS: dict[str, str] = {
     "voltage": "V", "current": "A", "power": "W", "resistance": "ohm", "thermal resistance": "K/W",
     "temperature": "degC",  # held in kelvin
     "temperature difference": "K", "time": "s", "frequency": "Hz", "energy": "J", "heat capacity": "J/K",
-    "inductance": "H", "capacitance": "F", "charge": "C", "conductance": "S", "ratio": "1", "voltage tempco": "V/K",
-    "length": "m", "area": "m^2", "thermal conductivity": "W/(m K)", "pressure": "Pa", "flow": "m^3/s",
-    "velocity": "m/s", "angle": "deg", "mass": "kg",
+    "inductance": "H", "capacitance": "F", "charge": "C", "conductance": "S", "ratio": "1",
+    "voltage tempco": "V/K", "length": "m", "area": "m^2", "thermal conductivity": "W/(m K)",
+    "pressure": "Pa", "flow": "m^3/s", "velocity": "m/s", "angle": "deg", "mass": "kg",
 }  # fmt: skip
 
 ZERO_CELSIUS = 273.15  # [K]
@@ -95,6 +95,13 @@ def _table() -> dict[str, Unit]:
     for dimension, spellings, name in _WORDS:
         for spelling in spellings.split():
             table[spelling] = table[name]._replace(dimension=dimension)
+    table.update(_units_of_their_own())
+    return table
+
+
+def _units_of_their_own() -> dict[str, Unit]:
+    """Units that take no prefix, or powers and quotients of units that do."""
+    table: dict[str, Unit] = {}
     table["degC"] = Unit("temperature", offset=ZERO_CELSIUS)
     table["%"] = table["percent"] = Unit("ratio", 1.0, 100.0)
     for name in ("K", "degC"):
@@ -120,8 +127,8 @@ def _table() -> dict[str, Unit]:
 
 UNITS: MappingProxyType[str, Unit] = MappingProxyType(_table())
 
-# Signs that mean the same, to the one the table uses. No blanket compatibility normalisation: that would turn the
-# ordinal sign into the letter o and a superscript two into the digit 2.
+# Signs that mean the same, to the one the table uses. No blanket compatibility normalisation: that would
+# turn the ordinal sign into the letter o and a superscript two into the digit 2.
 _SIGNS = str.maketrans({
     "\u00b5": "u", "\u03bc": "u",  # micro sign, Greek mu
     "\u2126": "ohm", "\u03a9": "ohm",  # ohm sign, Greek omega

@@ -31,7 +31,7 @@ _LADDERS: dict[str, tuple[str, ...]] = {
 
 
 def write(si: float, dimension: str, digits: int = 6) -> str:
-    """SI value to a text that `read` gives back, with an engineering prefix: 0.0022, "resistance" -> "2.2 mohm".
+    """SI value to a text that `read` gives back, with an engineering prefix: 0.0022 ohm is "2.2 mohm".
 
     ValueError for a value that is not finite: what is unknown is not written as a quantity.
     """

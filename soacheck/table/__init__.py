@@ -1,4 +1,5 @@
-"""Strict TOML tables: each key declared once, as data; reader, messages and templates all read that declaration."""
+"""Strict TOML tables: each key declared once, as data; reader, messages and templates all read that
+declaration."""
 
 from __future__ import annotations
 

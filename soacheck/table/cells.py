@@ -43,9 +43,10 @@ def traced(sheet: Sheet, dotted: str, symbol: str, stated: Stated) -> Traced:
 class Cells:
     """The values of one table of a file, read and checked. Travels no further than a reader.
 
-    Every accessor raises KeyError for a name that is not declared (a bug) and returns None when the key is absent
-    from the file and has no default, or does not exist for this kind of device. Bad values were already reported;
-    then accessors also return None, and `Document.finish()` raises InputError with all problems.
+    Every accessor raises KeyError for a name that is not declared (a bug) and returns None when the key is
+    absent from the file and has no default, or does not exist for this kind of device. Bad values were
+    already reported; then accessors also return None, and `Document.finish()` raises InputError with all
+    problems.
     """
 
     path: str  # dotted, as in the file: "soa[2]", counted from 1
@@ -85,8 +86,8 @@ class Cells:
         return given(key.name, value, whole.unit, f"{whole.source} ({part})", whole.grade)
 
     def quantity(self, name: str) -> Traced | None:
-        """One value over the cases, shape (case,); also for form "number". Grade set from the file or the key.
-        The typ of a [min, typ, max]; an operating range is read with `span`."""
+        """One value over the cases, shape (case,); also for form "number". Grade set from the file or the
+        key. The typ of a [min, typ, max]; an operating range is read with `span`."""
         key, value = self._value(name)
         if key is None or not isinstance(value, Stated):
             return None
@@ -95,9 +96,9 @@ class Cells:
         return self._traced(key, value)
 
     def three(self, name: str) -> tuple[Traced | None, Traced | None, Traced | None] | None:
-        """(min, typ, max) of a key with lists=3; a single value is (None, value, None), an inline table gives its
-        value as typ and its min and max. All three have the key's name as symbol. The ends of a list are what the
-        data sheet vouches for: "guaranteed" where the key has grades at all."""
+        """(min, typ, max) of a key with lists=3; a single value is (None, value, None), an inline table
+        gives its value as typ and its min and max. All three have the key's name as symbol. The ends of a
+        list are what the data sheet vouches for: "guaranteed" where the key has grades at all."""
         key, value = self._value(name)
         if key is None or not isinstance(value, Stated):
             return None
@@ -111,7 +112,8 @@ class Cells:
         return self._traced(key, ends, low, "min"), typ, self._traced(key, ends, high, "max")
 
     def span(self, name: str) -> tuple[Traced, Traced] | None:
-        """Both ends of an operating range (lists=2); equal for a single value. Both have the key's name as symbol."""
+        """Both ends of an operating range (lists=2); equal for a single value. Both have the key's name as
+        symbol."""
         key, value = self._value(name)
         if key is None or not isinstance(value, Stated):
             return None
@@ -171,7 +173,8 @@ class Cells:
         )
 
     def raw(self, name: str) -> object:
-        """The TOML value as it stands (tree, or a quantity's text), or the default's; None when absent or refused."""
+        """The TOML value as it stands (tree, or a quantity's text), or the default's; None when absent or
+        refused."""
         key = self.sheet.declared.key(self.table, name)
         if key is None or key.not_built:
             return None
@@ -179,7 +182,9 @@ class Cells:
             return self.data[name]
         return None if key.default is None else default_value(key)
 
-    def tree_quantity(self, path: str, value: object, dimension: str, band: tuple[float, float]) -> Traced | None:
+    def tree_quantity(
+        self, path: str, value: object, dimension: str, band: tuple[float, float]
+    ) -> Traced | None:
         """A quantity inside a tree; `path` is the dotted path from the file's root, elements counted from 1:
         "load.load.series[1].R". The symbol is the last name of the path. The band decides on the sign."""
         name = path.rpartition(".")[2].partition("[")[0]
@@ -196,7 +201,8 @@ class Cells:
         return traced(self.sheet, path, name, found)
 
     def refuse(self, name: str, problem: str, remedy: str) -> None:
-        """Report an input error about this key (name may be a path inside it: "load.series[1]"; "" is the table)."""
+        """Report an input error about this key (name may be a path inside it: "load.series[1]"; "" is the
+        table)."""
         dotted = f"{self.path}.{name}" if self.path and name else self.path or name
         self.sheet.ledger.refuse(dotted, problem, remedy)
 
@@ -206,4 +212,3 @@ class Cells:
         dotted = joined(self.path, name)
         fallback = f"state {dotted} in {self.sheet.ledger.source.base_name}"
         return Missing(key=dotted, where=(key.where if key else "") or fallback)
-

@@ -10,7 +10,7 @@ from soacheck.quantity import DIMENSIONS
 from soacheck.table.cells import Sheet, is_inline_quantity
 from soacheck.table.declare import Key
 from soacheck.table.ledger import joined
-from soacheck.table.values import Stated, spread_of, value_of
+from soacheck.table.values import Stated, Value, spread_of, value_of
 
 
 def check_table(sheet: Sheet, path: str, table: str, data: Mapping[str, Any]) -> None:
@@ -39,7 +39,9 @@ def check_table(sheet: Sheet, path: str, table: str, data: Mapping[str, Any]) ->
             offered.add(near)
     for name, key in own.items():
         if key.required and name not in data and name not in offered and not key.not_built:
-            ledger.refuse(joined(path, name), "this key is wanted and absent", _how_to_state(key, "[" in path))
+            ledger.refuse(
+                joined(path, name), "this key is wanted and absent", _how_to_state(key, "[" in path)
+            )
     if not path:
         for name in declared.top_tables() - data.keys() - offered:
             check_table(sheet, name, name, {})
@@ -60,29 +62,37 @@ def _how_to_state(key: Key, of_array: bool) -> str:
 
 
 def _check_key(sheet: Sheet, key: Key, dotted: str, raw: object) -> None:
-    ledger = sheet.ledger
     if key.not_built:
-        ledger.refuse(dotted, key.not_built, f"leave {key.name} out")
-    elif key.form == "tree":
-        return
+        sheet.ledger.refuse(dotted, key.not_built, f"leave {key.name} out")
     elif key.form == "table":
-        if isinstance(raw, dict):
-            check_table(sheet, dotted, key.path, raw)
-        else:
-            ledger.refuse(dotted, "a table is wanted here", f"{key.name} = {{ ... }}")
+        _check_inner(sheet, key, dotted, raw)
     elif key.form == "tables":
-        if isinstance(raw, list) and all(isinstance(element, dict) for element in raw):
-            for number, element in enumerate(raw, 1):
-                check_table(sheet, f"{dotted}[{number}]", key.path, element)
-        else:
-            ledger.refuse(dotted, f"{key.name} is a list of tables", f"head each with [[{key.path}]]")
+        _check_array(sheet, key, dotted, raw)
     elif key.inside and isinstance(raw, dict) and not is_inline_quantity(key, raw, sheet.declared):
         check_table(sheet, dotted, key.path, raw)
+    elif key.form != "tree":  # a tree is read by its owner
+        _keep(sheet, dotted, value_of(key, dotted, raw, sheet.ledger))
+
+
+def _check_inner(sheet: Sheet, key: Key, dotted: str, raw: object) -> None:
+    if isinstance(raw, dict):
+        check_table(sheet, dotted, key.path, raw)
     else:
-        value = value_of(key, dotted, raw, ledger)
-        if value is None:
-            return
-        sheet.values[dotted] = value
-        spread = spread_of(dotted, value) if isinstance(value, Stated) else None
-        if spread is not None:
-            ledger.spreads[dotted] = spread
+        sheet.ledger.refuse(dotted, "a table is wanted here", f"{key.name} = {{ ... }}")
+
+
+def _check_array(sheet: Sheet, key: Key, dotted: str, raw: object) -> None:
+    if not isinstance(raw, list) or not all(isinstance(element, dict) for element in raw):
+        sheet.ledger.refuse(dotted, f"{key.name} is a list of tables", f"head each with [[{key.path}]]")
+        return
+    for number, element in enumerate(raw, 1):
+        check_table(sheet, f"{dotted}[{number}]", key.path, element)
+
+
+def _keep(sheet: Sheet, dotted: str, value: Value | None) -> None:
+    if value is None:
+        return
+    sheet.values[dotted] = value
+    spread = spread_of(dotted, value) if isinstance(value, Stated) else None
+    if spread is not None:
+        sheet.ledger.spreads[dotted] = spread

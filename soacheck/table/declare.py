@@ -21,18 +21,19 @@ MOST_SPREADS = 10  # 2**10 corners
 class Key:
     """One key of a file.
 
-    table: dotted table path as in the file: "max", "load", "load.bias", "thermal.Z_th_jc", "soa" (array of tables).
-           A table exists when a key is declared under it; "" is the root of the file. An array of tables is declared
-           by a key of form "tables": Key(table="", name="soa", form="tables"), its own keys under table "soa".
-    form:  quantity (text "number unit", or inline table value/min/max/tol/source/grade), number (bare, no unit;
-           same inline table allowed), count (whole number >= 1), text, flag (true/false), choice (one of `choices`),
-           points (list of lists, one dimension per column; with a single column a flat list),
-           table (inline or [table] with keys declared under table + "." + name), tables (array of tables), tree
-           (nested inline tables and lists, read by the owner with Cells.tree_quantity).
+    table: dotted table path as in the file: "max", "load", "load.bias", "thermal.Z_th_jc", "soa" (array of
+           tables). A table exists when a key is declared under it; "" is the root of the file. An array of
+           tables is declared by a key of form "tables": Key(table="", name="soa", form="tables"), its own
+           keys under table "soa".
+    form:  quantity (text "number unit", or inline table value/min/max/tol/source/grade), number (bare, no
+           unit; same inline table allowed), count (whole number >= 1), text, flag (true/false), choice (one
+           of `choices`), points (list of lists, one dimension per column; with a single column a flat list),
+           table (inline or [table] with keys declared under table + "." + name), tables (array of tables),
+           tree (nested inline tables and lists, read by the owner with Cells.tree_quantity).
     A `quantity` may also allow words (`choices`, e.g. "ideal", "none") or an inline table of its own keys
     (`inside=True`): heatsink = "1.6 K/W" | "ideal" | { R_th = ... }.
-    `band` and `sign` hold for every single value, list element and one-column point; points of several columns are
-    checked by their owner.
+    `band` and `sign` hold for every single value, list element and one-column point; points of several
+    columns are checked by their owner.
     """
 
     table: str
@@ -46,7 +47,7 @@ class Key:
     choices: tuple[str, ...] = ()
     inside: bool = False
     belongs_to: frozenset[str] | None = None  # device kinds; None = all
-    role: str = ""  # keys of one table that mean the same on other kinds of device share a role: V_CEO, V_DSS, V_CES
+    role: str = ""  # shared by keys of one table that mean the same on other kinds: V_CEO, V_DSS, V_CES
     required: bool = False
     default: str | None = None  # text as it would be written in the file; quotes may be left off
     assumption: str = ""  # sentence listed as an assumption when the default is taken

@@ -46,7 +46,8 @@ class Declared:
         return {path for path in self.tables if path and "." not in path} - self.own("").keys()
 
     def key(self, table: str, name: str) -> Key | None:
-        """The declaration; None for a key of another kind of device. KeyError when there is none at all: a bug."""
+        """The declaration; None for a key of another kind of device. KeyError when there is none at all: a
+        bug."""
         key = self.own(table).get(name)
         if key is None and (table, name) not in self._foreign:
             raise KeyError(f"{table}.{name} is not declared")
@@ -68,7 +69,9 @@ class Declared:
             right = self._same(name, homes[0])
             if not homes[0]:
                 return problem, f"{right} stands at the top of the file", ""
-            misplaced = f"{shown} does not belong under {where}" if table else f"{shown} stands outside its table"
+            misplaced = (
+                f"{shown} does not belong under {where}" if table else f"{shown} stands outside its table"
+            )
             return misplaced, f"put {right} under [{homes[0]}]", ""
         near = nearest(name, own, _NEAR)
         opposite = {_RATINGS: _CHARACTERISTICS, _CHARACTERISTICS: _RATINGS}.get(table)
@@ -89,6 +92,11 @@ class Declared:
         kinds = " ".join(sorted(foreign.belongs_to or ()))
         problem = f"{foreign.name} belongs to {kinds}; the device here is {self.device_kind}"
         twin = next(
-            (key.name for key in self.own(foreign.table).values() if foreign.role and key.role == foreign.role), ""
+            (
+                key.name
+                for key in self.own(foreign.table).values()
+                if foreign.role and key.role == foreign.role
+            ),
+            "",
         )
         return problem, f"here it is {twin}:" if twin else "leave it out", twin

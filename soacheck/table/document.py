@@ -73,11 +73,13 @@ class Document:
         self.sheet.ledger.finish()
 
     def keys_stated(self) -> tuple[str, ...]:
-        """The dotted path of every value in the file, in its order; elements of lists and arrays count from 1."""
+        """The dotted path of every value in the file, in its order; elements of lists and arrays count from
+        1."""
         return tuple(_leaves("", self.source.data, self.sheet))
 
     def stated(self) -> tuple[Traced, ...]:
-        """Every stated quantity and number in the order of the file; the ends of lists one after the other."""
+        """Every stated quantity and number in the order of the file; the ends of lists one after the
+        other."""
         found: list[Traced] = []
         for path in self.keys_stated():
             value = self.sheet.values.get(path)
@@ -106,14 +108,18 @@ def _leaves(path: str, raw: object, sheet: Sheet) -> Iterator[str]:
             yield from _leaves(f"{path}[{number}]", inner, sheet)
 
 
-def read_document(path: Path, keys: Sequence[Key], *, shown_as: str, device_kind: str | None = None) -> Document:
-    """Read a TOML file against the declarations. Raises InputError at once only when it cannot be parsed; what is
-    wrong with its keys and values waits for `Document.finish()`, so that the readers can add theirs."""
+def read_document(
+    path: Path, keys: Sequence[Key], *, shown_as: str, device_kind: str | None = None
+) -> Document:
+    """Read a TOML file against the declarations. Raises InputError at once only when it cannot be parsed;
+    what is wrong with its keys and values waits for `Document.finish()`, so that the readers can add
+    theirs."""
     return check_source(read_source(path, shown_as=shown_as), keys, device_kind=device_kind)
 
 
 def check_source(source: Source, keys: Sequence[Key], *, device_kind: str | None = None) -> Document:
-    """A parsed file against the declarations: for a reader that must peek at a kind before it knows the keys."""
+    """A parsed file against the declarations: for a reader that must peek at a kind before it knows the
+    keys."""
     sheet = Sheet(Declared(keys, device_kind), Ledger(source), {}, CasePlan())
     check_table(sheet, "", "", source.data)
     return Document(source, sheet)

@@ -1,4 +1,5 @@
-"""What a document's readers find out as they go: problems, spreads, assumptions, cautions. Each is noted once."""
+"""What a document's readers find out as they go: problems, spreads, assumptions, cautions. Each is noted
+once."""
 
 from __future__ import annotations
 
@@ -13,7 +14,9 @@ from soacheck.table.toml_text import Source
 
 _PLAIN_NAME = re.compile(r"[A-Za-z0-9_-]+")
 _LONGEST_VALUE = 60
-MOST_PROBLEMS = 100  # a file with more is not a rating or stage file; looking for near names would take seconds
+MOST_PROBLEMS = (
+    100  # a file with more is not a rating or stage file; looking for near names would take seconds
+)
 
 
 def joined(path: str, name: str) -> str:
@@ -24,7 +27,8 @@ def joined(path: str, name: str) -> str:
 
 
 def as_written(text: str) -> str:
-    """A value's text in the file for a message: a string in single quotes, anything else as it stands, cut short."""
+    """A value's text in the file for a message: a string in single quotes, anything else as it stands, cut
+    short."""
     if text[:1] in ("'", '"'):
         text = f"'{tomllib.loads('x = ' + text)['x']}'"
     text = " ".join(text.split()) if "\n" in text else text
@@ -77,7 +81,9 @@ class Ledger:
         found.sort(key=lambda item: len(self.source.text) if item.line is None else item.line)
         if self.full:
             remedy = "put these right first"
-            found.append(Problem(file=self.source.file, problem="there is more, not listed here", remedy=remedy))
+            found.append(
+                Problem(file=self.source.file, problem="there is more, not listed here", remedy=remedy)
+            )
         return tuple(found)
 
     def finish(self) -> None:

@@ -1,4 +1,4 @@
-"""Where each key stands in a TOML text that the parser has already accepted. Built only when something is wrong."""
+"""Where each key stands in a TOML text that the parser has already accepted. Built only when needed."""
 
 from __future__ import annotations
 
@@ -105,7 +105,8 @@ class _Index:
         return path
 
     def run(self) -> dict[Path, Place]:
-        at, base = 0, ()
+        at = 0
+        base: Path = ()
         while True:
             at = self.skip(at)
             if at >= len(self.text):
@@ -149,7 +150,8 @@ def parts_of(dotted: str) -> Path:
 
 
 def place_of(text: str, dotted: str) -> Place | None:
-    """The place of a dotted key; of the nearest thing around it when the key itself is absent, then without value."""
+    """The place of a dotted key; of the nearest thing around it when the key itself is absent, then without
+    value."""
     index = places(text)
     parts = parts_of(dotted)
     if parts in index:

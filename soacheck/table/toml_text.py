@@ -1,4 +1,5 @@
-"""A TOML file read through a guard: it answers at once, whatever the path points at and whatever stands in it."""
+"""A TOML file read through a guard: it answers at once, whatever the path points at and whatever stands in
+it."""
 
 from __future__ import annotations
 
@@ -16,12 +17,12 @@ from soacheck.errors import InputError, Problem, plain
 
 MOST_BYTES = 1_000_000  # a rating file has some thirty thousand
 MOST_LINES = 10_000
-MOST_PARTS = 50  # of a dotted key: the parser's time grows with their square
+MOST_PARTS = 16  # of a dotted key: the parser's time grows with their square
 MOST_DEPTH = 16  # nested tables and lists
 
 _PLACE = re.compile(r" \(at line (\d+), column (\d+)\)$")
 _STRINGS = re.compile(r'"(?:[^"\\\n]|\\.)*"|\'[^\'\n]*\'')
-_LONG_KEY = re.compile(r"(?<![\w-])(?:[\w-]+[ \t]*\.[ \t]*){%d}" % MOST_PARTS)
+_LONG_KEY = re.compile(rf"(?<![\w-])(?:[\w-]+[ \t]*\.[ \t]*){{{MOST_PARTS}}}")
 _NUMBER_WITH_UNIT = re.compile(r"=[ \t]*([+-]?\.?[0-9][0-9.eE+_-]*[ \t]*[^\s#,\]}\"'][^#\"'\n]*)")
 
 
@@ -39,7 +40,8 @@ class Source:
         return Path(self.file).name
 
     def peek(self, table: str, name: str) -> object:
-        """The raw value of a key, None when it or its table is absent: to learn a kind before the keys are known."""
+        """The raw value of a key, None when it or its table is absent: to learn a kind before the keys are
+        known."""
         part: Any = self.data
         for step in [*filter(None, table.split(".")), name]:
             part = part.get(step) if isinstance(part, dict) else None
@@ -49,7 +51,9 @@ class Source:
 def read_source(path: Path, *, shown_as: str) -> Source:
     """Read and parse a TOML file. InputError with line and column for whatever is wrong with it as TOML."""
     content = _content(path, shown_as)
-    return parse_source(_decoded(content, shown_as), shown_as=shown_as, sha256=hashlib.sha256(content).hexdigest())
+    return parse_source(
+        _decoded(content, shown_as), shown_as=shown_as, sha256=hashlib.sha256(content).hexdigest()
+    )
 
 
 def parse_source(text: str, *, shown_as: str, sha256: str = "") -> Source:
@@ -57,7 +61,9 @@ def parse_source(text: str, *, shown_as: str, sha256: str = "") -> Source:
     if not sha256:
         sha256 = hashlib.sha256(text.encode("utf-8", "surrogatepass")).hexdigest()
     if not text.strip():
-        raise InputError(Problem(file=shown_as, problem="the file is empty", remedy="`soacheck device new` starts one"))
+        raise InputError(
+            Problem(file=shown_as, problem="the file is empty", remedy="`soacheck device new` starts one")
+        )
     _guard(text, shown_as)
     try:
         data = tomllib.loads(text)
@@ -94,7 +100,9 @@ def _content(path: Path, shown_as: str) -> bytes:
     finally:
         os.close(descriptor)
     if len(content) > MOST_BYTES:
-        raise refused(f"the file is larger than {MOST_BYTES // 1_000_000} MB", "a rating or stage file has a few kB")
+        raise refused(
+            f"the file is larger than {MOST_BYTES // 1_000_000} MB", "a rating or stage file has a few kB"
+        )
     return content
 
 
@@ -115,7 +123,11 @@ def _guard(text: str, shown_as: str) -> None:
     """Refuse what would keep the parser busy for seconds."""
     if text.count("\n") > MOST_LINES:
         raise InputError(
-            Problem(file=shown_as, problem=f"more than {MOST_LINES} lines", remedy="a rating or stage file is shorter")
+            Problem(
+                file=shown_as,
+                problem=f"more than {MOST_LINES} lines",
+                remedy="a rating or stage file is shorter",
+            )
         )
     for number, line in enumerate(text.split("\n"), 1):
         if line.count(".") >= MOST_PARTS and _LONG_KEY.search(_STRINGS.sub("q", line)):
@@ -127,10 +139,10 @@ def _guard(text: str, shown_as: str) -> None:
             )  # fmt: skip
     lone = re.search("\r(?!\n)", text)
     if lone is not None:
-        line = text.count("\n", 0, lone.start()) + 1
+        at = text.count("\n", 0, lone.start()) + 1
         raise InputError(
             Problem(
-                file=shown_as, line=line, problem="lines end in a lone carriage return",
+                file=shown_as, line=at, problem="lines end in a lone carriage return",
                 remedy="save the file with line feeds, as editors do",
             )
         )  # fmt: skip
@@ -138,7 +150,11 @@ def _guard(text: str, shown_as: str) -> None:
 
 def _too_deep(shown_as: str) -> InputError:
     return InputError(
-        Problem(file=shown_as, problem="tables or lists are nested too deeply", remedy=f"{MOST_DEPTH} deep at most")
+        Problem(
+            file=shown_as,
+            problem="tables or lists are nested too deeply",
+            remedy=f"{MOST_DEPTH} deep at most",
+        )
     )
 
 
@@ -165,39 +181,63 @@ def _syntax(error: ValueError, text: str, shown_as: str) -> Problem:
     lines = text.split("\n")
     if line is None:
         if "integer string conversion" in message:
-            return Problem(file=shown_as, problem="a number with thousands of digits", remedy="write it as 1e3")
+            return Problem(
+                file=shown_as, problem="a number with thousands of digits", remedy="write it as 1e3"
+            )
         line = len(text.rstrip().split("\n"))
-        message += ", and the file ends"
+        message += "" if message.startswith("Cannot") else ", and the file ends"
     here = lines[line - 1][:500] if line <= len(lines) else ""
     problem = f"not valid TOML: {plain(message, 120)}"
     if column is not None and here.isprintable() and len(here) <= 200:
         problem += f"\n{here}\n{' ' * (min(column, len(here) + 1) - 1)}^"
-    return Problem(file=shown_as, line=line, column=column, problem=problem, remedy=_syntax_remedy(message, here))
+    return Problem(
+        file=shown_as, line=line, column=column, problem=problem, remedy=_syntax_remedy(message, here)
+    )
+
+
+# What a line looks like, and what to write instead. The first that fits is offered; texts are blanked out
+# before.
+_SLIPS: tuple[tuple[re.Pattern[str], str], ...] = (
+    (
+        re.compile(r"=[ \t]*(?:True|TRUE|False|FALSE|[Yy]es|[Nn]o|on|off)\b"),
+        "write true or false, in lower case",
+    ),
+    (re.compile(r"=[ \t]*[+-]?\.[0-9]"), "write a digit before the decimal point: 0.5"),
+    (re.compile(r"^[ \t]*[\w.-]+[ \t]*:"), "a key and its value are joined by =, not by a colon"),
+)
+_MESSAGES: tuple[tuple[re.Pattern[str], str], ...] = (
+    (re.compile("Illegal character"), "remove the control character"),
+    (re.compile("after a key"), "keys are letters, digits, _ and -, then = and the value"),
+    (re.compile("escape|[Hh]ex value"), "write text with backslashes in single quotes: 'C:\\sheets'"),
+    (re.compile("end|[Cc]losed|Unterminated"), "close every quote and every bracket"),
+)
+_TWICE = re.compile("Cannot (?:overwrite|declare|mutate|redefine)|Duplicate")
 
 
 def _syntax_remedy(message: str, here: str) -> str:
-    bare = _STRINGS.sub('""', here)
-    key, _, rest = here.partition("=")
-    key = key.strip()
     if any(quote in here for quote in "\u201c\u201d\u201e\u2018\u2019\u00ab\u00bb"):
         return 'use plain quotes: "'
-    if message.startswith(("Cannot overwrite", "Cannot declare", "Cannot mutate", "Cannot redefine", "Duplicate")):
-        name = key if "=" in here else here.strip()
-        return f"{plain(name)} stands twice in the file: state each key and each table once"
+    if any(ch.isspace() and ch not in " \t" for ch in here):
+        return "a blank of another kind (no-break space) stands in the line: type a plain one"
+    return _of_the_value(message, here) or next(
+        (remedy for pattern, remedy in _MESSAGES if pattern.search(message)),
+        'a line is `name = "value"`, a [table] or a # comment',
+    )
+
+
+def _of_the_value(message: str, here: str) -> str:
+    """The remedy that the line itself suggests, "" for none."""
+    bare = _STRINGS.sub('""', here)
+    key, equals, rest = (part.strip() for part in here.partition("="))
+    if _TWICE.match(message):
+        name = plain(key if equals else here.strip())
+        return f"{name} stands twice in the file: state each key and each table once"
+    if match := re.search(r"=[ \t]*([+-]?[0-9]+),([0-9]+)", bare):
+        number = f"{match[1]}.{match[2]}"
+        return f"use a decimal point, and quotes when there is a unit: {plain(key)} = {number}"
     if match := _NUMBER_WITH_UNIT.search(here):
         return f'values with units need quotes: {plain(key)} = "{plain(match[1].strip())}"'
-    if re.search(r"=[ \t]*(?:True|TRUE|False|FALSE|yes|Yes|no|No|on|off)\b", bare):
-        return "true and false are written in lower case, without quotes"
-    if re.search(r"=[ \t]*[+-]?\.[0-9]", bare):
-        return "write a digit before the decimal point: 0.5"
-    if "=" not in bare and re.search(r"^[ \t]*[\w.-]+[ \t]*:", bare):
-        return "a key and its value are joined by =, not by a colon"
-    if "after a key" in message:
-        return "keys are letters, digits, _ and -, then = and the value"
-    if "\\" in here and ("escape" in message or "hex" in message):
-        return "write text with backslashes in single quotes: 'C:\\sheets'"
-    if re.search(r"=[ \t]*[A-Za-z]", bare):
-        return f'text needs quotes: {plain(key)} = "{plain(rest.strip())}"'
-    if "end" in message or "closed" in message.lower() or "Unterminated" in message:
-        return "close every quote and every bracket"
-    return 'a line is `name = "value"`, a [table] or a # comment'
+    slip = next((remedy for pattern, remedy in _SLIPS if pattern.search(bare)), "")
+    if not slip and re.search(r"=[ \t]*[A-Za-z]", bare):
+        return f'text needs quotes: {plain(key)} = "{plain(rest)}"'
+    return slip

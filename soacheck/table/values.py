@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import math
 import tomllib
-from dataclasses import dataclass
+from collections.abc import Callable
+from dataclasses import dataclass, replace
 
 from soacheck.errors import QuantityError, plain
 from soacheck.quantity import DIMENSIONS, read
@@ -54,34 +55,35 @@ def default_value(key: Key) -> object:
 
 def value_of(key: Key, dotted: str, raw: object, ledger: Ledger) -> Value | None:
     """The value of a key of any form but table, tables and tree; None when it is wrong, and noted."""
-    match key.form:
-        case "quantity" | "number":
-            return _quantity(key, dotted, raw, ledger)
-        case "count":
-            if isinstance(raw, int) and not isinstance(raw, bool) and 1 <= raw <= 10**9:
-                return raw
-            ledger.refuse(dotted, "a whole number of at least 1 is wanted here", f"{key.name} = 1")
-        case "text":
-            if isinstance(raw, str):
-                return raw
-            ledger.refuse(dotted, "a text is wanted here", f'{key.name} = "..."')
-        case "flag":
-            if isinstance(raw, bool):
-                return raw
-            ledger.refuse(dotted, "true or false is wanted here, without quotes", f"{key.name} = true")
-        case "choice":
-            if isinstance(raw, str) and raw in key.choices:
-                return raw
-            _refuse_choice(key, dotted, raw, ledger)
-        case "points":
-            return _points(key, dotted, raw, ledger)
+    return _READERS[key.form](key, dotted, raw, ledger)
+
+
+def _count(key: Key, dotted: str, raw: object, ledger: Ledger) -> int | None:
+    if isinstance(raw, int) and not isinstance(raw, bool) and 1 <= raw <= 10**9:
+        return raw
+    ledger.refuse(dotted, "a whole number of at least 1 is wanted here", f"{key.name} = 1")
     return None
 
 
-def _refuse_choice(key: Key, dotted: str, raw: object, ledger: Ledger) -> None:
-    known = ", ".join(f'"{word}"' for word in key.choices)
-    near = nearest(raw, key.choices) if isinstance(raw, str) else None
-    ledger.refuse(dotted, f"one of {known} is wanted here", f'{key.name} = "{near or key.choices[0]}"')
+def _plain_text(key: Key, dotted: str, raw: object, ledger: Ledger) -> str | None:
+    if isinstance(raw, str):
+        return raw
+    ledger.refuse(dotted, "a text is wanted here", f'{key.name} = "..."')
+    return None
+
+
+def _flag(key: Key, dotted: str, raw: object, ledger: Ledger) -> bool | None:
+    if isinstance(raw, bool):
+        return raw
+    ledger.refuse(dotted, "true or false is wanted here, without quotes", f"{key.name} = true")
+    return None
+
+
+def _choice(key: Key, dotted: str, raw: object, ledger: Ledger) -> str | None:
+    if isinstance(raw, str) and raw in key.choices:
+        return raw
+    _refuse_word(key, dotted, raw, ledger)
+    return None
 
 
 def _quantity(key: Key, dotted: str, raw: object, ledger: Ledger) -> Stated | Word | None:
@@ -98,10 +100,11 @@ def _quantity(key: Key, dotted: str, raw: object, ledger: Ledger) -> Stated | Wo
     return None if si is None else Stated(nominal=si, unit=unit_of(key), grade=key.grade)
 
 
-def _refuse_word(key: Key, dotted: str, raw: str, ledger: Ledger) -> None:
+def _refuse_word(key: Key, dotted: str, raw: object, ledger: Ledger) -> None:
     known = ", ".join(f'"{word}"' for word in key.choices)
-    near = nearest(raw, key.choices) or key.choices[0]
-    ledger.refuse(dotted, f"a quantity or one of {known} is wanted here", f'{key.name} = "{near}"')
+    near = (nearest(raw, key.choices) if isinstance(raw, str) else None) or key.choices[0]
+    wanted = "one of" if key.form == "choice" else "a quantity or one of"
+    ledger.refuse(dotted, f"{wanted} {known} is wanted here", f'{key.name} = "{near}"')
 
 
 def single(key: Key, dotted: str, name: str, raw: object, ledger: Ledger) -> float | None:
@@ -158,9 +161,13 @@ def _list(key: Key, dotted: str, raw: list[object], ledger: Ledger) -> Stated | 
     if key.lists == 0:
         ledger.refuse(dotted, "one value is wanted here, not a list", f'{key.name} = "{_example(key)}"')
         return None
-    words = "an operating range is a list of two, [from, to]" if key.lists == 2 else "a list is [min, typ, max]"
+    words = (
+        "an operating range is a list of two, [from, to]" if key.lists == 2 else "a list is [min, typ, max]"
+    )
     if len(raw) != key.lists:
-        ledger.refuse(dotted, f"{words}; {len(raw)} values stand here", f"give {key.lists} values, or one alone")
+        ledger.refuse(
+            dotted, f"{words}; {len(raw)} values stand here", f"give {key.lists} values, or one alone"
+        )
         return None
     ends = []
     for number, element in enumerate(raw, 1):
@@ -194,7 +201,9 @@ def _inline(key: Key, dotted: str, raw: dict[str, object], ledger: Ledger) -> St
         good = False
     if "grade" in raw and grade not in GRADES:
         near = nearest(grade, GRADES) if isinstance(grade, str) else None
-        ledger.refuse(f"{dotted}.grade", "a grade is one of " + ", ".join(GRADES), f'grade = "{near or GRADES[0]}"')
+        ledger.refuse(
+            f"{dotted}.grade", "a grade is one of " + ", ".join(GRADES), f'grade = "{near or GRADES[0]}"'
+        )
         good = False
     if "value" not in raw:
         ledger.refuse(dotted, "the value is missing", f'{key.name} = {{ value = "{_example(key)}", ... }}')
@@ -206,7 +215,9 @@ def _inline(key: Key, dotted: str, raw: dict[str, object], ledger: Ledger) -> St
     if ends is None:
         return None
     low, high = ends if ends != (nominal, nominal) else (None, None)
-    return Stated(nominal=nominal, unit=unit_of(key), low=low, high=high, source=str(source), grade=str(grade))
+    return Stated(
+        nominal=nominal, unit=unit_of(key), low=low, high=high, source=str(source), grade=str(grade)
+    )
 
 
 def _uncertainty(
@@ -235,9 +246,13 @@ def _uncertainty(
     return low, high
 
 
-def _tolerance(key: Key, dotted: str, raw: object, nominal: float, ledger: Ledger) -> tuple[float, float] | None:
+def _tolerance(
+    key: Key, dotted: str, raw: object, nominal: float, ledger: Ledger
+) -> tuple[float, float] | None:
     if key.dimension == "temperature":  # a percentage of a temperature means nothing
-        wanted = Key(table="", name="tol", dimension="temperature difference", sign="non-negative", band=(0.0, 500.0))
+        wanted = Key(
+            table="", name="tol", dimension="temperature difference", sign="non-negative", band=(0.0, 500.0)
+        )
         margin = single(wanted, dotted, "tol", raw, ledger)
     else:
         wanted = Key(table="", name="tol", dimension="ratio", sign="non-negative", band=(0.0, 0.99))
@@ -247,7 +262,9 @@ def _tolerance(key: Key, dotted: str, raw: object, nominal: float, ledger: Ledge
         return None
     low, high = nominal - margin, nominal + margin
     if key.band is not None and not (key.band[0] <= low and high <= key.band[1]):
-        ledger.refuse(dotted, "the value with this tolerance leaves what is plausible here", "check the tolerance")
+        ledger.refuse(
+            dotted, "the value with this tolerance leaves what is plausible here", "check the tolerance"
+        )
         return None
     return low, high
 
@@ -258,8 +275,13 @@ def _points(key: Key, dotted: str, raw: object, ledger: Ledger) -> FloatArray | 
     row = "[" + ", ".join(f'"1 {DIMENSIONS[column]}"' if column else "1" for column in key.columns) + "]"
     remedy = f"{key.name} = [{row}, ...]" if width > 1 else f"{key.name} = {row[:-1]}, ...]"
     if not isinstance(raw, list) or not raw:
-        ledger.refuse(dotted, "a list of points is wanted here" if width > 1 else "a list is wanted here", remedy)
+        ledger.refuse(
+            dotted, "a list of points is wanted here" if width > 1 else "a list is wanted here", remedy
+        )
         return None
+    columns = [Key(table="", name="", dimension=column, sign="any") for column in key.columns]
+    if width == 1:
+        columns = [replace(columns[0], band=key.band, sign=key.sign)]
     good = True
     rows: list[list[float]] = []
     for number, element in enumerate(raw, 1):
@@ -271,12 +293,8 @@ def _points(key: Key, dotted: str, raw: object, ledger: Ledger) -> FloatArray | 
             good = False
             continue
         values = []
-        for place, (cell, dimension) in enumerate(zip(cells, key.columns, strict=True), 1):
+        for place, (cell, column) in enumerate(zip(cells, columns, strict=True), 1):
             inner = f"{dotted}[{number}][{place}]" if isinstance(element, list) else f"{dotted}[{number}]"
-            column = Key(
-                table="", name="", dimension=dimension, band=key.band if width == 1 else None,
-                sign=key.sign if width == 1 else "any",
-            )  # fmt: skip
             si = single(column, inner, "", cell, ledger)
             good = good and si is not None
             values.append(math.nan if si is None else si)
@@ -289,3 +307,14 @@ def spread_of(dotted: str, stated: Stated) -> Spread | None:
     if stated.low is None or stated.high is None:
         return None
     return Spread(key=dotted, nominal=stated.nominal, low=stated.low, high=stated.high)
+
+
+_READERS: dict[str, Callable[[Key, str, object, Ledger], Value | None]] = {
+    "quantity": _quantity,
+    "number": _quantity,
+    "count": _count,
+    "text": _plain_text,
+    "flag": _flag,
+    "choice": _choice,
+    "points": _points,
+}
