@@ -1,10 +1,10 @@
 """Load kind `push-pull`: a complementary output stage, class B or AB, on two rails.
 
-Level and frequency are searched as the file asks for. The load current is sinusoidal at any angle of the load; the
-current of each half follows from the exact crossover of two exponential devices with emitter resistors (MOSFETs and
-IGBTs: of two square-law devices, which errs to more current). `level = "any"` is every level from silence to the
-largest unclipped swing; `"clipped"` is a sine driven 20 dB into the rails, flat for 94 % of the time, with the load's
-answer to it. With f absent every output voltage may be held for ever.
+Level and frequency are searched as the file asks for. The load current is sinusoidal at any angle of the
+load; the current of each half follows from the exact crossover of two exponential devices with emitter
+resistors (MOSFETs and IGBTs: of two square-law devices, which errs to more current). `level = "any"` is every
+level from silence to the largest unclipped swing; `"clipped"` is a sine driven 20 dB into the rails, flat for
+94 % of the time, with the load's answer to it. With f absent every output voltage may be held for ever.
 """
 
 from __future__ import annotations
@@ -28,47 +28,128 @@ _CIRCUIT = "the circuit diagram"
 
 def _resistor(name: str, of: frozenset[str], word: str) -> Key:
     return Key(
-        table="load", name=name, dimension="resistance", band=(0.0, 100.0), sign="non-negative", belongs_to=of,
-        default="0 ohm", assumption=f"no {word} resistors ({name} not stated)", grade="",
-        meaning=f"{word.capitalize()} resistor of each device.", where=_CIRCUIT,
-    )  # fmt: skip
+        table="load",
+        name=name,
+        dimension="resistance",
+        band=(0.0, 100.0),
+        sign="non-negative",
+        belongs_to=of,
+        role="R_E",
+        default="0 ohm",
+        assumption=f"no {word} resistors ({name} not stated)",
+        grade="",
+        meaning=f"{word.capitalize()} resistor of each device.",
+        where=_CIRCUIT,
+    )
 
 
 KEYS: tuple[Key, ...] = (
-    Key(table="load", name="V_rail", dimension="voltage", band=(0.5, 5000.0), required=True, grade="",
+    Key(
+        table="load",
+        name="V_rail",
+        dimension="voltage",
+        band=(0.5, 5000.0),
+        required=True,
+        grade="",
         meaning="Each of the two equal rails, highest mains and no load where that is possible.",
-        where="the power supply: transformer, mains tolerance, regulation"),
-    Key(table="load", name="load", form="tree", required=True, grade="",
-        meaning='The load: "8 ohm", { R = "6 ohm", L = "1.2 mH" }, nested series and parallel, or { table = "z.csv" }.',
-        where="the loudspeaker's, motor's or transformer's impedance curve"),
-    Key(table="load", name="f", dimension="frequency", band=(1e-3, 1e7), lists=2, grade="",
-        meaning="Frequency, or a range that is always searched; absent: each output voltage may be held for ever.",
-        where="the signal that the stage is for"),
-    Key(table="load", name="level", form="tree", required=True, grade="",
-        meaning='"any", "clipped", a peak voltage at the load, or a percentage of the largest unclipped swing.',
-        where="the signal that the stage is for"),
-    Key(table="load", name="I_Q", dimension="current", band=(0.0, 100.0), sign="non-negative", default="0 A",
-        assumption="no idle current: ideal class B (I_Q not stated)", grade="",
-        meaning="Idle current of each device.", where="the bias adjustment: voltage over an emitter or source resistor"),
+        where="the power supply: transformer, mains tolerance, regulation",
+    ),
+    Key(
+        table="load",
+        name="load",
+        form="tree",
+        required=True,
+        grade="",
+        meaning='"8 ohm", { R = "6 ohm", L = "1.2 mH" }, nested series and parallel, or { table = "z.csv" }.',
+        where="the loudspeaker's, motor's or transformer's impedance curve",
+    ),
+    Key(
+        table="load",
+        name="f",
+        dimension="frequency",
+        band=(1e-3, 1e7),
+        lists=2,
+        grade="",
+        meaning="Frequency, or a range that is always searched; absent: any output may be held for ever.",
+        where="the signal that the stage is for",
+    ),
+    Key(
+        table="load",
+        name="level",
+        form="tree",
+        required=True,
+        grade="",
+        meaning='"any", "clipped", a peak voltage at the load, or a percentage of the largest swing.',
+        where="the signal that the stage is for",
+    ),
+    Key(
+        table="load",
+        name="I_Q",
+        dimension="current",
+        band=(0.0, 100.0),
+        sign="non-negative",
+        default="0 A",
+        assumption="no idle current: ideal class B (I_Q not stated)",
+        grade="",
+        meaning="Idle current of each device.",
+        where="the bias adjustment: voltage over an emitter or source resistor",
+    ),
     _resistor("R_E", BIPOLAR | IGBT, "emitter"),
     _resistor("R_S", MOSFET, "source"),
-    Key(table="load", name="pairs", form="count", default="1", assumption="one pair of devices (pairs not stated)",
-        meaning="Devices in parallel in each half of each amplifier.", where=_CIRCUIT),
-    Key(table="load", name="bridged", form="flag", meaning="true: two amplifiers in opposite phase on one load.",
-        where=_CIRCUIT),
-    Key(table="load", name="V_sat", dimension="voltage", band=(0.0, 1000.0), sign="non-negative", default="0 V",
-        assumption="the output swings to the rails but for its resistors (V_sat not stated)", grade="",
+    Key(
+        table="load",
+        name="pairs",
+        form="count",
+        default="1",
+        assumption="one pair of devices (pairs not stated)",
+        meaning="Devices in parallel in each half of each amplifier.",
+        where=_CIRCUIT,
+    ),
+    Key(
+        table="load",
+        name="bridged",
+        form="flag",
+        meaning="true: two amplifiers in opposite phase on one load.",
+        where=_CIRCUIT,
+    ),
+    Key(
+        table="load",
+        name="V_sat",
+        dimension="voltage",
+        band=(0.0, 1000.0),
+        sign="non-negative",
+        default="0 V",
+        assumption="the output swings to the rails but for its resistors (V_sat not stated)",
+        grade="",
         meaning="Voltage from rail to output that a half needs at its peak, resistors not counted.",
-        where="the clipping level measured, or driver and device saturation added up"),
-    Key(table="load", name="I_limit", dimension="current", band=(1e-3, 1e4), grade="",
+        where="the clipping level measured, or driver and device saturation added up",
+    ),
+    Key(
+        table="load",
+        name="I_limit",
+        dimension="current",
+        band=(1e-3, 1e4),
+        grade="",
         meaning="Current of one half, all its devices together, into a shorted output.",
-        where="the current limiter: sense resistor and its transistor's V_BE"),
-    Key(table="load", name="fault_time", dimension="time", band=(1e-6, 1e6), grade="",
+        where="the current limiter: sense resistor and its transistor's V_BE",
+    ),
+    Key(
+        table="load",
+        name="fault_time",
+        dimension="time",
+        band=(1e-6, 1e6),
+        grade="",
         meaning="How long a short lasts until fuse or protection ends it; absent: for ever.",
-        where="the fuse's curve or the protection's delay"),
-    Key(table="load", name="dc_protected", form="flag",
-        meaning="true: a protection ends a dc offset at the output before it counts.", where=_CIRCUIT),
-)  # fmt: skip
+        where="the fuse's curve or the protection's delay",
+    ),
+    Key(
+        table="load",
+        name="dc_protected",
+        form="flag",
+        meaning="true: a protection ends a dc offset at the output before it counts.",
+        where=_CIRCUIT,
+    ),
+)
 
 
 def read(cells: Cells, surround: Surround) -> PushPull:
@@ -77,13 +158,21 @@ def read(cells: Cells, surround: Surround) -> PushPull:
     level, level_value = _level(cells)
     R_name = "R_S" if surround.device_kind in MOSFET else "R_E"
     stage = PushPull(
-        V_rail=_or_nought(cells.quantity("V_rail"), 1.0), load=load or Element(kind="R", value=_nothing(1.0)),
-        level=level, level_value=level_value, f=cells.span("f"), I_Q=_or_nought(cells.quantity("I_Q")),
-        R_E=_or_nought(cells.quantity(R_name)), R_name=R_name, pairs=cells.count("pairs") or 1,
-        bridged=bool(cells.flag("bridged")), V_sat=_or_nought(cells.quantity("V_sat")),
-        I_limit=cells.quantity("I_limit"), fault_time=cells.quantity("fault_time"),
+        V_rail=_or_nought(cells.quantity("V_rail"), 1.0),
+        load=load or Element(kind="R", value=_nothing(1.0)),
+        level=level,
+        level_value=level_value,
+        f=cells.span("f"),
+        I_Q=_or_nought(cells.quantity("I_Q")),
+        R_E=_or_nought(cells.quantity(R_name)),
+        R_name=R_name,
+        pairs=cells.count("pairs") or 1,
+        bridged=bool(cells.flag("bridged")),
+        V_sat=_or_nought(cells.quantity("V_sat")),
+        I_limit=cells.quantity("I_limit"),
+        fault_time=cells.quantity("fault_time"),
         dc_protected=bool(cells.flag("dc_protected")),
-    )  # fmt: skip
+    )
     if load is not None:
         _check_frequency(cells, stage, load)
     if stage.fault_time is not None and not cells.has("I_limit"):
@@ -94,9 +183,10 @@ def read(cells: Cells, surround: Surround) -> PushPull:
         )
     if stage.dc_protected and not cells.has("f"):
         cells.refuse(
-            "dc_protected", "with f absent the stage is asked to hold its output for ever, which a protection would end",
+            "dc_protected",
+            "with f absent the output is held for ever, which a protection would end",
             "state f, or leave dc_protected out",
-        )  # fmt: skip
+        )
     return stage
 
 
@@ -147,15 +237,17 @@ def _check_frequency(cells: Cells, stage: PushPull, load: Impedance) -> None:
         for table in tables(load):
             if bool(np.any(low < table.f[0])) or bool(np.any(high > table.f[-1])):
                 cells.refuse(
-                    "f", f"the table {table.file} covers {table.f[0]:g} Hz to {table.f[-1]:g} Hz only",
+                    "f",
+                    f"the table {table.file} covers {table.f[0]:g} Hz to {table.f[-1]:g} Hz only",
                     f'f = ["{table.f[0]:g} Hz", "{table.f[-1]:g} Hz"], or a table that covers the range',
-                )  # fmt: skip
+                )
                 return
         if stage.level == "clipped" and any(tables(load)):
             cells.refuse(
-                "level", "a clipped sine needs the load's impedance at its harmonics, a table ends too early",
+                "level",
+                "a clipped sine needs the load's impedance at its harmonics, a table ends too early",
                 "write the load with R, L and C",
-            )  # fmt: skip
+            )
             return
         ends = low * (high / low) ** np.linspace(0, 1, 241)
     Z = stage.Z_at(ends if ends is not None else np.ones((1, 1)))
@@ -174,7 +266,7 @@ def _check_swing(cells: Cells, stage: PushPull, Z_mod: np.ndarray, phi: np.ndarr
         return
     V_max = stage.amplifiers * largest_swing(V_rail, V_sat, column(stage.R_E) / stage.pairs, Z_mod, phi)
     least = float(np.min(V_max))
-    # In a corner of the uncertainties the output only swings as far as it can; the nominal stage must reach its level.
+    # In a corner of the uncertainties the output swings as far as it can; nominally it must reach its level.
     if stage.level == "voltage" and stage.level_value is not None and stage.level_value.value.size == 1:
         wanted = float(stage.level_value.value[0])
         if V_max.shape[0] == 1 and wanted > least * (1 + 1e-9):

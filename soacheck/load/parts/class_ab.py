@@ -1,7 +1,7 @@
 """How a complementary pair shares the load current around the crossover.
 
-The bias spreader holds the two control voltages, emitter (source) resistors included, at the sum that they have when
-idle. Each law returns the current of both halves for any load current; nothing is cut off by hand.
+The bias spreader holds the two control voltages, emitter (source) resistors included, at the sum that they
+have when idle. Each law returns the current of both halves for any load current; nothing is cut off by hand.
 """
 
 from __future__ import annotations
@@ -53,8 +53,8 @@ def class_b_pair(i_load: npt.ArrayLike) -> Pair:
 def exponential_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike, R_E: npt.ArrayLike, V_T: float) -> Pair:
     """Class AB of two exponential devices with emitter resistors, exact.
 
-    The bias loop V_T ln(i_u/I_s) + R_E i_u + V_T ln(i_l/I_s) + R_E i_l keeps its idle value, so that I_s drops out:
-    with x = i_load/(2 I_Q), s = (i_u + i_l)/(2 I_Q), r = 2 R_E I_Q/V_T and g = ln(i_u i_l/I_Q^2)
+    The bias loop V_T ln(i_u/I_s) + R_E i_u + V_T ln(i_l/I_s) + R_E i_l keeps its idle value, so that I_s
+    drops out: with x = i_load/(2 I_Q), s = (i_u + i_l)/(2 I_Q), r = 2 R_E I_Q/V_T and g = ln(i_u i_l/I_Q^2)
 
         g + r (sqrt(x^2 + exp(g)) - 1) = 0,      s = sqrt(x^2 + exp(g)).
 
@@ -77,8 +77,8 @@ def exponential_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike, R_E: npt.ArrayLi
         Currents of the upper and lower half, shape (...). [A]
 
     Range: I_Q >= 0, R_E >= 0.
-    Source: the exponential law of the base-emitter junction (Sedra & Smith, Microelectronic Circuits, 5th ed., 14.4)
-    with the resistors added to the loop; own derivation.
+    Source: the exponential law of the base-emitter junction (Sedra & Smith, Microelectronic Circuits, 5th
+    ed., 14.4) with the resistors added to the loop; own derivation.
     """
     i, idle, resistor = np.broadcast_arrays(
         np.asarray(i_load, dtype=np.float64),
@@ -113,9 +113,9 @@ def exponential_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike, R_E: npt.ArrayLi
 def square_law_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike) -> Pair:
     """Class AB of two equal square-law devices without source resistors.
 
-    sqrt(i_u) + sqrt(i_l) keeps its idle value 2 sqrt(I_Q) until one half is off, at a load current of 4 I_Q; the
-    transconductance drops out. Source resistors would need it and lower both currents between idle and cut-off, so
-    leaving them out of the crossover errs to more current.
+    sqrt(i_u) + sqrt(i_l) keeps its idle value 2 sqrt(I_Q) until one half is off, at a load current of 4 I_Q;
+    the transconductance drops out. Source resistors would need it and lower both currents between idle and
+    cut-off, so leaving them out of the crossover errs to more current.
 
     Parameters
     ----------

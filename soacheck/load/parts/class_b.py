@@ -1,7 +1,7 @@
 """Closed forms of the ideal complementary pair: one half conducts, its resistor takes part of the rail.
 
-Everything is for one half (all its devices together). The load is |Z| at the angle phi, the output a sine of peak V,
-r the emitter resistance of the half (R_E over the number of pairs).
+Everything is for one half (all its devices together). The load is |Z| at the angle phi, the output a sine of
+peak V, r the emitter resistance of the half (R_E over the number of pairs).
 """
 
 from __future__ import annotations

@@ -16,6 +16,7 @@ from soacheck.trace import FloatArray, Traced, frozen
 
 ComplexArray = npt.NDArray[np.complex128]
 
+_LETTERS: tuple[Literal["R", "L", "C"], ...] = ("R", "L", "C")
 _DIMENSION = {"R": "resistance", "L": "inductance", "C": "capacitance"}
 _BAND = {"R": (1e-4, 1e7), "L": (1e-10, 1e4), "C": (1e-13, 10.0)}
 _FORMS = (
@@ -138,54 +139,72 @@ def traced_elements(load: Impedance) -> tuple[Traced, ...]:
 
 def read_impedance(cells: Cells, name: str, folder: Path) -> Impedance | None:
     """The load written under the key `name`; None when something was wrong and has been reported."""
-    return _read(cells, name, cells.raw(name), folder, 0)
+    return _Reader(cells, folder).read(name, cells.raw(name), 0)
 
 
-def _read(cells: Cells, name: str, value: object, folder: Path, depth: int) -> Impedance | None:
-    if depth > _DEEPEST:
-        cells.refuse(
-            name, f"nested more than {_DEEPEST} deep", "combine elements in series or parallel into one"
-        )
-        return None
-    if isinstance(value, str) or (isinstance(value, dict) and ("value" in value or not value)):
-        return _element(cells, name, "R", value)
-    if not isinstance(value, dict):
-        cells.refuse(name, "a load is a text or an inline table", f"one of {_FORMS}")
-        return None
-    keys = [str(key) for key in value]
-    if len(keys) == 1 and keys[0] in ("series", "parallel"):
-        return _group(cells, f"{name}.{keys[0]}", "series" if keys[0] == "series" else "parallel", value[keys[0]],
-                      folder, depth)  # fmt: skip
-    if keys == ["table"]:
-        sampled = read_table(cells, f"{name}.table", value["table"], folder)
-        return None if sampled is None else Sampled(
-            file=sampled.file, f=sampled.f, magnitude=sampled.magnitude, phase=sampled.phase
-        )  # fmt: skip
-    strange = [key for key in keys if key not in _DIMENSION]
-    if strange:
-        alone = strange[0] in ("series", "parallel", "table")
-        problem = f"{strange[0]} stands alone" if alone else f"{strange[0]!r} is no part of a load"
-        cells.refuse(f"{name}.{strange[0]}", problem, f"one of {_FORMS}")
-        return None
-    parts = [_element(cells, f"{name}.{key}", "R" if key == "R" else "L" if key == "L" else "C", value[key])
-             for key in keys]  # fmt: skip
-    found = tuple(part for part in parts if part is not None)
-    if len(found) < len(parts):
-        return None
-    return found[0] if len(found) == 1 else Group(kind="series", parts=found)
+@dataclass(frozen=True, slots=True)
+class _Reader:
+    """Reads the nested form of a load; every method returns None once something has been reported."""
 
+    cells: Cells
+    folder: Path
 
-def _element(cells: Cells, name: str, kind: Literal["R", "L", "C"], value: object) -> Element | None:
-    traced = cells.tree_quantity(f"{cells.path}.{name}", value, _DIMENSION[kind], _BAND[kind])
-    return None if traced is None else Element(kind=kind, value=traced)
+    def read(self, name: str, value: object, depth: int) -> Impedance | None:
+        """One impedance at a path inside the key."""
+        if depth > _DEEPEST:
+            self._refused(name, f"nested more than {_DEEPEST} deep", "combine elements into one")
+            return None
+        if not isinstance(value, dict) or "value" in value:
+            return self._element(name, "R", value)
+        keys = {str(key) for key in value}
+        if keys in ({"series"}, {"parallel"}):
+            kind: Literal["series", "parallel"] = "series" if "series" in keys else "parallel"
+            return self._group(f"{name}.{kind}", kind, value[kind], depth)
+        if keys == {"table"}:
+            return self._table(f"{name}.table", value["table"])
+        return self._elements(name, value)
 
+    def _refused(self, name: str, problem: str, remedy: str = f"one of {_FORMS}") -> None:
+        self.cells.refuse(name, problem, remedy)
 
-def _group(
-    cells: Cells, name: str, kind: Literal["series", "parallel"], value: object, folder: Path, depth: int
-) -> Group | None:
-    if not isinstance(value, list) or not value:
-        cells.refuse(name, "a list of impedances is wanted here", f'{kind} = ["0.5 ohm", {{ L = "1.2 mH" }}]')
-        return None
-    parts = [_read(cells, f"{name}[{index}]", part, folder, depth + 1) for index, part in enumerate(value)]
-    found = tuple(part for part in parts if part is not None)
-    return Group(kind=kind, parts=found) if len(found) == len(parts) else None
+    def _element(self, name: str, kind: Literal["R", "L", "C"], value: object) -> Element | None:
+        if not isinstance(value, str | dict):
+            self._refused(name, "a load is a text or an inline table")
+            return None
+        path = f"{self.cells.path}.{name}"
+        traced = self.cells.tree_quantity(path, value, _DIMENSION[kind], _BAND[kind])
+        return None if traced is None else Element(kind=kind, value=traced)
+
+    def _elements(self, name: str, value: dict[str, object]) -> Impedance | None:
+        """R, L and C of one inline table, in series."""
+        for key in value:
+            if key not in _DIMENSION:
+                alone = key in ("series", "parallel", "table")
+                problem = f"{key} stands alone" if alone else f"{key!r} is no part of a load"
+                self._refused(f"{name}.{key}", problem)
+                return None
+        if not value:
+            self._refused(name, "the load is empty")
+            return None
+        parts = [self._element(f"{name}.{kind}", kind, value[kind]) for kind in _LETTERS if kind in value]
+        found = tuple(part for part in parts if part is not None)
+        if len(found) < len(parts):
+            return None
+        return found[0] if len(found) == 1 else Group(kind="series", parts=found)
+
+    def _table(self, name: str, value: object) -> Sampled | None:
+        rows = read_table(self.cells, name, value, self.folder)
+        if rows is None:
+            return None
+        return Sampled(file=rows.file, f=rows.f, magnitude=rows.magnitude, phase=rows.phase)
+
+    def _group(
+        self, name: str, kind: Literal["series", "parallel"], value: object, depth: int
+    ) -> Group | None:
+        if not isinstance(value, list) or not value:
+            return self._refused(
+                name, "a list of impedances is wanted", f'{kind} = ["8 ohm", {{ L = "1 mH" }}]'
+            )
+        parts = [self.read(f"{name}[{number}]", part, depth + 1) for number, part in enumerate(value, 1)]
+        found = tuple(part for part in parts if part is not None)
+        return Group(kind=kind, parts=found) if len(found) == len(parts) else None

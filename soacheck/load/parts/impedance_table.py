@@ -34,7 +34,7 @@ class Rows:
 
 
 def read_table(cells: Cells, name: str, value: object, folder: Path) -> Rows | None:
-    """The table in a file named relative to the stage's folder; None when something was wrong and has been reported."""
+    """The table in a file of the stage's folder; None when something was wrong and has been reported."""
     if not isinstance(value, str) or not value.strip():
         cells.refuse(name, "the name of a file is wanted here", 'table = "impedance.csv"')
         return None
@@ -76,7 +76,7 @@ def _fields(line: str) -> list[str]:
 
 
 def parse(text: str, file: str) -> Rows:
-    """Rows of a text: separated by comma, semicolon (decimal comma allowed) or tab; header lines before the first row."""
+    """Rows of a text: separated by comma, semicolon (decimal comma allowed) or tab, after any header."""
     rows: list[tuple[float, float, float]] = []
     for number, line in enumerate(text.splitlines(), start=1):
         if not line.strip():

@@ -56,9 +56,9 @@ def fractions(one_frequency: bool) -> FloatArray:
 def frequencies(driven: Driven, low: FloatArray, high: FloatArray, knots: FloatArray) -> FloatArray:
     """Frequencies of an operating range that are looked at, rising, (case, n).
 
-    Both ends, some between them, and those at which ideal class B has the greatest mean dissipation at any level and
-    at the largest swing, the greatest peak power and current, and the largest load angle. `knots` (n,) are the rows of
-    a measured table.
+    Both ends, some between them, and those at which ideal class B has the greatest mean dissipation at any
+    level and at the largest swing, the greatest peak power and current, and the largest load angle. `knots`
+    (n,) are the rows of a measured table.
     """
     span = np.log(high / low)
     scan = low * np.exp(span * np.linspace(0, 1, _SCAN))
@@ -77,15 +77,19 @@ def frequencies(driven: Driven, low: FloatArray, high: FloatArray, knots: FloatA
 
     Z = driven.Z_at(scan)
     size, angle, V_max = np.abs(Z), np.angle(Z), driven.swing(Z)
-    seen = [class_b.mean_power(rail, V_max, r, size, angle), class_b.peak_power(rail, size, angle), V_max / size,
-            np.abs(angle)]  # fmt: skip
+    seen = [
+        class_b.mean_power(rail, V_max, r, size, angle),
+        class_b.peak_power(rail, size, angle),
+        V_max / size,
+        np.abs(angle),
+    ]
     picked = [np.take_along_axis(scan, np.argmax(score, axis=1)[:, None], 1) for score in seen]
     even = low * np.exp(span * np.linspace(0, 1, _SPREAD)[1:-1])
     return np.sort(np.concatenate([low, even, high, _refined(worst_mean, scan), *picked], axis=1), axis=1)
 
 
 def _refined(score: Callable[[FloatArray], FloatArray], scan: FloatArray) -> FloatArray:
-    """The argument (case, 1) of the greatest score near the best of a rising scan (case, n); the first where equal."""
+    """The argument (case, 1) of the greatest score near the best of a rising scan; the first where equal."""
     for _ in range(_ROUNDS):
         values = score(scan)
         best = np.argmax(values, axis=1)[:, None]
@@ -99,7 +103,7 @@ def _refined(score: Callable[[FloatArray], FloatArray], scan: FloatArray) -> Flo
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Levels:
-    """All levels looked at, the worst among them: V (case, member) output peaks [V], f (case, member) [Hz]."""
+    """All levels looked at, the worst among them: output peaks V [V] and f [Hz], each (case, member)."""
 
     V: FloatArray
     f: FloatArray
@@ -113,15 +117,21 @@ class Levels:
 
 
 def every_level(driven: Driven, f: FloatArray, *, class_b_only: bool, resistance: bool) -> Levels:
-    """Loci of every level at frequencies (case, n), with the level of greatest mean dissipation as last member.
+    """Loci of every level at frequencies (case, n), with the level of greatest mean dissipation as last
+    member.
 
-    class_b_only: no idle current, so that the worst level has a closed form. Else it is searched: the best of the
-    grid, then by turns a finer grid over the level and over the frequency around it.
+    class_b_only: no idle current, so that the worst level has a closed form. Else it is searched: the best of
+    the grid, then by turns a finer grid over the level and over the frequency around it.
     """
     levels = fractions(f.shape[1] == 1)
-    cases = np.broadcast_shapes(f.shape[:1], driven.Z_at(f).shape[:1], driven.output.V_rail.shape[:1],
-                                driven.output.R_E.shape[:1], driven.output.V_sat.shape[:1],
-                                driven.output.share.shape[:1])[0]  # fmt: skip
+    cases = np.broadcast_shapes(
+        f.shape[:1],
+        driven.Z_at(f).shape[:1],
+        driven.output.V_rail.shape[:1],
+        driven.output.R_E.shape[:1],
+        driven.output.V_sat.shape[:1],
+        driven.output.share.shape[:1],
+    )[0]
     f = np.broadcast_to(f, (cases, f.shape[1]))
     grid_f = np.repeat(f, levels.size, axis=1)
     grid_level = np.broadcast_to(np.tile(levels, f.shape[1]), grid_f.shape)
@@ -143,14 +153,23 @@ def every_level(driven: Driven, f: FloatArray, *, class_b_only: bool, resistance
     full_f = np.take_along_axis(f, np.argmax(last, axis=1)[:, None], 1)
     full_V, full = driven.at(np.ones((1, 1)), full_f)
     joined = Locus(
-        t=_joined(locus.t, worst.t, cases), v=_joined(locus.v, worst.v, cases), i=_joined(locus.i, worst.i, cases),
+        t=_joined(locus.t, worst.t, cases),
+        v=_joined(locus.v, worst.v, cases),
+        i=_joined(locus.i, worst.i, cases),
         use=locus.use,
-    )  # fmt: skip
+    )
     both = [np.broadcast_to(x, (cases, x.shape[1])) for x in (V, worst_V)]
     return Levels(
-        V=np.concatenate(both, axis=1), f=np.concatenate([grid_f, np.broadcast_to(best_f, (cases, 1))], axis=1),
-        locus=joined, worst_V=both[1], worst_f=best_f, worst=worst, full_V=full_V, full_f=full_f, full=full,
-    )  # fmt: skip
+        V=np.concatenate(both, axis=1),
+        f=np.concatenate([grid_f, np.broadcast_to(best_f, (cases, 1))], axis=1),
+        locus=joined,
+        worst_V=both[1],
+        worst_f=best_f,
+        worst=worst,
+        full_V=full_V,
+        full_f=full_f,
+        full=full,
+    )
 
 
 def _search(
@@ -160,8 +179,10 @@ def _search(
     level = levels[index]
     level_at = [levels[np.maximum(index - 1, 0)], levels[np.minimum(index + 1, levels.size - 1)]]
     column = best // levels.size
-    f_at = [np.take_along_axis(f, np.maximum(column - 1, 0), 1),
-            np.take_along_axis(f, np.minimum(column + 1, f.shape[1] - 1), 1)]  # fmt: skip
+    f_at = [
+        np.take_along_axis(f, np.maximum(column - 1, 0), 1),
+        np.take_along_axis(f, np.minimum(column + 1, f.shape[1] - 1), 1),
+    ]
 
     def over_level(x: FloatArray) -> FloatArray:
         return driven.at(x, best_f)[1].p_mean
@@ -179,7 +200,7 @@ def _search(
 def _narrowed(
     score: Callable[[FloatArray], FloatArray], centre: FloatArray, ends: list[FloatArray]
 ) -> tuple[FloatArray, list[FloatArray]]:
-    """The best of a few arguments between the ends (case, 1), and its neighbours; the centre where nothing is better."""
+    """The best of a few arguments between the ends, and its neighbours; the centre if nothing is better."""
     half = np.linspace(0, 1, _POINTS // 2 + 1)
     tried = np.concatenate(
         [ends[0] + (centre - ends[0]) * half, centre + (ends[1] - centre) * half[1:]], axis=1

@@ -37,7 +37,7 @@ def _always(locus: Locus) -> Callable[[FloatArray | None], Locus]:
 
 
 def _heat(load: PushPull, fitted: Fitted, halves: float | FloatArray) -> FloatArray:
-    """Dissipation of all devices over the worst one's: each half is 1/share of its worst device, (case, 1)."""
+    """Dissipation of all devices over the worst one's, (case, 1): a half is 1/share of its worst device."""
     return np.asarray(load.amplifiers * halves / column(fitted.share), dtype=np.float64)
 
 
@@ -45,13 +45,16 @@ def _idle(load: PushPull, fitted: Fitted, driven: Driven) -> Duty:
     zero = np.zeros((1, 1))
     point = held(driven.output, zero, np.ones((1, 1)))
     return Duty(
-        name="idle", half=fitted.half, locus=_always(point.locus), heat_ratio=_heat(load, fitted, 2.0),
+        name="idle",
+        half=fitted.half,
+        locus=_always(point.locus),
+        heat_ratio=_heat(load, fitted, 2.0),
         facts=facts.idle_facts(load, fitted),
-    )  # fmt: skip
+    )
 
 
 def _grid_of(load: PushPull, driven: Driven) -> FloatArray:
-    """Frequencies looked at, (case, n): one, both ends for a resistance, else chosen from the load's course."""
+    """Frequencies looked at, (case, n): one; both ends for a resistance; else chosen by the load's course."""
     if load.f is None:
         raise ValueError("a held output has no frequency")
     low, high = column(load.f[0]), column(load.f[1])
@@ -80,26 +83,44 @@ def _any_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ..
     if load.class_b:
         V = facts.worst_swing(worst_sheet)
     else:
-        V = found("V", levels.worst_V[:, 0], "V",
-                  f"level of greatest mean dissipation, searched; {law_of(fitted.device.kind)}",
-                  worst_sheet.named["V_rail"], worst_sheet.named["V_max"], worst_sheet.named["Z_mod"],
-                  worst_sheet.named["phi"], load.I_Q.named("I_Q"))  # fmt: skip
+        V = found(
+            "V",
+            levels.worst_V[:, 0],
+            "V",
+            f"level of greatest mean dissipation, searched; {law_of(fitted.device.kind)}",
+            worst_sheet.named["V_rail"],
+            worst_sheet.named["V_max"],
+            worst_sheet.named["Z_mod"],
+            worst_sheet.named["phi"],
+            load.I_Q.named("I_Q"),
+        )
     full_sheet = facts.sheet_of(
         load, fitted, _f_fact(load, levels.full_f, "greatest mean dissipation at full level")
     )
     full_V = full_sheet.of("V", "V_max", "V")
     worst = Duty(
-        name="worst-level", half=fitted.half, locus=_always(levels.worst), heat_ratio=heat,
+        name="worst-level",
+        half=fitted.half,
+        locus=_always(levels.worst),
+        heat_ratio=heat,
         facts=facts.sine_facts(worst_sheet, V, levels.worst.p_mean[:, 0], fitted),
-    )  # fmt: skip
+    )
     full = Duty(
-        name="full-level", half=fitted.half, locus=_always(levels.full), heat_ratio=heat,
+        name="full-level",
+        half=fitted.half,
+        locus=_always(levels.full),
+        heat_ratio=heat,
         facts=facts.sine_facts(full_sheet, full_V, levels.full.p_mean[:, 0], fitted),
-    )  # fmt: skip
+    )
     every = Duty(
-        name="any-level", half=fitted.half, locus=_always(levels.locus), heat_ratio=heat, listed=False,
-        members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels.V)), facts=worst.facts,
-    )  # fmt: skip
+        name="any-level",
+        half=fitted.half,
+        locus=_always(levels.locus),
+        heat_ratio=heat,
+        listed=False,
+        members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels.V)),
+        facts=worst.facts,
+    )
     return worst, full, every
 
 
@@ -120,15 +141,22 @@ def _at_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ...
         load, fitted, _f_fact(load, np.take_along_axis(at, hottest, 1), "greatest mean dissipation")
     )
     swing, mean = facts.stated_swing(sheet), np.take_along_axis(P, hottest, 1)[:, 0]
-    made = (facts.clipped_facts(sheet, swing, mean, OVERDRIVE) if load.level == "clipped"
-            else facts.sine_facts(sheet, swing, mean, fitted))  # fmt: skip
+    made = (
+        facts.clipped_facts(sheet, swing, mean, OVERDRIVE)
+        if load.level == "clipped"
+        else facts.sine_facts(sheet, swing, mean, fitted)
+    )
     one = f.shape[1] == 1
     return (
         Duty(
-            name="at-level", half=fitted.half, locus=_always(locus), heat_ratio=_heat(load, fitted, 2.0), facts=made,
+            name="at-level",
+            half=fitted.half,
+            locus=_always(locus),
+            heat_ratio=_heat(load, fitted, 2.0),
+            facts=made,
             members=Members() if one else Members(name="f", unit="Hz", value=frozen(at)),
         ),
-    )  # fmt: skip
+    )
 
 
 def _stated(load: PushPull, fitted: Fitted, f: FloatArray) -> Traced:
@@ -141,14 +169,20 @@ def _held_levels(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, 
     sheet = facts.sheet_of(load, fitted, None)
     V_max = column(sheet.named["V_max"])
     if load.level != "any":
-        return (_held_duty("at-level", load, fitted, driven, facts.stated_swing(sheet), sheet),)
+        return (_held_duty("at-level", fitted, driven, facts.stated_swing(sheet), sheet),)
     if load.class_b:
         V = facts.worst_held(sheet)
     else:
-        V = found("V", _worst_held(driven, V_max, R)[:, 0], "V", f"searched; {law_of(fitted.device.kind)}",
-                  *sheet.named.values(), load.I_Q.named("I_Q"))  # fmt: skip
-    worst = _held_duty("worst-level", load, fitted, driven, V, sheet)
-    full = _held_duty("full-level", load, fitted, driven, sheet.of("V", "V_max", "V"), sheet)
+        V = found(
+            "V",
+            _worst_held(driven, V_max, R)[:, 0],
+            "V",
+            f"searched; {law_of(fitted.device.kind)}",
+            *sheet.named.values(),
+            load.I_Q.named("I_Q"),
+        )
+    worst = _held_duty("worst-level", fitted, driven, V, sheet)
+    full = _held_duty("full-level", fitted, driven, sheet.of("V", "V_max", "V"), sheet)
     grid = V_max * fractions(True)
     rows = max(grid.shape[0], V.value.shape[0])
     both = [np.broadcast_to(x, (rows, x.shape[1])) for x in (grid, column(V))]
@@ -159,21 +193,27 @@ def _held_levels(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, 
     top = np.argmax(P * line.halves, axis=1)[:, None]
     halves = np.take_along_axis(np.broadcast_to(line.halves, P.shape), top, 1)
     every = Duty(
-        name="any-level", half=fitted.half, locus=_always(line.locus), heat_ratio=_heat(load, fitted, halves),
-        listed=False, members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels)),
+        name="any-level",
+        half=fitted.half,
+        locus=_always(line.locus),
+        heat_ratio=_heat(load, fitted, halves),
+        listed=False,
+        members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels)),
         facts=worst.facts,
-    )  # fmt: skip
+    )
     return worst, full, every
 
 
-def _held_duty(
-    name: str, load: PushPull, fitted: Fitted, driven: Driven, V: Traced, sheet: facts.Sheet
-) -> Duty:
+def _held_duty(name: str, fitted: Fitted, driven: Driven, V: Traced, sheet: facts.Sheet) -> Duty:
+    load = sheet.load
     point = held(driven.output, column(V), load.resistance())
     return Duty(
-        name=name, half=fitted.half, locus=_always(point.locus), heat_ratio=_heat(load, fitted, point.halves),
+        name=name,
+        half=fitted.half,
+        locus=_always(point.locus),
+        heat_ratio=_heat(load, fitted, point.halves),
         facts=facts.held_facts(sheet, V, point.locus.p_mean[:, 0], fitted),
-    )  # fmt: skip
+    )
 
 
 def _worst_held(driven: Driven, V_max: FloatArray, R: FloatArray) -> FloatArray:
@@ -208,8 +248,10 @@ def _shorted(load: PushPull, fitted: Fitted) -> tuple[Duty, ...]:
         locus = Locus(t=np.zeros((1, 1, 1)), v=v, i=i, use=Use.HELD)
     return (
         Duty(
-            name="shorted-output", half=fitted.half, locus=_always(locus),
+            name="shorted-output",
+            half=fitted.half,
+            locus=_always(locus),
             heat_ratio=_heat(load, fitted, 2.0 if half_time else 1.0),
             facts=facts.shorted_facts(load, fitted, half_time=half_time),
         ),
-    )  # fmt: skip
+    )

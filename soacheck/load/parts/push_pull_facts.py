@@ -1,7 +1,8 @@
-"""The lines of the sheet that a push-pull duty can be redone from by hand: ideal class B, and what was searched.
+"""The lines of the sheet that a push-pull duty can be redone from by hand: ideal class B, and what was
+searched.
 
-Everything is for the worst device of one half. Terms that are nought in the file (V_sat, resistors, load angle) are
-left out of the formulas.
+Everything is for the worst device of one half. Terms that are nought in the file (V_sat, resistors, load
+angle) are left out of the formulas.
 """
 
 from __future__ import annotations
@@ -15,14 +16,15 @@ from soacheck.load.parts.impedance import Element, traced_elements
 from soacheck.load.parts.push_pull_stage import PushPull, law_of
 from soacheck.trace import FloatArray, Traced, derived, found, given
 
-SINE_SOURCE = "class B with a load angle: rail power of the half less half of the load's and the resistor's (own derivation)"
+SINE_SOURCE = "class B: rail power of the half less half of the load's and the resistor's (own derivation)"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Sheet:
     """Traced values of one stage at one frequency (or held): what the formulas of its duties are made from.
 
-    cos: the factor of the load angle in formulas, empty for a resistance; symbols used by a formula are picked by `of`.
+    cos: the factor of the load angle in formulas, empty for a resistance; symbols used by a formula are
+    picked by `of`.
     """
 
     named: dict[str, Traced]
@@ -156,8 +158,17 @@ def held_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
         )
     ]
     if not sheet.load.class_b:
-        facts.append(found("P_AB", P_mean, "W", law_of(fitted.device.kind), V, sheet.named["Z_mod"],
-                           sheet.load.I_Q.named("I_Q")))  # fmt: skip
+        facts.append(
+            found(
+                "P_AB",
+                P_mean,
+                "W",
+                law_of(fitted.device.kind),
+                V,
+                sheet.named["Z_mod"],
+                sheet.load.I_Q.named("I_Q"),
+            )
+        )
     facts.append(sheet.of("I_load", "V/Z_mod", "A", V))
     return (*facts, *_always(sheet, V))
 
@@ -178,8 +189,12 @@ def _always(sheet: Sheet, V: Traced) -> tuple[Traced, ...]:
 
 def idle_facts(load: PushPull, fitted: Fitted) -> tuple[Traced, ...]:
     """Dissipation of one device of the idling stage."""
-    inputs = [load.V_rail.named("V_rail"), load.I_Q.named("I_Q"), fitted.share.named("share"),
-              given("pairs", float(load.pairs), "1", "load.pairs")]  # fmt: skip
+    inputs = [
+        load.V_rail.named("V_rail"),
+        load.I_Q.named("I_Q"),
+        fitted.share.named("share"),
+        given("pairs", float(load.pairs), "1", "load.pairs"),
+    ]
     across = "V_rail"
     if bool(np.any(load.R_E.value > 0)):
         across = f"(V_rail - {load.R_name}*I_Q)"

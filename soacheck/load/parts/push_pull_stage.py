@@ -20,9 +20,9 @@ from soacheck.trace import FloatArray, Traced, frozen
 class PushPull:
     """The `[load]` table of a push-pull stage. Traced values are (case,), SI.
 
-    level: every level, clipped, a peak voltage at the load, or a ratio of the largest unclipped swing; `level_value`
-    is there for the last two. f: both ends of the operating range, equal for one frequency; None: a held output.
-    R_E, I_Q: of one device. R_name: how the file calls the emitter or source resistor.
+    level: every level, clipped, a peak voltage at the load, or a ratio of the largest unclipped swing;
+    `level_value` is there for the last two. f: both ends of the operating range, equal for one frequency;
+    None: a held output. R_E, I_Q: of one device. R_name: how the file calls the emitter or source resistor.
     """
 
     V_rail: Traced
@@ -99,9 +99,13 @@ def output_of(load: PushPull, device: Device, share: Traced) -> Output:
         return square_law_pair(i_load, I_Q) if square else exponential_pair(i_load, I_Q, R_E, V_T)
 
     return Output(
-        V_rail=column(load.V_rail), V_sat=column(load.V_sat), R_E=column(load.R_E), share=column(share),
-        pairs=load.pairs, crossover=crossover,
-    )  # fmt: skip
+        V_rail=column(load.V_rail),
+        V_sat=column(load.V_sat),
+        R_E=column(load.R_E),
+        share=column(share),
+        pairs=load.pairs,
+        crossover=crossover,
+    )
 
 
 def driven_by(load: PushPull, fitted: Fitted) -> Driven:

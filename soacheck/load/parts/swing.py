@@ -1,7 +1,7 @@
 """Loci of one device of a complementary output stage: a sine, an overdriven sine, a held output.
 
-Arrays are (case, member) and give loci (case, member, time). The load current is sinusoidal (or the load's answer to
-the clipped sine); only the device currents are not.
+Arrays are (case, member) and give loci (case, member, time). The load current is sinusoidal (or the load's
+answer to the clipped sine); only the device currents are not.
 """
 
 from __future__ import annotations
@@ -27,8 +27,8 @@ class Output:
     """One amplifier's output stage as numbers, each (case, 1) or (1, 1).
 
     crossover: load current of one pair (case, member, time) -> currents of its halves.
-    share: part of the half's current that the device looked at carries; the drop over the resistors is that of even
-    sharing, which leaves the device that carries more the higher voltage.
+    share: part of the half's current that the device looked at carries; the drop over the resistors is that
+    of even sharing, which leaves the device that carries more the higher voltage.
     """
 
     V_rail: FloatArray
@@ -60,8 +60,14 @@ def sine(output: Output, V: FloatArray, Z: ComplexArray, f: FloatArray) -> Locus
     base = np.concatenate(
         [np.linspace(0, np.pi, _CONDUCTING + 1), np.linspace(np.pi, 2 * np.pi, _RESTING + 1)[1:]]
     )
-    extra = np.stack([(np.pi / 2 - phi) % (2 * np.pi), (3 * np.pi / 2 - phi) % (2 * np.pi),
-                      _power_angle(output, V, Z_mod, phi)], axis=-1)  # fmt: skip
+    extra = np.stack(
+        [
+            (np.pi / 2 - phi) % (2 * np.pi),
+            (3 * np.pi / 2 - phi) % (2 * np.pi),
+            _power_angle(output, V, Z_mod, phi),
+        ],
+        axis=-1,
+    )
     angle = np.concatenate([np.broadcast_to(base, (*V.shape, base.size)), extra], axis=-1)
     angle.sort(axis=-1)
     v_out = V[..., None] * np.sin(angle + phi[..., None])
@@ -72,11 +78,12 @@ def sine(output: Output, V: FloatArray, Z: ComplexArray, f: FloatArray) -> Locus
 
 
 def _power_angle(output: Output, V: FloatArray, Z_mod: FloatArray, phi: FloatArray) -> FloatArray:
-    """Angle after the start of conduction of the greatest class-B power: best of a grid, then Newton's step twice."""
+    """Angle of the greatest class-B power from the start of conduction: best of a grid, then Newton."""
     grid = np.linspace(0, np.pi, 65)
     r = (output.R_E / output.pairs) * V / Z_mod
-    power = (output.V_rail[..., None] - V[..., None] * np.sin(grid + phi[..., None])
-             - r[..., None] * np.sin(grid)) * np.sin(grid)  # fmt: skip
+    power = (
+        output.V_rail[..., None] - V[..., None] * np.sin(grid + phi[..., None]) - r[..., None] * np.sin(grid)
+    ) * np.sin(grid)
     a = grid[np.argmax(power, axis=-1)]
     for _ in range(3):
         slope = output.V_rail * np.cos(a) - V * np.sin(2 * a + phi) - r * np.sin(2 * a)
@@ -94,12 +101,15 @@ def clipped(
 ) -> Locus:
     """One period of a sine of `OVERDRIVE` times V cut off at V, and the load's current for it.
 
-    resistance: (case, member) when the load is one; else the current is summed over the odd harmonics, `Z_at` giving
-    the impedance at frequencies (case, n).
+    resistance: (case, member) when the load is one; else the current is summed over the odd harmonics, `Z_at`
+    giving the impedance at frequencies (case, n).
     """
     edge = np.arcsin(1 / OVERDRIVE)
-    angle = np.sort(np.concatenate([np.linspace(0, 2 * np.pi, _CLIPPED + 1),
-                                    [edge, np.pi - edge, np.pi + edge, 2 * np.pi - edge]]))  # fmt: skip
+    angle = np.sort(
+        np.concatenate(
+            [np.linspace(0, 2 * np.pi, _CLIPPED + 1), [edge, np.pi - edge, np.pi + edge, 2 * np.pi - edge]]
+        )
+    )
     V, f = np.broadcast_arrays(V, f)
     shape = np.clip(OVERDRIVE * np.sin(angle), -1.0, 1.0)
     if resistance is not None:
@@ -143,7 +153,7 @@ def clipped_sine_harmonics(n: FloatArray) -> FloatArray:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class HeldOutput:
-    """A held output: the locus of the loaded device, and the heat of both halves over that of the loaded one."""
+    """A held output: the locus of the loaded device, and the heat of both halves over that device's half."""
 
     locus: Locus
     halves: FloatArray  # (case, member), at least 1
