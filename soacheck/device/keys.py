@@ -1,0 +1,411 @@
+"""The keys of a rating file, each declared once: identity, ratings, thermal data, safe area, mounting.
+
+Characteristics ([typical]) stand in `soacheck.device.typical_keys`.
+"""
+
+from __future__ import annotations
+
+from typing import Any
+
+from soacheck.device.ratings import BIPOLAR, IGBT, KINDS, MOSFET
+from soacheck.device.typical_keys import TYPICAL_KEYS
+from soacheck.table import Key
+
+INSULATED_GATE = MOSFET | IGBT
+BIPOLAR_OR_IGBT = BIPOLAR | IGBT
+GRADES = ("guaranteed", "typical", "measured", "assumed")
+
+_RATINGS = "table of absolute maximum ratings (limiting values)"
+_THERMAL = "table of thermal characteristics"
+_CHART = "safe-operating-area chart"
+
+
+def _rating(
+    name: str,
+    dimension: str,
+    band: tuple[float, float],
+    meaning: str,
+    *,
+    kinds: frozenset[str] | None = None,
+    where: str = _RATINGS,
+    **more: Any,
+) -> Key:
+    return Key(
+        table="max",
+        name=name,
+        dimension=dimension,
+        band=band,
+        meaning=meaning,
+        belongs_to=kinds,
+        where=where,
+        **more,
+    )
+
+
+DEVICE_KEYS: tuple[Key, ...] = (
+    Key(
+        table="device",
+        name="name",
+        form="text",
+        required=True,
+        meaning="Type number; a stage may call the device by it.",
+        where="head of the data sheet",
+    ),
+    Key(
+        table="device",
+        name="kind",
+        form="choice",
+        choices=KINDS,
+        required=True,
+        meaning="What sort of transistor it is; decides which keys belong in the file.",
+        where="head of the data sheet",
+    ),
+    Key(
+        table="device",
+        name="package",
+        form="text",
+        meaning="Package outline.",
+        where="head of the data sheet, outline drawing",
+    ),
+    Key(
+        table="device",
+        name="ratings_from",
+        form="text",
+        meaning="The document the figures were copied from, with revision and date; printed on every report.",
+        where="first or last page of the data sheet",
+    ),
+)
+
+_VOLTS, _AMPS = (0.5, 2e4), (1e-3, 2e4)
+
+MAX_KEYS: tuple[Key, ...] = (
+    _rating(
+        "V_CEO",
+        "voltage",
+        _VOLTS,
+        "Collector-emitter voltage, base open.",
+        kinds=BIPOLAR,
+        required=True,
+        role="V_max",
+    ),
+    _rating(
+        "V_DSS",
+        "voltage",
+        _VOLTS,
+        "Drain-source voltage, gate shorted.",
+        kinds=MOSFET,
+        required=True,
+        role="V_max",
+    ),
+    _rating(
+        "V_CES",
+        "voltage",
+        _VOLTS,
+        "Collector-emitter voltage, gate shorted.",
+        kinds=IGBT,
+        required=True,
+        role="V_max",
+    ),
+    _rating("V_CBO", "voltage", _VOLTS, "Collector-base voltage, emitter open.", kinds=BIPOLAR),
+    _rating("V_CEV", "voltage", _VOLTS, "Collector-emitter voltage, base reverse-biased.", kinds=BIPOLAR),
+    _rating(
+        "V_CER", "voltage", _VOLTS, "Collector-emitter voltage with R_BE from base to emitter.", kinds=BIPOLAR
+    ),
+    _rating("R_BE", "resistance", (0.1, 1e6), "Resistor that V_CER is stated for.", kinds=BIPOLAR),
+    _rating("V_EBO", "voltage", (0.1, 200), "Emitter-base voltage, collector open.", kinds=BIPOLAR),
+    _rating("V_GSS", "voltage", (1, 200), "Gate-source (IGBT: gate-emitter) voltage.", kinds=INSULATED_GATE),
+    _rating(
+        "I_C",
+        "current",
+        _AMPS,
+        "Continuous collector current.",
+        kinds=BIPOLAR_OR_IGBT,
+        required=True,
+        role="I_max",
+    ),
+    _rating(
+        "I_D",
+        "current",
+        _AMPS,
+        "Continuous drain current at T_case.",
+        kinds=MOSFET,
+        required=True,
+        role="I_max",
+    ),
+    _rating("I_CM", "current", _AMPS, "Peak collector current.", kinds=BIPOLAR_OR_IGBT, role="I_peak"),
+    _rating("I_DM", "current", _AMPS, "Peak drain current.", kinds=MOSFET, role="I_peak"),
+    _rating(
+        "I_CM_pulse",
+        "time",
+        (1e-7, 10),
+        "Longest pulse that I_CM is stated for.",
+        kinds=BIPOLAR_OR_IGBT,
+        role="I_peak_pulse",
+    ),
+    _rating(
+        "I_DM_pulse",
+        "time",
+        (1e-7, 10),
+        "Longest pulse that I_DM is stated for.",
+        kinds=MOSFET,
+        role="I_peak_pulse",
+    ),
+    _rating("I_B", "current", (1e-5, 2e3), "Continuous base current.", kinds=BIPOLAR),
+    _rating("I_S", "current", _AMPS, "Continuous current of the body diode.", kinds=INSULATED_GATE),
+    _rating("P_tot", "power", (0.01, 2e4), "Total dissipation at T_case."),
+    _rating(
+        "T_case",
+        "temperature",
+        (223.15, 523.15),
+        "Case temperature that P_tot (MOSFET: I_D too) is stated at.",
+        sign="any",
+        default="25 degC",
+        grade="",
+    ),
+    _rating(
+        "T_j", "temperature", (323.15, 673.15), "Greatest junction temperature.", sign="any", required=True
+    ),
+    _rating("E_AS", "energy", (1e-6, 100), "Single-shot avalanche energy from T_j = 25 degC, with I_AS."),
+    _rating("I_AS", "current", _AMPS, "Avalanche current that E_AS is stated for."),
+    _rating("E_AR", "energy", (1e-7, 100), "Repetitive avalanche energy."),
+    _rating("t_SC", "time", (1e-7, 1), "Short-circuit withstand time, at V_SC.", kinds=INSULATED_GATE),
+    _rating("V_SC", "voltage", _VOLTS, "Supply voltage that t_SC is stated at.", kinds=INSULATED_GATE),
+)
+
+_PAIRS = "table of a thermal model, or read off the transient thermal impedance chart"
+_Z_TABLE = "thermal.Z_th_jc"
+
+THERMAL_KEYS: tuple[Key, ...] = (
+    Key(
+        table="thermal",
+        name="R_th_jc",
+        dimension="thermal resistance",
+        band=(1e-3, 1e3),
+        meaning="Junction to case (mounting base); absent: (T_j - T_case)/P_tot.",
+        where=_THERMAL,
+    ),
+    Key(
+        table="thermal",
+        name="R_th_ja",
+        dimension="thermal resistance",
+        band=(0.1, 5e3),
+        meaning="Junction to ambient without a sink, mounted as `mounting` says.",
+        where=_THERMAL,
+    ),
+    Key(
+        table="thermal",
+        name="mounting",
+        form="text",
+        meaning="How the device is mounted for R_th_ja.",
+        where=f"notes to the {_THERMAL}",
+    ),
+    Key(
+        table="thermal",
+        name="Z_th_jc",
+        form="table",
+        meaning="Transient thermal impedance, in one of three forms: pulse and value, foster, or cauer.",
+        where="transient thermal impedance chart, single-pulse line",
+    ),
+    Key(
+        table=_Z_TABLE,
+        name="pulse",
+        form="points",
+        columns=("time",),
+        band=(1e-8, 1e4),
+        meaning="Pulse widths of the single-pulse curve, rising.",
+        where="transient thermal impedance chart, single-pulse line",
+    ),
+    Key(
+        table=_Z_TABLE,
+        name="value",
+        form="points",
+        columns=("thermal resistance",),
+        band=(1e-6, 1e3),
+        meaning="Z_th_jc at each pulse width.",
+        where="transient thermal impedance chart, single-pulse line",
+    ),
+    Key(
+        table=_Z_TABLE,
+        name="foster",
+        form="points",
+        columns=("thermal resistance", "time"),
+        meaning="Pairs of resistance and time constant, added one to another.",
+        where=_PAIRS,
+    ),
+    Key(
+        table=_Z_TABLE,
+        name="cauer",
+        form="points",
+        columns=("thermal resistance", "heat capacity"),
+        meaning="Pairs of resistance and heat capacity, from the junction outwards.",
+        where=_PAIRS,
+    ),
+    Key(
+        table=_Z_TABLE,
+        name="grade",
+        form="choice",
+        choices=GRADES,
+        default="guaranteed",
+        meaning="What the maker says of the curve.",
+        where="title of the chart",
+    ),
+)
+
+
+def _chart(name: str, meaning: str, **more: Any) -> Key:
+    return Key(table="soa", name=name, meaning=meaning, where=more.pop("where", _CHART), **more)
+
+
+SOA_KEYS: tuple[Key, ...] = (
+    Key(table="", name="soa", form="tables", meaning="One table per printed safe-area curve.", where=_CHART),
+    _chart(
+        "pulse",
+        'Pulse width of the curve, or "dc".',
+        dimension="time",
+        band=(1e-8, 1e3),
+        choices=("dc",),
+    ),
+    _chart(
+        "T_ref",
+        "Temperature of `node` that the chart was drawn for.",
+        dimension="temperature",
+        band=(223.15, 523.15),
+        sign="any",
+        default="25 degC",
+    ),
+    _chart(
+        "node",
+        "Where T_ref is measured.",
+        form="choice",
+        choices=("case", "ambient"),
+        default="case",
+    ),
+    _chart(
+        "bias",
+        "Forward: base or gate driven; reverse: turn-off area.",
+        form="choice",
+        choices=("forward", "reverse"),
+        default="forward",
+    ),
+    _chart("single", "Drawn for single pulses (false: repeated, with duty_factor).", form="flag"),
+    _chart(
+        "duty_factor",
+        "Duty factor of a curve drawn for repeated pulses.",
+        dimension="ratio",
+        band=(1e-6, 1),
+    ),
+    _chart(
+        "grade",
+        "What the maker says of the curve.",
+        form="choice",
+        choices=GRADES,
+        default="guaranteed",
+    ),
+    _chart(
+        "reading",
+        "How far below the points read off the chart to stay.",
+        dimension="ratio",
+        band=(0, 0.5),
+        sign="non-negative",
+        default="0 %",
+    ),
+    _chart(
+        "points",
+        "Corner points read off the log-log chart, voltage rising.",
+        form="points",
+        columns=("voltage", "current"),
+        required=True,
+    ),
+    _chart(
+        "V_BE_off",
+        "Reverse base-emitter voltage that a turn-off area is drawn for.",
+        dimension="voltage",
+        band=(0, 50),
+        sign="non-negative",
+        belongs_to=BIPOLAR,
+    ),
+    _chart(
+        "I_B2",
+        "Reverse base current that a turn-off area is drawn for.",
+        dimension="current",
+        band=(1e-4, 1e3),
+        belongs_to=BIPOLAR,
+    ),
+    _chart(
+        "R_G",
+        "Gate resistor that a turn-off area is drawn for.",
+        dimension="resistance",
+        band=(0, 1e5),
+        sign="non-negative",
+        belongs_to=INSULATED_GATE,
+    ),
+    _chart(
+        "T_j_valid",
+        "Junction temperature up to which a turn-off area holds.",
+        dimension="temperature",
+        band=(273.15, 673.15),
+        sign="any",
+    ),
+    Key(
+        table="soa_derating",
+        name="convention",
+        form="choice",
+        choices=("like-dissipation", "own-curve", "held"),
+        default="like-dissipation",
+        meaning="How second breakdown falls with temperature: like dissipation, by its own line,"
+        " or not at all (chart drawn for T_j at its maximum).",
+        where=f"text beside the {_CHART}, or the power derating chart",
+    ),
+    Key(
+        table="soa_derating",
+        name="points",
+        form="points",
+        columns=("temperature", "ratio"),
+        meaning="Temperature and factor of the second-breakdown line.",
+        where="derating chart, the line named second breakdown",
+    ),
+)
+
+MECHANICAL_KEYS: tuple[Key, ...] = (
+    Key(
+        table="mechanical",
+        name="pinout",
+        form="text",
+        meaning='Order of the leads seen from the front, such as "B C E".',
+        where="outline drawing",
+    ),
+    Key(
+        table="mechanical",
+        name="tab",
+        form="choice",
+        choices=("collector", "drain", "isolated"),
+        meaning="What the tab or case is connected to.",
+        where="outline drawing",
+    ),
+    Key(
+        table="mechanical",
+        name="hole",
+        dimension="length",
+        band=(1e-3, 0.05),
+        grade="",
+        meaning="Diameter of the mounting hole.",
+        where="outline drawing",
+    ),
+    Key(
+        table="mechanical",
+        name="insulation_voltage",
+        dimension="voltage",
+        band=(50, 2e4),
+        meaning="Test voltage between leads and tab of an isolated package.",
+        where=_RATINGS,
+    ),
+)
+
+KEYS: tuple[Key, ...] = (
+    *DEVICE_KEYS,
+    *MAX_KEYS,
+    *THERMAL_KEYS,
+    *SOA_KEYS,
+    *TYPICAL_KEYS,
+    *MECHANICAL_KEYS,
+)
