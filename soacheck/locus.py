@@ -137,23 +137,24 @@ class Locus:
     def p_peak(self) -> FloatArray:
         """Greatest instantaneous power, inside the segments too, (case, member). [W]"""
         p = self._full(self.p)
-        peak = p.max(axis=2)
+        peak: FloatArray = p.max(axis=2)
         if self.use is Use.HELD:
             return peak
         v, i = self._full(self.v), self._full(self.i)
         dv, di = np.diff(v, axis=2), np.diff(i, axis=2)
         with np.errstate(divide="ignore", invalid="ignore"):
             s = -(dv * i[..., :-1] + di * v[..., :-1]) / (2 * dv * di)
-        s = np.where((s > 0) & (s < 1), s, 0.0)
+        lasts = np.diff(self.t, axis=2) > 0  # a step takes no time: nothing lies between its two points
+        s = np.where((s > 0) & (s < 1) & lasts, s, 0.0)
         inner = (v[..., :-1] + s * dv) * (i[..., :-1] + s * di)
         return np.asarray(np.maximum(peak, inner.max(axis=2)), dtype=np.float64)
 
     @property
     def v_peak(self) -> FloatArray:
         """Greatest voltage, (case, member). [V]"""
-        return self._full(self.v).max(axis=2)
+        return np.asarray(self._full(self.v).max(axis=2), dtype=np.float64)
 
     @property
     def i_peak(self) -> FloatArray:
         """Greatest current, (case, member). [A]"""
-        return self._full(self.i).max(axis=2)
+        return np.asarray(self._full(self.i).max(axis=2), dtype=np.float64)
