@@ -163,8 +163,7 @@ def demo(
     for path, content in files.items():
         make_folder(path.parent)
         write_atomic(path, content)
-    first = next(iter(files))
-    return Answer(text=_lines(files), notes=f"Try: soacheck check {first}\n")
+    return Answer(text=_lines(files) + f"try: soacheck check {next(iter(files))}\n")
 
 
 @device_app.command("show")

@@ -72,8 +72,9 @@ def _called(arguments: list[str]) -> Answer:
         outcome = end.code
     if isinstance(outcome, Answer):
         return outcome
-    status = ExitStatus(outcome) if isinstance(outcome, int) else ExitStatus.WITHIN
-    return Answer(text=printed.getvalue(), status=status)
+    # the parser's own numbers: 0 after help, 130 after an interrupt; its 1 must never look like a verdict
+    ends = {None: ExitStatus.WITHIN, 0: ExitStatus.WITHIN, 130: ExitStatus.INTERRUPTED}
+    return Answer(text=printed.getvalue(), status=ends.get(outcome, ExitStatus.INPUT))
 
 
 def refused(problems: Sequence[Problem], as_json: bool) -> Answer:

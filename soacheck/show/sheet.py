@@ -26,6 +26,7 @@ from soacheck.show.words import (
 from soacheck.trace import Traced, derived
 
 _NAME = re.compile(r"(?<![\w.])[A-Za-z_]\w*")
+_POWER = re.compile(r" *\*\* *")
 _DIGITS = 5
 _FIGURES = (
     "P_mean", "P_peak", "V_peak", "I_peak", "I_mean", "I_rms", "I_B_peak",
@@ -188,7 +189,7 @@ def _step(node: Traced, steps: _Steps) -> list[str]:
         lines = wrapped(f"{result}{how}{source}", head + "= ", indent + "  ")
         from_ = ", ".join(f"{_value(value)} {steps.mark(value)}" for value in node.inputs)
         return lines + (wrapped(from_, indent + "from ") if from_ else [])
-    written = node.formula.replace("**", "^")
+    written = _POWER.sub("^", node.formula)
     numbers = _put_in(node)
     lines = wrapped(f"= {written}", head, indent + "  ")
     if numbers == result:  # the formula is a mere name
@@ -213,7 +214,7 @@ def _put_in(node: Traced) -> str:
         raised = text[found.end() :].lstrip().startswith("**")
         return f"({quantity})" if divides or raised or quantity.startswith("-") else quantity
 
-    return _NAME.sub(written, text).replace("**", "^")
+    return _POWER.sub("^", _NAME.sub(written, text))
 
 
 def _same_in_celsius(node: Traced) -> bool:
