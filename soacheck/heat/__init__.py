@@ -1,1 +1,2 @@
-"""From junction to air: thermal networks, their modes and responses, transient curves, interfaces and sinks."""
+"""From junction to air: thermal networks, their modes and responses, transient curves, interfaces and
+sinks."""

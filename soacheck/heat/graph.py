@@ -1,8 +1,9 @@
-"""A thermal network as a graph of heat capacities and conductances, and its modes seen from the node that is heated.
+"""A thermal network as a graph of heat capacities and conductances, and its modes seen from the node that is
+heated.
 
-Nodes without heat capacity follow the others at once. They are taken out one by one, each replaced by conductances
-between its neighbours (star to mesh): only positive numbers are added and multiplied there, so nothing cancels. What is
-left is one symmetric eigenproblem per case on the capacity-scaled matrix.
+Nodes without heat capacity follow the others at once. They are taken out one by one, each replaced by
+conductances between its neighbours (star to mesh): only positive numbers are added and multiplied there, so
+nothing cancels. What is left is one symmetric eigenproblem per case on the capacity-scaled matrix.
 """
 
 from __future__ import annotations
@@ -23,8 +24,8 @@ class Graph:
     out:     (case, node) conductance to the boundary [W/K]
     capacity: (case, node) heat capacity, 0 for a node without [J/K]
 
-    Raises ValueError for a matrix that is not symmetric, a negative or not finite value and a node without a path to
-    the boundary: numpy's eigenvalue routine notices none of these.
+    Raises ValueError for a matrix that is not symmetric, a negative or not finite value and a node without a
+    path to the boundary: numpy's eigenvalue routine notices none of these.
     """
 
     between: FloatArray
@@ -39,7 +40,7 @@ class Graph:
             if not bool(np.all(np.isfinite(values) & (values >= 0))):
                 raise ValueError(f"thermal network: a {name} is negative or not a number")
         if not bool(np.all(g == np.swapaxes(g, 1, 2))):
-            raise ValueError("thermal network: heat that leaves one node must reach the other, the matrix is not symmetric")
+            raise ValueError("thermal network: not symmetric, heat that leaves one node must reach the other")
         if bool(np.any(np.any(c > 0, axis=0) != np.all(c > 0, axis=0))):
             raise ValueError("thermal network: the same nodes must have heat capacity in every case")
         reached = np.all(out > 0, axis=0)
@@ -60,11 +61,11 @@ def modes_of(graph: Graph, *, heated: int, observed: dict[str, int]) -> Modes:
     heat = np.zeros((cases, nodes))
     heat[:, heated] = 1.0
     taken: list[tuple[int, FloatArray, FloatArray]] = []
-    for node in np.flatnonzero(~massive):
+    for node in np.flatnonzero(~massive).tolist():
         link = g[:, node].copy()
         share = link / (link.sum(axis=1) + out[:, node])[:, None]
         own = heat[:, node] / (link.sum(axis=1) + out[:, node])
-        taken.append((int(node), share, own))
+        taken.append((node, share, own))
         g += share[:, :, None] * link[:, None, :]
         g = (g + np.swapaxes(g, 1, 2)) / 2  # the two products differ by rounding
         out += share * out[:, node, None]
@@ -81,7 +82,11 @@ def modes_of(graph: Graph, *, heated: int, observed: dict[str, int]) -> Modes:
         at_once[:, node] = (share * at_once).sum(axis=1) + own
     seen = np.array(list(observed.values()), dtype=np.intp)
     tau, gain, uniform = _eigen(
-        g[:, massive][:, :, massive], out[:, massive], capacity[:, massive], heat[:, massive], form[:, seen][:, :, massive]
+        g[:, massive][:, :, massive],
+        out[:, massive],
+        capacity[:, massive],
+        heat[:, massive],
+        form[:, seen][:, :, massive],
     )
     return Modes(nodes=tuple(observed), tau=tau, gain=gain, direct=at_once[:, seen], uniform=uniform)
 
@@ -89,7 +94,8 @@ def modes_of(graph: Graph, *, heated: int, observed: dict[str, int]) -> Modes:
 def _eigen(
     g: FloatArray, out: FloatArray, capacity: FloatArray, heat: FloatArray, form: FloatArray
 ) -> tuple[FloatArray, FloatArray, FloatArray]:
-    """tau, gain and uniform of the nodes with capacity. All of them positive definite after the checks of `Graph`."""
+    """tau, gain and uniform of the nodes with capacity. All of them positive definite after the checks of
+    `Graph`."""
     root = np.sqrt(capacity)
     count = g.shape[1]
     matrix = -g / (root[:, :, None] * root[:, None, :])
@@ -97,7 +103,7 @@ def _eigen(
     rate, vector = np.linalg.eigh(matrix)
     turned = np.swapaxes(vector, 1, 2)
     driven = (turned @ (heat / root)[:, :, None])[:, :, 0]
-    # a mode that the power does not reach has a state that no power sets: a vanishing coupling keeps it defined
+    # a mode that the power does not reach keeps a defined state by a vanishing coupling
     tiny = 1e-200 * np.sqrt(np.sum(heat * heat / capacity, axis=1, keepdims=True))
     driven = np.where(np.abs(driven) < tiny, tiny, driven)
     shown = (form / root[:, None, :]) @ vector

@@ -15,8 +15,9 @@ from soacheck.trace import BoolArray, FloatArray, frozen
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Ladder:
-    """Junction-to-case ladder. Cell k: heat capacity C[k] [J/K] at its node, resistance R[k] [K/W] to the next node;
-    the last resistance ends at the case. sum(R) = R_th_jc. error: greatest relative error of the fit (0: exact form).
+    """Junction-to-case ladder. Cell k: heat capacity C[k] [J/K] at its node, resistance R[k] [K/W] to the
+    next node; the last resistance ends at the case. sum(R) = R_th_jc. error: greatest relative error of the
+    fit (0: exact form).
     raised: the fit was lifted until it lies on or above every point."""
 
     R: FloatArray  # (cell,)
@@ -34,7 +35,8 @@ class Ladder:
 
 def ladder_of(thermal: ThermalData, *, file: str) -> Ladder | None:
     """The ladder of a device, None when it states no Z_th_jc. Raises InputError for a curve that no body has
-    (falls, grows faster than time, cannot be met within 15 %, ends above R_th_jc by more than the chart reading)."""
+    (falls, grows faster than time, cannot be met within 15 %, ends above R_th_jc by more than the chart
+    reading)."""
     cells = cells_of(thermal, file=file)
     if cells is None:
         return None
@@ -51,11 +53,11 @@ def network(
     """Modes of junction - ladder - case - interface - sink - boundary; resistances (case,), broadcasting.
 
     ladder None: the junction and case have no heat capacity and follow the power at once (only `direct`).
-    R_th_sa None: the sink is the boundary (held). C_th_sink None with R_th_sa given: a sink without heat capacity.
-    The ladder is scaled so that its sum is R_th_jc, its time constants kept. A value that is not known (NaN) makes that
-    case's modes unknown (NaN). One symmetric eigenproblem per case
-    (numpy.linalg.eigh, batched) on the capacity-scaled matrix; symmetry, positive capacities and a path to the boundary
-    are checked first.
+    R_th_sa None: the sink is the boundary (held). C_th_sink None with R_th_sa given: a sink without heat
+    capacity. The ladder is scaled so that its sum is R_th_jc, its time constants kept. A value that is not
+    known (NaN) makes that case's modes unknown (NaN). One symmetric eigenproblem per case (numpy.linalg.eigh,
+    batched) on the capacity-scaled matrix; symmetry, positive capacities and a path to the boundary are
+    checked first.
     """
     given = [np.atleast_1d(np.asarray(a, dtype=np.float64)) for a in (R_th_jc, R_th_cs)]
     sink = [np.atleast_1d(np.asarray(a, dtype=np.float64)) for a in (R_th_sa, C_th_sink) if a is not None]
@@ -72,8 +74,8 @@ def network(
     if C_th_sink is not None:
         capacity[:, -1] = rest[1]
     known = ~np.isnan(chain.sum(axis=1) + capacity.sum(axis=1))
-    stand_in = np.concatenate([np.full(R.size, ladder is not None), [False], *([[C_th_sink is not None]] if rest else [])])
-    chain, capacity = np.where(known[:, None], chain, 1.0), np.where(known[:, None], capacity, stand_in)
+    massive = [ladder is not None] * R.size + [False] + [C_th_sink is not None] * len(rest[:1])
+    chain, capacity = np.where(known[:, None], chain, 1.0), np.where(known[:, None], capacity, massive)
     if not bool(np.all(np.isfinite(chain) & (chain > 0))):
         raise ValueError("thermal network: every resistance must be a positive number")
     count = chain.shape[1]

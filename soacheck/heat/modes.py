@@ -4,12 +4,13 @@ A network seen from the junction is a sum of first-order modes. With the mode st
 
     tau_m * dy_m/dt = p(t) - y_m,      T_obs(t) - T_boundary = direct_obs * p(t) + sum_m gain_obs,m * y_m(t)
 
-so a step of 1 W gives direct + sum gain * (1 - exp(-t/tau)), the steady state is y_m = P, and every node that is
-observed (junction, case, heat sink) shares the same states.
+so a step of 1 W gives direct + sum gain * (1 - exp(-t/tau)), the steady state is y_m = P, and every node that
+is observed (junction, case, heat sink) shares the same states.
 
-Power is a parabola in each segment of time, so the state at the end of a segment is an exact linear form in the state
-at its start and three powers. Stringing the segments together is a first-order recursion; it is done by lanes, in
-about twice the square root of the number of segments numpy operations, and never by marching through periods.
+Power is a parabola in each segment of time, so the state at the end of a segment is an exact linear form in
+the state at its start and three powers. Stringing the segments together is a first-order recursion; it is
+done by lanes, in about twice the square root of the number of segments numpy operations, and never by
+marching through periods.
 """
 
 from __future__ import annotations
@@ -24,7 +25,8 @@ from soacheck.trace import FloatArray, frozen
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Modes:
-    """tau (case, mode) [s]; gain (case, node, mode) [K/W]; direct (case, node) [K/W]; uniform (case, mode) [W/K].
+    """tau (case, mode) [s]; gain (case, node, mode) [K/W]; direct (case, node) [K/W]; uniform (case, mode)
+    [W/K].
 
     nodes: names of the observed nodes, "junction", "case", "heatsink".
     uniform: mode states when every heat capacity is 1 K above the boundary, per kelvin of it.
@@ -51,7 +53,8 @@ class Modes:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Response:
-    """rise (case, member, node, time) over the boundary [K] at the times asked; state (case, member, mode, time) [W]."""
+    """rise (case, member, node, time) over the boundary [K] at the times asked; state (case, member, mode,
+    time) [W]."""
 
     rise: FloatArray
     state: FloatArray
@@ -61,8 +64,8 @@ def periodic(modes: Modes, t: FloatArray, p: FloatArray, p_mid: FloatArray) -> R
     """Periodic steady state, closed form.
 
     t (1|case, 1|member, time) one period, p the power at those times, p_mid (…, time-1) in the middle of each
-    segment: the power is the parabola through the three (exact when v and i are straight lines).
-    The state that a period started from rest ends in, over 1 - exp(-period/tau), is the state it starts in for ever.
+    segment: the power is the parabola through the three (exact when v and i are straight lines). The state
+    that a period started from rest ends in, over 1 - exp(-period/tau), is the state it starts in for ever.
     """
     length = (t[..., -1] - t[..., 0])[:, :, None]
     if not bool(np.all(length > 0)):
@@ -76,8 +79,8 @@ def one_shot(modes: Modes, t: FloatArray, p: FloatArray, p_mid: FloatArray, star
 
 
 def _respond(modes: Modes, t: FloatArray, p: FloatArray, p_mid: FloatArray, start: FloatArray | None) -> Response:
-    """One period (start None) or one shot. Inside, the axes are (time, case, mode, member): time first, so that each
-    numpy operation of the recursion runs over contiguous memory."""
+    """One period (start None) or one shot. Inside, the axes are (time, case, mode, member): time first, so
+    that each numpy operation of the recursion runs over contiguous memory."""
     cases, members, times = _shape(modes, t, p, p_mid, start)
     t, p, p_mid = (_time_first(a) for a in (t, p, p_mid))
     tau = modes.tau[None, :, :, None]
@@ -119,9 +122,9 @@ _SERIES = tuple((-1.0) ** j / factorial(j + 3) for j in range(17))  # phi_3(-x),
 def segment_weights(x: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
     """Weights of the powers before, in the middle of and after a segment in the mode state at its end.
 
-    The state is y = exp(-x) * y_before + the integral over s in 0..1 of x * exp(-x (1 - s)) * p(s), p the parabola through
-    the three powers. With phi_1(-x) = (1 - exp(-x))/x and phi_(k+1)(-x) = (1/k! - phi_k(-x))/x that is
-    x (phi_1 - 3 phi_2 + 4 phi_3), x (4 phi_2 - 8 phi_3), x (4 phi_3 - phi_2).
+    The state is y = exp(-x) * y_before + the integral over s in 0..1 of x * exp(-x (1 - s)) * p(s), p the
+    parabola through the three powers. With phi_1(-x) = (1 - exp(-x))/x and phi_(k+1)(-x) = (1/k! -
+    phi_k(-x))/x that is x (phi_1 - 3 phi_2 + 4 phi_3), x (4 phi_2 - 8 phi_3), x (4 phi_3 - phi_2).
 
     Parameters
     ----------
@@ -162,10 +165,12 @@ def segment_weights(x: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
 
 
 def _recursion(decay: FloatArray, feed: FloatArray, whole: FloatArray, begin: FloatArray | None) -> FloatArray:
-    """y[0] = begin, y[k+1] = decay[k] * y[k] + feed[k] along the first axis; the periodic start when begin is None.
+    """y[0] = begin, y[k+1] = decay[k] * y[k] + feed[k] along the first axis; the periodic start when begin is
+    None.
 
-    Time is cut into lanes of equal length that are run side by side from rest; then each lane's start is carried from
-    the lane before it. `whole` is 1 - the product of all decays, computed without cancellation. `feed` is used up.
+    Time is cut into lanes of equal length that are run side by side from rest; then each lane's start is
+    carried from the lane before it. `whole` is 1 - the product of all decays, computed without cancellation.
+    `feed` is used up.
     """
     count = feed.shape[0]
     length = max(isqrt(count), 1)

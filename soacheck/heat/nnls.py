@@ -1,7 +1,7 @@
 """Least squares with non-negative unknowns, small and dense.
 
-Written here so that reading a device does not load an optimisation package, and so that an empty problem or a limit
-on iterations is an error and not a number.
+Written here so that reading a device does not load an optimisation package, and so that an empty problem or a
+limit on iterations is an error and not a number.
 """
 
 from __future__ import annotations
@@ -14,8 +14,9 @@ from soacheck.trace import FloatArray
 def nnls(matrix: FloatArray, target: FloatArray) -> FloatArray:
     """Non-negative x that makes the length of matrix @ x - target least.
 
-    Active-set method: columns enter one by one where the gradient asks for them, and leave when the unconstrained
-    solution over the entered ones would make them negative. Columns are scaled to length 1 first.
+    Active-set method: columns enter one by one where the gradient asks for them, and leave when the
+    unconstrained solution over the entered ones would make them negative. Columns are scaled to length 1
+    first.
 
     Parameters
     ----------

@@ -14,7 +14,7 @@ from soacheck.trace import FloatArray
 
 SAME = 0.02  # sums of resistances this close to R_th_jc are the same figure, rounded
 RAISED_ABOVE = 0.02  # a fit further off than this is raised above every point
-REFUSED_ABOVE = 0.15  # no body answers like a curve that cannot be met within this, or that ends so far above R_th_jc
+REFUSED_ABOVE = 0.15  # no body answers like a curve that is missed by more, or ends further above R_th_jc
 DECADES_BELOW = 3  # how far the root of time is followed below the first point of a curve
 PER_DECADE = 5  # points between the readings that steer the fit along the chart's straight lines
 ALIKE = 1e-6  # Foster time constants closer than this are one
@@ -34,7 +34,8 @@ class Cells(NamedTuple):
 def cells_of(thermal: ThermalData, *, file: str) -> Cells | None:
     """The ladder cells of a device, None when it states no Z_th_jc; InputError for a curve that no body has.
 
-    A curve that falls, grows faster than time, cannot be met within 15 % or ends above R_th_jc by more than 15 %.
+    A curve that falls, grows faster than time, cannot be met within 15 % or ends above R_th_jc by more than
+    15 %.
     """
     if thermal.form == "none":
         return None
@@ -52,7 +53,8 @@ def cells_of(thermal: ThermalData, *, file: str) -> Cells | None:
 
 
 def _tied(R: FloatArray, C: FloatArray, rated: float | None, how: str) -> Cells:
-    """The ladder tied to R_th_jc: scaled to it, or left larger where it states clearly more heat resistance."""
+    """The ladder tied to R_th_jc: scaled to it, or left larger where it states clearly more heat
+    resistance."""
     total = float(R.sum())
     if rated is None:
         return Cells(R, C, how=f"{how}; its sum {total:.4g} K/W stands for R_th_jc, which is not stated")
@@ -61,9 +63,9 @@ def _tied(R: FloatArray, C: FloatArray, rated: float | None, how: str) -> Cells:
         said = "" if abs(scale - 1) < 1e-9 else f"; scaled by {scale:.4g} so that its sum is R_th_jc"
         return Cells(R * scale, C / scale, how=how + said)
     if scale > 1:
-        said = f"; its sum {total:.4g} K/W is below R_th_jc {rated:.4g} K/W: scaled up to it, the cautious one"
+        said = f"; its sum {total:.4g} K/W is below R_th_jc {rated:.4g} K/W: scaled up, cautious"
         return Cells(R * scale, C / scale, how=how + said)
-    said = f"; its sum {total:.4g} K/W is above R_th_jc {rated:.4g} K/W: its own sum is kept, the cautious one"
+    said = f"; its sum {total:.4g} K/W is above R_th_jc {rated:.4g} K/W: kept, cautious"
     return Cells(R, C, how=how + said)
 
 
@@ -78,7 +80,7 @@ def _from_curve(t: FloatArray, z: FloatArray, rated: float | None, file: str) ->
     if error > REFUSED_ABOVE:
         raise _refused(
             file,
-            f"no body answers a step of power like this curve: the closest one is {error:.0%} off at one of the points",
+            f"no body answers a step of power like this curve: the closest is {error:.0%} off at a point",
         )
     R, C = foster_to_ladder(gain, tau)
     how = f"{t.size} points met by a ladder of {R.size} cells, greatest deviation {error:.1%}"
@@ -87,7 +89,7 @@ def _from_curve(t: FloatArray, z: FloatArray, rated: float | None, file: str) ->
     if rated is None:
         how += f"; its last point {end:.4g} K/W stands for R_th_jc, which is not stated"
     elif end > rated * (1 + 1e-9):
-        how += f"; its last point {end:.4g} K/W is above R_th_jc {rated:.4g} K/W and is kept as its end, the cautious one"
+        how += f"; its last point {end:.4g} K/W is above R_th_jc {rated:.4g} K/W, kept, cautious"
     elif end < rated * (1 - 1e-9):
         how += f"; completed from its last point {end:.4g} K/W to R_th_jc {rated:.4g} K/W"
     return Cells(R, C, error, error > RAISED_ABOVE, how + "; below its first point it goes as the root of time")
@@ -107,20 +109,22 @@ def _faults(t: FloatArray, z: FloatArray, rated: float | None) -> list[str]:
         fast = z[1:] / z[:-1] > t[1:] / t[:-1] * (1 + 1e-9)
         if bool(np.any(fast)):
             place = int(np.argmax(fast)) + 2
-            found.append(f"the curve grows faster than time up to the value at place {place}, no body does that")
+            found.append(f"the curve grows faster than time up to the value at place {place}")
     if rated is not None and not float(z[-1]) <= rated * (1 + REFUSED_ABOVE):
         found.append(f"the curve ends at {z[-1]:.4g} K/W, far above R_th_jc = {rated:.4g} K/W")
     return found
 
 
 def _refused(file: str, *problems: str) -> InputError:
-    remedy = "read the single-pulse curve of the chart again, in K/W: a normalised one is first multiplied by R_th_jc"
-    return InputError(*(Problem(file=file, key="thermal.Z_th_jc", problem=text, remedy=remedy) for text in problems))
+    remedy = "read the chart's single-pulse curve again, in K/W; a normalised one times R_th_jc"
+    key = "thermal.Z_th_jc"
+    return InputError(*(Problem(file=file, key=key, problem=text, remedy=remedy) for text in problems))
 
 
 def _guide(t: FloatArray, z: FloatArray, total: float) -> tuple[FloatArray, FloatArray]:
-    """Points that steer a fit where there are no readings: the root of time before them (heat still in the die), the
-    chart's straight line between them, and on to the total at the steeper of the last slope and the root of time."""
+    """Points that steer a fit where there are no readings: the root of time before them (heat still in the
+    die), the chart's straight line between them, and on to the total at the steeper of the last slope and the
+    root of time."""
     log_t, log_z = np.log10(t), np.log10(z)
     slope = 0.5
     if t.size > 1:
@@ -151,10 +155,10 @@ def foster_to_ladder(R: FloatArray, tau: FloatArray) -> tuple[FloatArray, FloatA
     tuple of two ndarray, shape (m,), m <= n
         R and C of the ladder from the heated node outwards. [K/W], [J/K]
 
-    Range: all values positive. Pairs with time constants equal to 1e-6 are joined, resistances below 1e-7 of the sum
-    go to their neighbour.
-    Source: W. Cauer, continued fraction of a positive real driving-point impedance about infinity (from memory);
-    digits are kept by computing with 60 + 20 n decimals.
+    Range: all values positive. Pairs with time constants equal to 1e-6 are joined, resistances below 1e-7 of
+    the sum go to their neighbour.
+    Source: W. Cauer, continued fraction of a positive real driving-point impedance about infinity (from
+    memory); digits are kept by computing with 60 + 20 n decimals.
     """
     R, tau = _joined(np.asarray(R, dtype=np.float64), np.asarray(tau, dtype=np.float64))
     with localcontext() as context:

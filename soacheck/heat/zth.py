@@ -1,8 +1,9 @@
 """Positive first-order modes from a step response that is known at points.
 
-A body with one heat source answers a step with a sum of saturating exponentials, all positive. The unknown time
-constants are put on a dense logarithmic grid, so that only the gains are sought, by non-negative least squares on the
-relative deviation. Time constants found this way describe the curve; they are no property of any part of the body.
+A body with one heat source answers a step with a sum of saturating exponentials, all positive. The unknown
+time constants are put on a dense logarithmic grid, so that only the gains are sought, by non-negative least
+squares on the relative deviation. Time constants found this way describe the curve; they are no property of
+any part of the body.
 """
 
 from __future__ import annotations
@@ -27,7 +28,8 @@ READ_TO = 1e-3  # a reading this close below the total has arrived: no chart is 
 
 
 class PositiveModes(NamedTuple):
-    """offset + sum(gain * (1 - exp(-t/tau))); error: greatest relative deviation of the unraised fit at the points."""
+    """offset + sum(gain * (1 - exp(-t/tau))); error: greatest relative deviation of the unraised fit at the
+    points."""
 
     tau: FloatArray  # (mode,) [s]
     gain: FloatArray  # (mode,) unit of z
@@ -45,9 +47,9 @@ def positive_modes(
 ) -> PositiveModes:
     """Modes that fit offset + sum(gain * (1 - exp(-t/tau))) to z, and end in `total` exactly.
 
-    Use for a transient thermal curve (offset 0, total R_th) or any other step response of a body that conducts heat.
-    Where the fit deviates by more than `raise_above` it is replaced by the closest one that lies on or above every
-    point; the error stays that of the fit before.
+    Use for a transient thermal curve (offset 0, total R_th) or any other step response of a body that
+    conducts heat. Where the fit deviates by more than `raise_above` it is replaced by the closest one that
+    lies on or above every point; the error stays that of the fit before.
 
     Parameters
     ----------
@@ -62,7 +64,8 @@ def positive_modes(
     raise_above : float
         Relative deviation above which the fit is raised; below 0: always. [-]
     guide : pair of ndarray, shape (k,)
-        More points t, z that steer the fit weakly and count neither in the error nor in the raising. [s], [unit of z]
+        More points t, z that steer the fit weakly and count neither in the error nor in the raising. [s],
+        [unit of z]
 
     Returns
     -------
@@ -101,15 +104,14 @@ class _Fit(NamedTuple):
     readings: int  # the first ones are readings, the rest is guide
 
     def grid(self, per_decade: float) -> FloatArray:
-        """Time constants from well below the first time to where the last reading may still be far from the total."""
+        """Time constants from well below the first time to where the last reading may still be far from the
+        total."""
         last, span = int(np.argmax(self.t)), self.total - self.offset
         beyond = 3.0 * span / max(float(self.z[last]) - self.offset, 1e-3 * span)
         low, high = np.log10(self.t.min()) - 1.0, np.log10(self.t[last] * beyond)
         return np.asarray(10 ** np.linspace(low, high, round((high - low) * per_decade) + 1), dtype=np.float64)
 
-    def solve(
-        self, grid: FloatArray, target: FloatArray, weight: FloatArray
-    ) -> tuple[FloatArray, FloatArray]:
+    def solve(self, grid: FloatArray, target: FloatArray, weight: FloatArray) -> tuple[FloatArray, FloatArray]:
         """tau and gain of the modes among `grid` that meet a target best and end in the total exactly."""
         span = self.total - self.offset
         rows = -np.expm1(-self.t[:, None] / grid) * (weight / self.z)[:, None]
@@ -129,9 +131,7 @@ class _Fit(NamedTuple):
         off = (self.offset - np.expm1(-self.t[:, None] / tau) @ gain) / self.z - 1.0
         return float(np.max(np.abs(off * np.maximum(self.weight, GUIDE_WORST))))
 
-    def thinned(
-        self, first: tuple[FloatArray, FloatArray], raise_above: float
-    ) -> tuple[FloatArray, FloatArray]:
+    def thinned(self, first: tuple[FloatArray, FloatArray], raise_above: float) -> tuple[FloatArray, FloatArray]:
         """The fewest modes that do next to as well: neighbours merged, or a coarser grid."""
         best, deviation = first, self.worst(*first)
         allowed = min(deviation + THINNING_COST, max(deviation, raise_above))
@@ -159,9 +159,9 @@ def _merged(tau: FloatArray, gain: FloatArray) -> FloatArray:
 def _raised(fit: _Fit) -> tuple[FloatArray, FloatArray]:
     """The closest fit that lies on or above every reading.
 
-    Readings below which the fit falls are weighted up and aimed at from above until none is left; what is then left
-    over is moved into the fastest mode. Only a reading within READ_TO of the total, which no sum of modes reaches at a
-    finite time, may lie that much above the fit.
+    Readings below which the fit falls are weighted up and aimed at from above until none is left; what is
+    then left over is moved into the fastest mode. Only a reading within READ_TO of the total, which no sum of
+    modes reaches at a finite time, may lie that much above the fit.
     """
     t, z = fit.t[: fit.readings], fit.z[: fit.readings]
     wanted = np.minimum(z, fit.total * (1 - READ_TO))
