@@ -83,6 +83,10 @@ KEYS: tuple[Key, ...] = (
         "heat_path.working_voltage", "Voltage across the insulator.", "the circuit diagram",
         dimension="voltage", band=(0.0, 1e5), sign="non-negative",
     ),
+    _key(
+        "heat_path.T_case", "Case temperature, held by something that the file does not describe.",
+        "a measurement on the case, or what a cold plate holds", dimension="temperature", band=(198.15, 498.15),
+    ),
     _not_built(
         "heat_path.cutout", "Thermal cut-out.", "not built yet: the check is made without a thermal cut-out"
     ),
