@@ -13,7 +13,7 @@ from soacheck.quantity.units import DIMENSIONS, UNITS, canonical, plain_signs
 LONGEST = 64  # characters; a rating needs about ten
 
 _NUMBER = r"[+-]?(?:[0-9]{1,24}(?:\.[0-9]{0,24})?|\.[0-9]{1,24})(?:[eE][+-]?[0-9]{1,3})?"
-_QUANTITY = re.compile(rf"({_NUMBER})(?: *([^0-9+\-., eE][^\n\r]*)| +([eE][^\n\r]*))", re.ASCII)
+_QUANTITY = re.compile(rf"({_NUMBER})(?: *([^0-9+\-., eE_'\n\r][^\n\r]*)| +([eE][^\n\r]*))", re.ASCII)
 
 
 @dataclass(frozen=True, slots=True)
@@ -29,6 +29,23 @@ def read(value: object, dimension: str, band: tuple[float, float] | None = None)
 
     `dimension` is a name in DIMENSIONS; `band` the plausible range in SI (kelvin), both ends allowed.
     """
+    try:
+        return _read(value, dimension, band)
+    except QuantityError as error:
+        raise _offering_what_is_right(error, dimension) from error.__cause__
+
+
+def _offering_what_is_right(error: QuantityError, dimension: str) -> QuantityError:
+    """The same refusal, its offer taken back when that would be refused too: "-274" is not -274 degC."""
+    try:
+        if error.instead:
+            _read(error.instead, dimension, None)
+    except QuantityError as worse:
+        return QuantityError(error.problem, worse.problem)
+    return error
+
+
+def _read(value: object, dimension: str, band: tuple[float, float] | None) -> Reading:
     if type(value) is str and len(value) <= LONGEST:
         match = _QUANTITY.fullmatch(value)
         unit = UNITS.get(match[2]) if match else None

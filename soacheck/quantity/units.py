@@ -58,7 +58,8 @@ _PREFIXED: tuple[tuple[str, str, str], ...] = (
     ("voltage tempco", "V/K V/degC", "u m ."),
     ("length", "m", "n u m c . k"),
     ("thermal conductivity", "W/(m*K) W/(K*m) W/(m*degC) W/m/K W/K/m W/m/degC", "m . k"),
-    ("pressure", "Pa bar", "m . h k"),
+    ("pressure", "Pa", "m . h k"),
+    ("pressure", "bar", "m ."),
     ("velocity", "m/s", "m c ."),
     ("mass", "g", "m . k"),
 )
@@ -153,6 +154,6 @@ def plain_signs(text: str) -> str:
 
 def canonical(unit: str) -> str:
     """A unit's spelling as the table has it: "m°C / W" is "mdegC/W", "W/(m K)" is "W/(m*K)"."""
-    text = _CELSIUS.sub("degC", plain_signs(unit).strip())
+    text = _CELSIUS.sub("degC", plain_signs(unit).strip(" "))
     text = _IN_PARENTHESES.sub(r"(\1*\2)", text.replace("**", "^"))
     return _AROUND_OPERATORS.sub(r"\1", text)
