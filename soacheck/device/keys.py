@@ -15,7 +15,7 @@ INSULATED_GATE = MOSFET | IGBT
 BIPOLAR_OR_IGBT = BIPOLAR | IGBT
 GRADES = ("guaranteed", "typical", "measured", "assumed")
 
-_RATINGS = "table of absolute maximum ratings (limiting values)"
+_RATINGS = "table of absolute maximum ratings"
 _THERMAL = "table of thermal characteristics"
 _CHART = "safe-operating-area chart"
 
@@ -108,9 +108,7 @@ MAX_KEYS: tuple[Key, ...] = (
     ),
     _rating("V_CBO", "voltage", _VOLTS, "Collector-base voltage, emitter open.", kinds=BIPOLAR),
     _rating("V_CEV", "voltage", _VOLTS, "Collector-emitter voltage, base reverse-biased.", kinds=BIPOLAR),
-    _rating(
-        "V_CER", "voltage", _VOLTS, "Collector-emitter voltage with R_BE from base to emitter.", kinds=BIPOLAR
-    ),
+    _rating("V_CER", "voltage", _VOLTS, "Collector-emitter voltage with R_BE from base to emitter.", kinds=BIPOLAR),
     _rating("R_BE", "resistance", (0.1, 1e6), "Resistor that V_CER is stated for.", kinds=BIPOLAR),
     _rating("V_EBO", "voltage", (0.1, 200), "Emitter-base voltage, collector open.", kinds=BIPOLAR),
     _rating("V_GSS", "voltage", (1, 200), "Gate-source (IGBT: gate-emitter) voltage.", kinds=INSULATED_GATE),
@@ -157,14 +155,12 @@ MAX_KEYS: tuple[Key, ...] = (
         "T_case",
         "temperature",
         (223.15, 523.15),
-        "Case temperature that P_tot (MOSFET: I_D too) is stated at.",
+        "Case temperature that P_tot (and I_D of a MOSFET) is stated at.",
         sign="any",
         default="25 degC",
         grade="",
     ),
-    _rating(
-        "T_j", "temperature", (323.15, 673.15), "Greatest junction temperature.", sign="any", required=True
-    ),
+    _rating("T_j", "temperature", (323.15, 673.15), "Greatest junction temperature.", sign="any", required=True),
     _rating("E_AS", "energy", (1e-6, 100), "Single-shot avalanche energy from T_j = 25 degC, with I_AS."),
     _rating("I_AS", "current", _AMPS, "Avalanche current that E_AS is stated for."),
     _rating("E_AR", "energy", (1e-7, 100), "Repetitive avalanche energy."),

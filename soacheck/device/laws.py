@@ -120,9 +120,7 @@ def regions(device: Device, v: FloatArray, i: FloatArray) -> IntArray:
     code = np.where(
         off,
         CUTOFF,
-        np.where(
-            v > _over(device.max.V_max.value, v.ndim), BREAKDOWN, np.where(saturated, SATURATION, ACTIVE)
-        ),
+        np.where(v > _over(device.max.V_max.value, v.ndim), BREAKDOWN, np.where(saturated, SATURATION, ACTIVE)),
     )
     return np.where(np.isnan(v) | np.isnan(i), -1, code).astype(np.int64)
 
@@ -135,9 +133,7 @@ def V_BE_tempco(device: Device) -> Traced:
     return given("V_BE_tempco", -4e-3 if device.kind in DARLINGTON else -2e-3, "V/K", COMMON_PRACTICE)
 
 
-def base_emitter_voltage(
-    device: Device, current: FloatArray, T: FloatArray | float = T_25
-) -> FloatArray | None:
+def base_emitter_voltage(device: Device, current: FloatArray, T: FloatArray | float = T_25) -> FloatArray | None:
     """V_BE at a collector current and junction temperature; None when the file states no V_BE.
 
     Parameters

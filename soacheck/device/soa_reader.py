@@ -24,9 +24,7 @@ _ABOVE = 1.2  # two charts read by eye, each to 10 %
 _DRIVE = ("V_BE_off", "I_B2", "R_G", "T_j_valid")
 
 
-def read_curves(
-    document: Document, T_j_max: float | None, assumptions: list[str]
-) -> tuple[SafeAreaCurve, ...]:
+def read_curves(document: Document, T_j_max: float | None, assumptions: list[str]) -> tuple[SafeAreaCurve, ...]:
     """All curves of the file, in its order; what had to be assumed is added to `assumptions`."""
     file = Path(document.file).name
     read = [(cells, _curve(cells, T_j_max, file)) for cells in document.listed("soa")]
@@ -40,9 +38,7 @@ def read_curves(
     return tuple(curve for _, curve in stated)
 
 
-def read_derating(
-    document: Document, curves: tuple[SafeAreaCurve, ...], assumptions: list[str]
-) -> SafeAreaDerating:
+def read_derating(document: Document, curves: tuple[SafeAreaCurve, ...], assumptions: list[str]) -> SafeAreaDerating:
     """The second-breakdown convention; silent files take the cautious one."""
     cells = document.table("soa_derating")
     stated = cells.has("convention")
@@ -76,9 +72,7 @@ def _curve(cells: Cells, T_j_max: float | None, file: str) -> SafeAreaCurve | No
     duty_factor = cells.quantity("duty_factor")
     single = cells.flag("single") is not False
     if not single and not cells.has("duty_factor"):
-        cells.refuse(
-            "single", "a curve for repeated pulses holds for one duty factor", 'duty_factor = "10 %"'
-        )
+        cells.refuse("single", "a curve for repeated pulses holds for one duty factor", 'duty_factor = "10 %"')
     if single and cells.has("duty_factor"):
         cells.refuse("duty_factor", "a duty factor belongs to a curve for repeated pulses", "single = false")
     if bias == "forward":

@@ -89,9 +89,7 @@ TYPICAL_KEYS: tuple[Key, ...] = (
         where="chart of leakage against temperature",
     ),
     _spread("V_CE_sat", "voltage", (0.01, 20), "Saturation voltage at V_CE_sat_I_C.", BIPOLAR_OR_IGBT),
-    _typical(
-        "V_CE_sat_I_C", "current", _AMPS, "Collector current that V_CE_sat is stated at.", BIPOLAR_OR_IGBT
-    ),
+    _typical("V_CE_sat_I_C", "current", _AMPS, "Collector current that V_CE_sat is stated at.", BIPOLAR_OR_IGBT),
     _typical("V_A", "voltage", (1, 1e4), "Early voltage.", BIPOLAR, where="output characteristics, slope"),
     _spread("R_DS_on", "resistance", (1e-5, 1e3), "On-resistance at R_DS_on_V_GS and 25 degC.", MOSFET),
     _typical("R_DS_on_V_GS", "voltage", (0.5, 50), "Gate-source voltage that R_DS_on is stated at.", MOSFET),
@@ -115,9 +113,7 @@ TYPICAL_KEYS: tuple[Key, ...] = (
     _typical("r_CE_hot", "resistance", (1e-5, 1e2), "Slope of the on-state line at T_hot.", IGBT),
     _typical("f_T", "frequency", (1e3, 1e12), "Transition frequency.", BIPOLAR),
     _typical("E_on", "energy", (1e-9, 10), "Turn-on energy at E_V_ref, E_I_ref, E_T_ref.", where=_SWITCHING),
-    _typical(
-        "E_off", "energy", (1e-9, 10), "Turn-off energy at E_V_ref, E_I_ref, E_T_ref.", where=_SWITCHING
-    ),
+    _typical("E_off", "energy", (1e-9, 10), "Turn-off energy at E_V_ref, E_I_ref, E_T_ref.", where=_SWITCHING),
     _typical("E_V_ref", "voltage", _VOLTS, "Voltage that E_on and E_off are stated at.", where=_SWITCHING),
     _typical("E_I_ref", "current", _AMPS, "Current that E_on and E_off are stated at.", where=_SWITCHING),
     _temperature("E_T_ref", "Junction temperature of E_on and E_off.", None, where=_SWITCHING),
