@@ -41,7 +41,9 @@ NOT_DECIDED = (
     "touch-temperature",
     "insulation",
 )
-SINK_CAPACITY = Missing(key="heat_path.heatsink.C_th", where="mass of the sink times its specific heat; a long shot warms it")
+SINK_CAPACITY = Missing(
+    key="heat_path.heatsink.C_th", where="mass of the sink times its specific heat; a long shot warms it"
+)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -78,8 +80,10 @@ def check(stage: Stage) -> Result:
 
 def evaluate(stage: Stage) -> tuple[Sitting, ...]:
     """Every half, duty and limit of a stage, for all cases of its plan at once."""
-    return tuple(_sit(stage, half.fitted, place_of(half.fitted.device, half.ladder, stage.heat_path, stage.devices))
-                 for half in stage.halves)  # fmt: skip
+    return tuple(
+        _sit(stage, half.fitted, place_of(half.fitted.device, half.ladder, stage.heat_path, stage.devices))
+        for half in stage.halves
+    )
 
 
 def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
@@ -89,7 +93,14 @@ def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
     judged, findings = [], []
     for duty in duties:
         operating, lower = settled[id(duty)]
-        asked = Judged(device=fitted.device, fitted=fitted, duty=duty, operating=operating, rules=stage.rules, cases=cases)
+        asked = Judged(
+            device=fitted.device,
+            fitted=fitted,
+            duty=duty,
+            operating=operating,
+            rules=stage.rules,
+            cases=cases,
+        )
         judged.append(asked)
         of_duty = [f for limit in LIMITS for f in limit(asked)]
         if lower is not None:
@@ -100,8 +111,10 @@ def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
 
 
 def _settle_all(duties: Iterable[Duty], place: Place, cases: int) -> dict[int, tuple[Operating, Operating | None]]:
-    """Steady duties first, then the shots that start from them; a shot that outlasts a sink of unknown heat capacity gets
-    its upper and its lower bound."""
+    """Steady duties first, then the shots that start from them.
+
+    A shot that outlasts a sink of unknown heat capacity gets its upper and its lower bound.
+    """
     settled: dict[int, tuple[Operating, Operating | None]] = {}
     shots = []
     for duty in duties:
@@ -127,9 +140,11 @@ def _either(upper: Finding, lower: Finding) -> Finding:
     if not bool(np.any(open_)):
         return upper
     reason = Reason(
-        text="The shot warms a sink whose heat capacity is not stated: held at its start it would do, following at once it would not.",
-        applies=open_, missing=(SINK_CAPACITY,),
-    )  # fmt: skip
+        text="The shot warms a sink whose heat capacity is not stated: held at its start it would do, "
+        "following at once it would not.",
+        applies=open_,
+        missing=(SINK_CAPACITY,),
+    )
     return replace(upper, status=np.where(open_, int(Status.UNPROVEN), upper.status), reasons=(*upper.reasons, reason))
 
 
@@ -187,7 +202,7 @@ def _decide(stage: Stage, plan: CasePlan, worst: list[Finding], cases: list[int]
         safe_area=tuple(p for s in sittings for p in drawn.safe_areas(s.judged)),
         characteristics=tuple(drawn.characteristics(s.judged) for s in sittings),
         sweeps=tuple(sweep for s in sittings for sweep in drawn.sweeps(s.judged)),
-    )  # fmt: skip
+    )
 
 
 def _lowered(finding: Finding, raised: list[Raised]) -> Finding:
@@ -199,18 +214,36 @@ def _lowered(finding: Finding, raised: list[Raised]) -> Finding:
 
 
 def _facts(device: Device) -> DeviceFacts:
-    return DeviceFacts(name=device.name, file=device.file, sha256=device.sha256, ratings_from=device.ratings_from, kind=device.kind)
+    return DeviceFacts(
+        name=device.name,
+        file=device.file,
+        sha256=device.sha256,
+        ratings_from=device.ratings_from,
+        kind=device.kind,
+    )
 
 
 def _duty_result(sitting: Sitting, judged: Judged) -> DutyResult:
     figures = chain(judged.operating, sitting.place)
     duty = judged.duty
     return DutyResult(
-        name=duty.name, half=duty.half, P_mean=figures.P_mean, P_peak=figures.P_peak, V_peak=figures.V_peak,
-        I_peak=figures.I_peak, I_mean=figures.I_mean, I_rms=figures.I_rms, I_B_peak=_base_current(judged, figures.I_peak),
-        T_j_peak=figures.T_j_peak, T_j_mean=figures.T_j_mean, T_case=figures.T_case, T_heatsink=figures.T_heatsink,
-        R_th_total=figures.R_th_total, facts=duty.facts, series=drawn.series(judged),
-    )  # fmt: skip
+        name=duty.name,
+        half=duty.half,
+        P_mean=figures.P_mean,
+        P_peak=figures.P_peak,
+        V_peak=figures.V_peak,
+        I_peak=figures.I_peak,
+        I_mean=figures.I_mean,
+        I_rms=figures.I_rms,
+        I_B_peak=_base_current(judged, figures.I_peak),
+        T_j_peak=figures.T_j_peak,
+        T_j_mean=figures.T_j_mean,
+        T_case=figures.T_case,
+        T_heatsink=figures.T_heatsink,
+        R_th_total=figures.R_th_total,
+        facts=duty.facts,
+        series=drawn.series(judged),
+    )
 
 
 def _base_current(judged: Judged, I_peak: Traced | None) -> Traced | None:
@@ -236,9 +269,14 @@ def _assumptions(stage: Stage, plan: CasePlan, governing: int) -> tuple[str, ...
             said.append(f"{half.fitted.device.name}: {half.ladder.how}")
     path = stage.heat_path
     if path.shared_by is None and path.sink == "resistance":
-        said.append(f"the sink is shared by every device of the stage, {stage.devices} (heat_path.shared_by not stated)")
+        said.append(
+            f"the sink is shared by every device of the stage, {stage.devices} (heat_path.shared_by not stated)"
+        )
     if path.sink == "resistance" and path.C_th_sink is None:
-        said.append("the sink stays at its mean temperature over a period, and at its start over a shot of up to 1 s (common practice)")
+        said.append(
+            "the sink stays at its mean temperature over a period, and at its start over a shot of up to 1 s "
+            "(common practice)"
+        )
     if stage.spreads and governing > 0:
         corner = ", ".join(f"{key} = {values[governing]:.6g}" for key, values in sorted(plan.values.items()))
         said.append(f"duties are shown at the corner that governs: {corner} (SI units)")

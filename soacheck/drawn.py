@@ -38,11 +38,18 @@ def series(judged: Judged) -> Series | None:
     if locus.turn_off is not None and not held:
         turn_off = np.array(np.broadcast_to(locus.turn_off, shape)[0, member])
     return Series(
-        t=line(locus.t), v=v, i=i, region=region, T_j=line(operating.T_j), T_case=line(operating.T_case_t),
-        T_heatsink=line(operating.T_heatsink_t), use=locus.use.value, turn_off=turn_off,
+        t=line(locus.t),
+        v=v,
+        i=i,
+        region=region,
+        T_j=line(operating.T_j),
+        T_case=line(operating.T_case_t),
+        T_heatsink=line(operating.T_heatsink_t),
+        use=locus.use.value,
+        turn_off=turn_off,
         P_allowed=dissipation.allowed_power(judged)[0] if held else np.empty(0),
         T_air=operating.T_air[0] if held else operating.T_air[0, member : member + 1],
-    )  # fmt: skip
+    )
 
 
 def sweeps(judged: tuple[Judged, ...]) -> tuple[Sweep, ...]:
@@ -56,11 +63,18 @@ def sweeps(judged: tuple[Judged, ...]) -> tuple[Sweep, ...]:
         order = np.argsort(x, kind="stable")
         drawn.append(
             Sweep(
-                duty=one.duty.name, half=one.duty.half, name=members.name, unit=members.unit, x=x[order],
-                P_mean=operating.P_mean[0, order], P_allowed=dissipation.allowed_power(one)[0, order],
-                T_j_peak=operating.T_j_peak[0, order], T_case=operating.T_case[0, order],
-                T_heatsink=operating.T_heatsink[0, order], T_air=operating.T_air[0, order],
-            )  # fmt: skip
+                duty=one.duty.name,
+                half=one.duty.half,
+                name=members.name,
+                unit=members.unit,
+                x=x[order],
+                P_mean=operating.P_mean[0, order],
+                P_allowed=dissipation.allowed_power(one)[0, order],
+                T_j_peak=operating.T_j_peak[0, order],
+                T_case=operating.T_case[0, order],
+                T_heatsink=operating.T_heatsink[0, order],
+                T_air=operating.T_air[0, order],
+            )
         )
     return tuple(drawn)
 

@@ -95,7 +95,14 @@ class Locus:
         if region is not None:
             same = (s == 0) | (region[..., start] == region[..., end])
             region = np.concatenate([np.where(same, region[..., start], 1), region[..., -1:]], axis=-1)
-        return Locus(t=straight(self.t), v=straight(self.v), i=straight(self.i), use=self.use, turn_off=turn_off, region=region)
+        return Locus(
+            t=straight(self.t),
+            v=straight(self.v),
+            i=straight(self.i),
+            use=self.use,
+            turn_off=turn_off,
+            region=region,
+        )
 
     @property
     def p_mid(self) -> FloatArray:

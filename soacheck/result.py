@@ -35,7 +35,10 @@ class Reason:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Where:
-    """The point that touches the limit, each (case,), NaN where it does not exist. region: code of device.laws, -1 none."""
+    """The point that touches the limit, each (case,), NaN where it does not exist.
+
+    region: code of device.laws, -1 none. member: value of the duty's member.
+    """
 
     t: FloatArray
     v: FloatArray
@@ -75,7 +78,6 @@ class Finding:
                 keys.update(dict.fromkeys(item.key for item in reason.missing))
         return tuple(keys)
 
-
     def at(self, case: int) -> Finding:
         """The same finding for one case, every array with a case axis of length 1."""
         memo: dict[int, Traced] = {}
@@ -87,19 +89,27 @@ class Finding:
             return np.asarray([array[case if array.size > 1 else 0]])
 
         where = Where(
-            t=pick(self.where.t), v=pick(self.where.v), i=pick(self.where.i), member=pick(self.where.member),
+            t=pick(self.where.t),
+            v=pick(self.where.v),
+            i=pick(self.where.i),
+            member=pick(self.where.member),
             region=np.asarray([self.where.region[case if self.where.region.size > 1 else 0]]),
-        )  # fmt: skip
+        )
         holds = tuple(
             replace(reason, applies=np.asarray([True]))
             for reason in self.reasons
             if reason.applies[case if reason.applies.size > 1 else 0]
         )
         return replace(
-            self, applied=one(self.applied), allowed=one(self.allowed), utilisation=pick(self.utilisation),
-            status=np.asarray([self.status[case if self.status.size > 1 else 0]]), where=where, reasons=holds,
+            self,
+            applied=one(self.applied),
+            allowed=one(self.allowed),
+            utilisation=pick(self.utilisation),
+            status=np.asarray([self.status[case if self.status.size > 1 else 0]]),
+            where=where,
+            reasons=holds,
             trace=tuple(one_case(value, case, memo) for value in self.trace),
-        )  # fmt: skip
+        )
 
 
 def one_case(value: Traced, case: int, memo: dict[int, Traced]) -> Traced:
@@ -107,7 +117,9 @@ def one_case(value: Traced, case: int, memo: dict[int, Traced]) -> Traced:
     for node in value.walk():
         if id(node) not in memo:
             memo[id(node)] = replace(
-                node, value=np.asarray([node.at(case)]), inputs=tuple(memo[id(child)] for child in node.inputs)
+                node,
+                value=np.asarray([node.at(case)]),
+                inputs=tuple(memo[id(child)] for child in node.inputs),
             )
     return memo[id(value)]
 

@@ -38,7 +38,10 @@ def test_times_must_not_fall() -> None:
         locus([0, 2, 1], [1, 1, 1], [1, 1, 1])
 
 
-@given(st.lists(st.tuples(*(st.floats(0.0, 100.0) for _ in range(3))), min_size=2, max_size=8), st.integers(2, 40))
+@given(
+    st.lists(st.tuples(*(st.floats(0.0, 100.0) for _ in range(3))), min_size=2, max_size=8),
+    st.integers(2, 40),
+)
 def test_cutting_segments_finer_keeps_every_mean_and_peak(rows: list[tuple[float, float, float]], parts: int) -> None:
     t = np.cumsum([row[0] for row in rows]) + np.arange(len(rows)) * 0.1
     path = locus(t.tolist(), [row[1] for row in rows], [row[2] for row in rows])
@@ -50,7 +53,11 @@ def test_cutting_segments_finer_keeps_every_mean_and_peak(rows: list[tuple[float
 def test_refinement_keeps_steps_and_marks() -> None:
     mark = np.array([[[False, True, True, False]]])
     path = Locus(
-        t=np.array([[[0.0, 1.0, 1.0, 2.0]]]), v=np.array([[[1.0, 1.0, 5.0, 5.0]]]), i=np.ones((1, 1, 4)), use=Use.ONCE, turn_off=mark
+        t=np.array([[[0.0, 1.0, 1.0, 2.0]]]),
+        v=np.array([[[1.0, 1.0, 5.0, 5.0]]]),
+        i=np.ones((1, 1, 4)),
+        use=Use.ONCE,
+        turn_off=mark,
     )
     fine = path.refined(4)
     assert fine.shape[2] == 10

@@ -27,9 +27,7 @@ def test_a_name_that_is_not_there_is_an_attribute_error() -> None:
 
 def test_the_import_loads_nothing_heavy() -> None:
     program = "import sys, soacheck; print(' '.join(sys.modules))"
-    loaded = subprocess.run(
-        [sys.executable, "-c", program], capture_output=True, text=True, check=True
-    ).stdout.split()
+    loaded = subprocess.run([sys.executable, "-c", program], capture_output=True, text=True, check=True).stdout.split()
     assert not {"numpy", "scipy", "matplotlib", "pint", "typer"} & set(loaded)
 
 

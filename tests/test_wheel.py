@@ -57,11 +57,18 @@ def site(tmp_path_factory: pytest.TempPathFactory) -> Path:
 
 
 def run(site: Path, cwd: Path, *arguments: str) -> subprocess.CompletedProcess[str]:
-    program = f"import sys; sys.path[:] = [p for p in sys.path if 'site-packages' not in p]; sys.path.insert(0, {str(site)!r}); " \
-        "from soacheck.cli import main; sys.exit(main())"  # fmt: skip
+    program = (
+        "import sys; sys.path[:] = [p for p in sys.path if 'site-packages' not in p]; "
+        f"sys.path.insert(0, {str(site)!r}); from soacheck.cli import main; sys.exit(main())"
+    )
     environment = {**os.environ, "PYTHONPATH": "", "PYTHONNOUSERSITE": "1"}
     return subprocess.run(
-        [sys.executable, "-I", "-c", program, *arguments], cwd=cwd, env=environment, capture_output=True, text=True, check=False
+        [sys.executable, "-I", "-c", program, *arguments],
+        cwd=cwd,
+        env=environment,
+        capture_output=True,
+        text=True,
+        check=False,
     )
 
 

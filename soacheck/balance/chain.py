@@ -56,8 +56,18 @@ def chain(operating: Operating, place: Place) -> Chain:
     facts = tuple(fact for fact in duty.facts if fact.symbol not in {"P_mean", "P_peak", "V_peak", "I_peak"})[:1]
     P_mean = found("P_mean", pick(operating.P_mean), "W", f"mean of v*i over the {over}", *facts)
     P_peak = found("P_peak", operating.P_peak.max(axis=1), "W", f"greatest v*i of the {over}", *facts)
-    V_peak = found("V_peak", np.broadcast_to(locus.v_peak, operating.P_mean.shape).max(axis=1), "V", "greatest v of the duty")
-    I_peak = found("I_peak", np.broadcast_to(locus.i_peak, operating.P_mean.shape).max(axis=1), "A", "greatest i of the duty")
+    V_peak = found(
+        "V_peak",
+        np.broadcast_to(locus.v_peak, operating.P_mean.shape).max(axis=1),
+        "V",
+        "greatest v of the duty",
+    )
+    I_peak = found(
+        "I_peak",
+        np.broadcast_to(locus.i_peak, operating.P_mean.shape).max(axis=1),
+        "A",
+        "greatest i of the duty",
+    )
     I_mean = found("I_mean", pick(locus.i_mean), "A", f"mean of i over the {over}")
     I_rms = found("I_rms", pick(locus.i_rms), "A", f"root of the mean of i*i over the {over}")
     figures = Chain(P_mean=P_mean, P_peak=P_peak, V_peak=V_peak, I_peak=I_peak, I_mean=I_mean, I_rms=I_rms)
@@ -74,16 +84,29 @@ def _steady(figures: Chain, operating: Operating, place: Place, P_mean: Traced, 
     if T_ambient is None or R_jc is None:
         return figures
     n_stage = given("n_stage", ratio[:, 0], "1", "dissipation of all devices of the stage over this one's")
-    n_sink = given("n_sink", place.sink_ratio(ratio)[:, 0], "1", "dissipation of all devices on the sink over this one's")
+    n_sink = given(
+        "n_sink", place.sink_ratio(ratio)[:, 0], "1", "dissipation of all devices on the sink over this one's"
+    )
     extra, box = path.extra_heat.named("P_extra"), path.extra_box_heat.named("P_box")
     air = T_ambient
     if not path.sink_outside and bool(np.any(path.R_th_enclosure.value > 0)):
         air = derived(
-            "T_air", "T_ambient + R_th_enclosure * (P_mean * n_stage + P_extra + P_box)", "degC",
-            T_ambient, path.R_th_enclosure, P_mean, n_stage, extra, box,
-        )  # fmt: skip
+            "T_air",
+            "T_ambient + R_th_enclosure * (P_mean * n_stage + P_extra + P_box)",
+            "degC",
+            T_ambient,
+            path.R_th_enclosure,
+            P_mean,
+            n_stage,
+            extra,
+            box,
+        )
     sink: Traced | None = None
-    if path.sink == "none":
+    if path.sink == "case":
+        if path.T_case is None:
+            return figures
+        case = path.T_case
+    elif path.sink == "none":
         R_ja = place.device.thermal.R_th_ja
         if R_ja is None:
             return figures
@@ -95,9 +118,15 @@ def _steady(figures: Chain, operating: Operating, place: Place, P_mean: Traced, 
             sink = air.named("T_heatsink")
         else:
             sink = derived(
-                "T_heatsink", f"{air.symbol} + R_th_sa * (P_mean * n_sink + P_extra)", "degC",
-                air, path.R_th_sink.named("R_th_sa"), P_mean, n_sink, extra,
-            )  # fmt: skip
+                "T_heatsink",
+                f"{air.symbol} + R_th_sa * (P_mean * n_sink + P_extra)",
+                "degC",
+                air,
+                path.R_th_sink.named("R_th_sa"),
+                P_mean,
+                n_sink,
+                extra,
+            )
         case = derived("T_case", "T_heatsink + R_th_cs * P_mean", "degC", sink, path.interface.named("R_th_cs"), P_mean)
     mean = derived("T_j_mean", "T_case + R_th_jc * P_mean", "degC", case, R_jc, P_mean)
     top = pick(operating.T_j_peak)

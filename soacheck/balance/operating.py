@@ -72,19 +72,36 @@ def unknown(duty: Duty, place: Place, cases: int) -> Operating:
     """A duty whose locus could not be worked out: every figure is NaN."""
     flat, full = _nan(cases, 1)[:, :, 0], _nan(cases, 1)
     return Operating(
-        duty=duty, device=place.device, ladder=place.ladder, locus=None, P_mean=flat, P_peak=flat, T_air=flat,
-        T_heatsink=flat, T_case=flat, T_case_peak=flat, T_j_mean=flat, T_j_peak=flat, T_j_bound=flat, T_before=flat,
-        T_j=full, T_case_t=full, T_heatsink_t=full, R_th_jc=place.R_th_jc, T_ambient=place.path.T_ambient,
-        sink=place.path.sink, missing=place.missing,
-    )  # fmt: skip
+        duty=duty,
+        device=place.device,
+        ladder=place.ladder,
+        locus=None,
+        P_mean=flat,
+        P_peak=flat,
+        T_air=flat,
+        T_heatsink=flat,
+        T_case=flat,
+        T_case_peak=flat,
+        T_j_mean=flat,
+        T_j_peak=flat,
+        T_j_bound=flat,
+        T_before=flat,
+        T_j=full,
+        T_case_t=full,
+        T_heatsink_t=full,
+        R_th_jc=place.R_th_jc,
+        T_ambient=place.path.T_ambient,
+        sink=place.path.sink,
+        missing=place.missing,
+    )
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Before:
     """What a one-shot duty starts from: the hottest member of the hottest preceding duty of each case.
 
-    T_air, T_heatsink, T_case, T_j, P_mean: (case, 1). state (case, 1, mode) of `modes` at the junction's peak, where all
-    candidates share one network; else None and the steady state at the mean power stands in.
+    T_air, T_heatsink, T_case, T_j, P_mean: (case, 1). state (case, 1, mode) of `modes` at the junction's peak, where
+    all candidates share one network; else None and the steady state at the mean power stands in.
     """
 
     name: str
@@ -103,11 +120,12 @@ def before_of(candidates: Sequence[Operating]) -> Before | None:
     if not candidates:
         return None
     picked = [_hottest_member(operating) for operating in candidates]
-    T_j = np.stack([np.nan_to_num(one.T_j, nan=np.inf) for one in picked])  # not known counts as hottest: stays not known
+    T_j = np.stack([np.nan_to_num(one.T_j, nan=np.inf) for one in picked])  # not known stays not known
     winner = np.argmax(T_j, axis=0)[None]
 
     def choose(arrays: list[FloatArray]) -> FloatArray:
-        return np.take_along_axis(np.stack(arrays), winner.reshape(winner.shape + (1,) * (arrays[0].ndim - 2)), axis=0)[0]
+        wide = winner.reshape(winner.shape + (1,) * (arrays[0].ndim - 2))
+        return np.asarray(np.take_along_axis(np.stack(arrays), wide, axis=0)[0], dtype=np.float64)
 
     first = picked[0]
     shared = first.state is not None and all(
@@ -115,12 +133,15 @@ def before_of(candidates: Sequence[Operating]) -> Before | None:
     )
     names = {picked[k].name for k in np.unique(winner)}
     return Before(
-        name=" / ".join(sorted(names)), T_air=choose([one.T_air for one in picked]),
-        T_heatsink=choose([one.T_heatsink for one in picked]), T_case=choose([one.T_case for one in picked]),
-        T_j=choose([one.T_j for one in picked]), P_mean=choose([one.P_mean for one in picked]),
+        name=" / ".join(sorted(names)),
+        T_air=choose([one.T_air for one in picked]),
+        T_heatsink=choose([one.T_heatsink for one in picked]),
+        T_case=choose([one.T_case for one in picked]),
+        T_j=choose([one.T_j for one in picked]),
+        P_mean=choose([one.P_mean for one in picked]),
         modes=first.modes if shared else None,
         state=choose([one.state for one in picked if one.state is not None]) if shared else None,
-    )  # fmt: skip
+    )
 
 
 def _hottest_member(operating: Operating) -> Before:
@@ -131,13 +152,20 @@ def _hottest_member(operating: Operating) -> Before:
 
     state = operating.state
     return Before(
-        name=operating.duty.name, T_air=pick(operating.T_air), T_heatsink=pick(operating.T_heatsink),
-        T_case=pick(operating.T_case), T_j=pick(operating.T_j_bound), P_mean=pick(operating.P_mean),
-        modes=operating.modes, state=None if state is None else np.take_along_axis(state, at[..., None], axis=1),
-    )  # fmt: skip
+        name=operating.duty.name,
+        T_air=pick(operating.T_air),
+        T_heatsink=pick(operating.T_heatsink),
+        T_case=pick(operating.T_case),
+        T_j=pick(operating.T_j_bound),
+        P_mean=pick(operating.P_mean),
+        modes=operating.modes,
+        state=None if state is None else np.take_along_axis(state, at[..., None], axis=1),
+    )
 
 
-def settle(duty: Duty, place: Place, cases: int, *, before: Before | None = None, sink_follows: bool = False) -> Operating:
+def settle(
+    duty: Duty, place: Place, cases: int, *, before: Before | None = None, sink_follows: bool = False
+) -> Operating:
     """Temperatures of a duty.
 
     before: for a one-shot duty, the operating point it starts from. sink_follows: for a one-shot duty on a sink of
@@ -168,7 +196,10 @@ def _steady(duty: Duty, place: Place, locus: Locus, cases: int) -> Operating:
         T_j, T_case_t, T_sink_t = T_j_mean[..., None], T_case[..., None], T_sink[..., None]
         T_case_peak, T_j_peak = T_case, T_j_mean
     elif place.ladder is None:
-        T_j, T_sink_t = _nan(cases, members, times), np.broadcast_to(T_sink[..., None], (cases, members, times))
+        T_j, T_sink_t = (
+            _nan(cases, members, times),
+            np.broadcast_to(T_sink[..., None], (cases, members, times)),
+        )
         T_case_t = np.broadcast_to(T_case[..., None], (cases, members, times))
         T_case_peak = T_case
         still = P_peak <= P * (1 + 1e-12)
@@ -181,12 +212,30 @@ def _steady(duty: Duty, place: Place, locus: Locus, cases: int) -> Operating:
         state = _at_peak(response.state, T_j)
     bound = np.where(np.isfinite(T_j_peak), T_j_peak, T_case + R_jc * P_peak)
     return Operating(
-        duty=duty, device=place.device, ladder=place.ladder, locus=locus, P_mean=P, P_peak=P_peak, T_air=T_air,
-        T_heatsink=T_sink, T_case=T_case, T_case_peak=T_case_peak, T_j_mean=T_j_mean, T_j_peak=T_j_peak,
-        T_j_bound=bound, T_before=np.full((cases, members), np.nan), T_j=T_j, T_case_t=T_case_t, T_heatsink_t=T_sink_t,
-        R_th_jc=place.R_th_jc, T_ambient=place.path.T_ambient, sink=place.path.sink, missing=place.missing,
-        modes=modes, state=state,
-    )  # fmt: skip
+        duty=duty,
+        device=place.device,
+        ladder=place.ladder,
+        locus=locus,
+        P_mean=P,
+        P_peak=P_peak,
+        T_air=T_air,
+        T_heatsink=T_sink,
+        T_case=T_case,
+        T_case_peak=T_case_peak,
+        T_j_mean=T_j_mean,
+        T_j_peak=T_j_peak,
+        T_j_bound=bound,
+        T_before=np.full((cases, members), np.nan),
+        T_j=T_j,
+        T_case_t=T_case_t,
+        T_heatsink_t=T_sink_t,
+        R_th_jc=place.R_th_jc,
+        T_ambient=place.path.T_ambient,
+        sink=place.path.sink,
+        missing=place.missing,
+        modes=modes,
+        state=state,
+    )
 
 
 def _once(duty: Duty, place: Place, locus: Locus, cases: int, before: Before | None, sink_follows: bool) -> Operating:
@@ -206,7 +255,10 @@ def _once(duty: Duty, place: Place, locus: Locus, cases: int, before: Before | N
         drop = before.P_mean
     else:
         T_air = T_sink0 = T_case0 = T_before = drop = np.full((cases, 1), np.nan)
-        missing = (*missing, Missing(key="load.T_start", where="the junction temperature just before the shot"))
+        missing = (
+            *missing,
+            Missing(key="load.T_start", where="the junction temperature just before the shot"),
+        )
     if place.ladder is None:
         T_case = T_case0 + (place.R_after_case(ratio) * P_peak if sink_follows else 0.0)
         T_case = np.broadcast_to(T_case, (cases, members))
@@ -237,12 +289,30 @@ def _once(duty: Duty, place: Place, locus: Locus, cases: int, before: Before | N
     with np.errstate(invalid="ignore"):
         T_j_mean = _time_mean(T_j, locus.t)
     return Operating(
-        duty=duty, device=place.device, ladder=place.ladder, locus=locus, P_mean=P, P_peak=P_peak,
-        T_air=np.broadcast_to(T_air, (cases, members)), T_heatsink=T_sink, T_case=T_case, T_case_peak=T_case_peak,
-        T_j_mean=T_j_mean, T_j_peak=T_j_peak, T_j_bound=bound, T_before=np.broadcast_to(T_before, (cases, members)),
-        T_j=T_j, T_case_t=T_case_t, T_heatsink_t=T_sink_t, R_th_jc=place.R_th_jc, T_ambient=place.path.T_ambient,
-        sink=place.path.sink, missing=missing, modes=modes, state=state,
-    )  # fmt: skip
+        duty=duty,
+        device=place.device,
+        ladder=place.ladder,
+        locus=locus,
+        P_mean=P,
+        P_peak=P_peak,
+        T_air=np.broadcast_to(T_air, (cases, members)),
+        T_heatsink=T_sink,
+        T_case=T_case,
+        T_case_peak=T_case_peak,
+        T_j_mean=T_j_mean,
+        T_j_peak=T_j_peak,
+        T_j_bound=bound,
+        T_before=np.broadcast_to(T_before, (cases, members)),
+        T_j=T_j,
+        T_case_t=T_case_t,
+        T_heatsink_t=T_sink_t,
+        R_th_jc=place.R_th_jc,
+        T_ambient=place.path.T_ambient,
+        sink=place.path.sink,
+        missing=missing,
+        modes=modes,
+        state=state,
+    )
 
 
 def needs_sink_bound(duty: Duty, place: Place) -> bool:
@@ -255,12 +325,18 @@ def needs_sink_bound(duty: Duty, place: Place) -> bool:
 
 
 def _modes(
-    place: Place, ratio: FloatArray, T_air: FloatArray, T_sink: FloatArray, T_case: FloatArray, *, sink_follows: bool = False
+    place: Place,
+    ratio: FloatArray,
+    T_air: FloatArray,
+    T_sink: FloatArray,
+    T_case: FloatArray,
+    *,
+    sink_follows: bool = False,
 ) -> tuple[Modes, FloatArray]:
     """The network that carries the ripple, and the temperature of its boundary (case, member)."""
     path = place.path
     R_jc = place.R_jc[:, 0]
-    if path.sink == "none" and not sink_follows:  # the case is the boundary
+    if path.sink == "case" or (path.sink == "none" and not sink_follows):  # the case is the boundary
         return network(place.ladder, R_jc, np.full_like(R_jc, 1e-9), None, None), T_case
     R_cs = np.maximum(place.R_cs[:, 0], 1e-9)
     if path.sink == "resistance" and (path.C_th_sink is not None or sink_follows):
@@ -280,7 +356,7 @@ def _nodes(
     named = dict(zip(modes.nodes, range(len(modes.nodes)), strict=True))
     T_j = base[..., None] + rise[:, :, named["junction"]]
     T_case = base[..., None] + rise[:, :, named["case"]]
-    if place.path.sink == "none":
+    if place.path.sink in ("none", "case"):
         return T_j, T_case, np.full(T_j.shape, np.nan)
     sink = rise[:, :, named["heatsink"]] if "heatsink" in named else 0.0
     return T_j, T_case, np.broadcast_to(base[..., None] + sink, T_j.shape)
@@ -291,9 +367,7 @@ def _peak(T: FloatArray, t: FloatArray) -> FloatArray:
     at = np.argmax(np.nan_to_num(T, nan=-np.inf), axis=2)[..., None]
     inner = np.clip(at, 1, T.shape[2] - 2)
     t = np.broadcast_to(t, T.shape)
-    (a, b, c), (ta, tb, tc) = (
-        [np.take_along_axis(x, inner + k, axis=2)[..., 0] for k in (-1, 0, 1)] for x in (T, t)
-    )  # fmt: skip
+    (a, b, c), (ta, tb, tc) = ([np.take_along_axis(x, inner + k, axis=2)[..., 0] for k in (-1, 0, 1)] for x in (T, t))
     top = T.max(axis=2)
     with np.errstate(divide="ignore", invalid="ignore"):
         s1, s2 = (b - a) / (tb - ta), (c - b) / (tc - tb)
@@ -316,4 +390,9 @@ def _time_mean(T: FloatArray, t: FloatArray) -> FloatArray:
 
 
 def _same(a: Modes, b: Modes | None) -> bool:
-    return b is not None and a.nodes == b.nodes and a.tau.shape == b.tau.shape and bool(np.allclose(a.tau, b.tau, rtol=1e-9))
+    return (
+        b is not None
+        and a.nodes == b.nodes
+        and a.tau.shape == b.tau.shape
+        and bool(np.allclose(a.tau, b.tau, rtol=1e-9))
+    )

@@ -42,11 +42,13 @@ class Place:
         """Case to sink, or case to air without a sink (R_th_ja less R_th_jc, never below 0). (case, 1)"""
         if self.path.sink == "none":
             return np.maximum(_column(self.device.thermal.R_th_ja) - self.R_jc, 0.0)
+        if self.path.sink == "case":
+            return np.zeros((1, 1))
         return _column(self.path.interface)
 
     @property
     def R_sink(self) -> FloatArray:
-        if self.path.sink == "ideal":
+        if self.path.sink in ("ideal", "case"):
             return np.zeros((1, 1))
         return _column(self.path.R_th_sink)
 
@@ -66,8 +68,8 @@ class Place:
         return 1.0 + np.minimum(ratio - 1.0, self.on_sink - 1.0)
 
     def air(self, P: FloatArray, ratio: FloatArray) -> FloatArray:
-        """Air at the sink. [K]"""
-        room = _column(self.path.T_ambient)
+        """Air at the sink, or a case temperature that is held. [K]"""
+        room = _column(self.path.T_case if self.path.sink == "case" else self.path.T_ambient)
         if self.path.sink_outside:
             return np.broadcast_to(room, np.broadcast_shapes(P.shape, room.shape))
         box = P * ratio + self.extra + _column(self.path.extra_box_heat)
@@ -75,18 +77,20 @@ class Place:
 
     def sink(self, P: FloatArray, ratio: FloatArray) -> FloatArray:
         """Sink temperature; without a sink there is none. [K]"""
-        if self.path.sink == "none":
+        if self.path.sink in ("none", "case"):
             return np.full(np.broadcast_shapes(P.shape, ratio.shape), np.nan)
-        return np.asarray(self.air(P, ratio) + self.R_sink * (P * self.sink_ratio(ratio) + self.extra), dtype=np.float64)
+        return np.asarray(
+            self.air(P, ratio) + self.R_sink * (P * self.sink_ratio(ratio) + self.extra), dtype=np.float64
+        )
 
     def case(self, P: FloatArray, ratio: FloatArray) -> FloatArray:
         """Mean case temperature. [K]"""
-        below = self.air(P, ratio) if self.path.sink == "none" else self.sink(P, ratio)
+        below = self.air(P, ratio) if self.path.sink in ("none", "case") else self.sink(P, ratio)
         return np.asarray(below + self.R_cs * P, dtype=np.float64)
 
     def R_after_case(self, ratio: FloatArray) -> FloatArray:
         """Case to air as this device sees it. [K/W]"""
-        if self.path.sink == "none":
+        if self.path.sink in ("none", "case"):
             return self.R_cs
         return np.asarray(self.R_cs + self.R_sink * self.sink_ratio(ratio), dtype=np.float64)
 
@@ -105,9 +109,13 @@ def R_th_jc_used(device: Device) -> tuple[Traced | None, bool]:
     if stated is None or ratings.P_tot is None or device.thermal.R_th_jc_derived:
         return stated, False
     implied = derived(
-        "R_th_jc_implied", "(T_j_max - T_case_rated) / P_tot", "K/W",
-        ratings.T_j.named("T_j_max"), ratings.T_case.named("T_case_rated"), ratings.P_tot.named("P_tot"),
-    )  # fmt: skip
+        "R_th_jc_implied",
+        "(T_j_max - T_case_rated) / P_tot",
+        "K/W",
+        ratings.T_j.named("T_j_max"),
+        ratings.T_case.named("T_case_rated"),
+        ratings.P_tot.named("P_tot"),
+    )
     apart = np.abs(implied.value - stated.value) > DISAGREE * np.minimum(implied.value, stated.value)
     if not bool(np.any(apart)):
         return stated, False
@@ -120,12 +128,20 @@ def place_of(device: Device, ladder: Ladder | None, path: HeatPath, devices: int
     used, _ = R_th_jc_used(device)
     missing = list(path.missing)
     if path.sink == "none" and device.thermal.R_th_ja is None:
-        missing.append(Missing(key="thermal.R_th_ja", where="thermal characteristics: junction to ambient, with its mounting"))
+        missing.append(
+            Missing(key="thermal.R_th_ja", where="thermal characteristics: junction to ambient, with its mounting")
+        )
     if used is None:
         missing.append(Missing(key="thermal.R_th_jc", where="thermal characteristics: junction to case"))
     on_sink = path.shared_by if path.shared_by is not None else devices
     return Place(
-        device=device, ladder=ladder, path=path, devices=devices, on_sink=on_sink, R_th_jc=used, missing=tuple(missing)
+        device=device,
+        ladder=ladder,
+        path=path,
+        devices=devices,
+        on_sink=on_sink,
+        R_th_jc=used,
+        missing=tuple(missing),
     )
 
 

@@ -20,7 +20,8 @@ def _forward(seen: Seen) -> list[SafeAreaCurve]:
 
 def _safe_area(seen: Seen, judged: Judged) -> Finding | None:
     return next(
-        (finding for finding in seen.findings if finding.limit == "safe-area" and finding.duty == judged.duty.name), None
+        (finding for finding in seen.findings if finding.limit == "safe-area" and finding.duty == judged.duty.name),
+        None,
     )
 
 
@@ -33,7 +34,10 @@ def chart_cold(seen: Seen) -> tuple[Raised, ...]:
         T_ref = min((curve.T_ref for curve in _forward(seen)), default=float("nan"))
         op = judged.operating
         cold = np.full_like(op.T_case_peak, T_ref)
-        printed = replace(judged, operating=replace(op, T_case_peak=cold, T_before=np.where(np.isnan(op.T_before), np.nan, T_ref)))
+        printed = replace(
+            judged,
+            operating=replace(op, T_case_peak=cold, T_before=np.where(np.isnan(op.T_before), np.nan, T_ref)),
+        )
         if all(again.status[0] not in (Status.WITHIN, Status.MARGINAL) for again in safe_area.find(printed)):
             continue
         T = float(np.nanmax(op.T_before if op.locus is not None and op.locus.use is Use.ONCE else op.T_case_peak))
@@ -41,8 +45,8 @@ def chart_cold(seen: Seen) -> tuple[Raised, ...]:
             Raised(
                 id="chart-cold",
                 text=(
-                    f"{judged.duty.name}: inside the safe-area chart as printed for {T_ref - 273.15:.0f} degC, outside it at "
-                    f"{T - 273.15:.0f} degC. The scaled curve counts; the picture shows both."
+                    f"{judged.duty.name}: inside the safe-area chart as printed for {T_ref - 273.15:.0f} degC, outside "
+                    f"it at {T - 273.15:.0f} degC. The scaled curve counts; the picture shows both."
                 ),
             ),
         )
@@ -57,8 +61,8 @@ def chart_node(seen: Seen) -> tuple[Raised, ...]:
         Raised(
             id="chart-node",
             text=(
-                f"{seen.place.device.name}: a safe-area curve is drawn for the ambient. Lines up to 10 ms count as case curves, "
-                "longer ones and dc only without a heat sink."
+                f"{seen.place.device.name}: a safe-area curve is drawn for the ambient. Lines up to 10 ms count as "
+                "case curves, longer ones and dc only without a heat sink."
             ),
         ),
     )
@@ -67,7 +71,11 @@ def chart_node(seen: Seen) -> tuple[Raised, ...]:
 def pulse_between(seen: Seen) -> tuple[Raised, ...]:
     """pulse-between: a pulse time that stands between two printed curves."""
     pulses = sorted(curve.pulse for curve in _forward(seen))
-    timed = [judged for judged in seen.judged if judged.operating.locus is not None and judged.operating.locus.use is not Use.HELD]
+    timed = [
+        judged
+        for judged in seen.judged
+        if judged.operating.locus is not None and judged.operating.locus.use is not Use.HELD
+    ]
     if len(pulses) < 2 or not timed:
         return ()
     how = timed[0].rules.pulse_between
@@ -84,7 +92,8 @@ def pulse_between(seen: Seen) -> tuple[Raised, ...]:
         return (
             Raised(
                 id="pulse-between",
-                text=f"{judged.duty.name}: {float(np.max(above[between])):.3g} s above the dc curve stands between printed pulses; {rule}.",
+                text=f"{judged.duty.name}: {float(np.max(above[between])):.3g} s above the dc curve stands between "
+                f"printed pulses; {rule}.",
             ),
         )
     return ()
@@ -101,9 +110,9 @@ def no_dc_curve(seen: Seen) -> tuple[Raised, ...]:
         Raised(
             id="no-dc-curve",
             text=(
-                f"{seen.place.device.name} has no dc safe-area curve. A pulse curve or the dissipation line does not show where "
-                "lasting conduction in the active or linear region turns into hot spots: hot cells of a MOSFET below its "
-                "zero-temperature-coefficient current and of a bipolar transistor draw the current to themselves."
+                f"{seen.place.device.name} has no dc safe-area curve. A pulse curve or the dissipation line does not "
+                "show where lasting conduction in the active or linear region turns into hot spots: hot cells of a MOSFET below "
+                "its zero-temperature-coefficient current, and of a bipolar transistor, draw the current to themselves."
             ),
         ),
     )

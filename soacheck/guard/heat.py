@@ -25,7 +25,9 @@ def rth_mixed_up(seen: Seen) -> tuple[Raised, ...]:
     R_jc, R_ja = _value(thermal.R_th_jc), _value(thermal.R_th_ja)
     problems = []
     if R_ja < R_JA_SMALLEST:
-        problems.append(f"R_th_ja = {R_ja:.3g} K/W is below {R_JA_SMALLEST:g} K/W, which is a value with a sink or to the case")
+        problems.append(
+            f"R_th_ja = {R_ja:.3g} K/W is below {R_JA_SMALLEST:g} K/W, which is a value with a sink or to the case"
+        )
     if R_jc > R_JC_LARGEST:
         problems.append(f"R_th_jc = {R_jc:.3g} K/W is above {R_JC_LARGEST:g} K/W, which is a value to the ambient")
     if R_ja < R_jc:
@@ -37,7 +39,9 @@ def rth_mixed_up(seen: Seen) -> tuple[Raised, ...]:
             id="rth-mixed-up",
             text=f"{seen.place.device.name}: {'; '.join(problems)}. Look up which of the two the sheet states.",
             lowers=TEMPERATURE_LIMITS,
-            missing=(Missing(key="thermal.R_th_jc", where="thermal characteristics: junction to case, not to ambient"),),
+            missing=(
+                Missing(key="thermal.R_th_jc", where="thermal characteristics: junction to case, not to ambient"),
+            ),
         ),
     )
 
@@ -65,7 +69,9 @@ def rth_ptot_disagree(seen: Seen) -> tuple[Raised, ...]:
 def interface_missing(seen: Seen) -> tuple[Raised, ...]:
     """interface-missing: the case-to-sink interface is absent or zero."""
     path = seen.place.path
-    if path.sink in {"none", "absent"} or (path.interface is not None and bool(np.all(path.interface.value > 0))):
+    if path.sink in {"none", "case", "absent"} or (
+        path.interface is not None and bool(np.all(path.interface.value > 0))
+    ):
         return ()
     state = "not stated" if path.interface is None else "stated as 0 K/W"
     return (

@@ -21,7 +21,10 @@ class Seen:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Raised:
-    """A guard that went off. lowers: limits whose findings can be no better than unproven; missing says what they lack."""
+    """A guard that went off.
+
+    lowers: limits whose findings can be no better than unproven; missing says what they lack.
+    """
 
     id: str
     text: str

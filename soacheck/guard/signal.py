@@ -56,7 +56,7 @@ def pure_resistance(seen: Seen) -> tuple[Raised, ...]:
             Raised(
                 id="pure-resistance",
                 text=(
-                    "The load is taken as a pure resistance. A loudspeaker or motor of the same impedance turns the load: "
+                    "The load is taken as a pure resistance. A loudspeaker or motor of the same impedance at "
                     f"{said}, against the worst level of the resistance (class B)."
                 ),
             ),

@@ -91,4 +91,10 @@ def test_warm_push_pull_check_at_any_level() -> None:
     ours = best(lambda: soacheck.check_stage(stage))
     matrix = np.random.default_rng(1).normal(size=(200, 200))
     matrix = matrix + matrix.T
-    report("push-pull, any level, warm", ours, best(lambda: np.linalg.eigh(matrix)), None, "numpy.linalg.eigh of 200 x 200")
+    report(
+        "push-pull, any level, warm",
+        ours,
+        best(lambda: np.linalg.eigh(matrix)),
+        None,
+        "numpy.linalg.eigh of 200 x 200",
+    )

@@ -1,0 +1,100 @@
+"""Operating temperatures against a second way: the same ladder marched as an ordinary differential equation."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import numpy as np
+import pytest
+from scipy.integrate import solve_ivp
+
+from soacheck.balance.chain import chain
+from soacheck.balance.operating import Operating
+from soacheck.check import evaluate
+from tests.whole import DEVICE, HELD, PROFILE, put, stage_of
+
+CAUER = put(DEVICE, Z_th_jc='{ cauer = [["0.1 K/W", "2 mJ/K"], ["0.3 K/W", "40 mJ/K"], ["0.433 K/W", "300 mJ/K"]] }')
+R, C = np.array([0.1, 0.3, 0.433]), np.array([2e-3, 40e-3, 300e-3])
+R_CS, R_SA, T_AIR = 0.4, 1.2, 313.15
+
+
+def ode(
+    p, spans: list[tuple[float, float]], y0: np.ndarray, C_sink: float | None, T_sink: float
+) -> tuple[np.ndarray, np.ndarray]:  # type: ignore[no-untyped-def]  # scipy's own callable
+    """Times and node temperatures (junction cells, then the sink when it has a capacity)."""
+
+    def rate(t: float, y: np.ndarray) -> np.ndarray:
+        cells = y[:3]
+        sink = y[3] if C_sink is not None else T_sink
+        q01, q12 = (cells[0] - cells[1]) / R[0], (cells[1] - cells[2]) / R[1]
+        out = (cells[2] - sink) / (R[2] + R_CS)
+        d = [(p(t) - q01) / C[0], (q01 - q12) / C[1], (q12 - out) / C[2]]
+        if C_sink is not None:
+            d.append((out - (sink - T_AIR) / R_SA) / C_sink)
+        return np.array(d)
+
+    ts, ys = [], []
+    for start, stop in spans:
+        inner = (start + 1e-12, stop - 1e-12)
+        done = solve_ivp(rate, inner, y0, method="LSODA", rtol=1e-10, atol=1e-10, max_step=(stop - start) / 50)
+        y0 = done.y[:, -1]
+        ts.append(done.t), ys.append(done.y)
+    return np.concatenate(ts), np.concatenate(ys, axis=1)
+
+
+def operating(folder: Path, stage: str, device: str = CAUER) -> Operating:
+    return evaluate(stage_of(folder, stage, device))[0].judged[0].operating
+
+
+def power(t: float) -> float:
+    """Power of PROFILE: 30 V and 0.5 to 1.5 A for 5 ms, 2 V and 3 A for 15 ms."""
+    t = t % 20e-3
+    return 30 * (0.5 + t / 5e-3) if t < 5e-3 else 6.0
+
+
+def test_periodic_profile_settles_where_marching_settles(tmp_path: Path) -> None:
+    op = operating(tmp_path, PROFILE)
+    mean = (30 * 1.0 * 5 + 6.0 * 15) / 20
+    assert op.P_mean[0, 0] == pytest.approx(mean, rel=1e-12)
+    T_sink = T_AIR + R_SA * mean
+    y = T_sink + mean * np.array([R.sum() + R_CS, R[1:].sum() + R_CS, R[2] + R_CS])
+    for k in range(40):
+        t, ys = ode(power, [(k * 0.02, k * 0.02 + 0.005), (k * 0.02 + 0.005, (k + 1) * 0.02)], y, None, T_sink)
+        y = ys[:, -1]
+    assert op.T_j_peak[0, 0] == pytest.approx(ys[0].max(), abs=2e-3)
+    case = T_sink + R_CS * (ys[2] - T_sink) / (R[2] + R_CS)
+    assert op.T_case_peak[0, 0] == pytest.approx(case.max(), abs=2e-3)
+    assert t.size > 100
+
+
+def test_one_shot_on_a_stated_start_with_a_sink_that_warms(tmp_path: Path) -> None:
+    stage = put(PROFILE, repeat='false\nT_start = "60 degC"', heatsink='{ R_th = "1.2 K/W", C_th = "0.5 J/K" }')
+    op = operating(tmp_path, stage)
+    _, ys = ode(power, [(0, 0.005), (0.005, 0.02)], np.full(4, 333.15), 0.5, np.nan)
+    assert op.T_j_peak[0, 0] == pytest.approx(ys[0].max(), abs=2e-3)
+    assert op.T_before[0, 0] == 333.15
+
+
+def test_held_points_are_the_chain_of_resistances(tmp_path: Path) -> None:
+    # Analytic limit: T = T_air + P * (R_sa + R_cs + R_jc) at every point.
+    op = operating(tmp_path, HELD)
+    assert op.T_j_peak == pytest.approx(T_AIR + op.P_mean * (R_SA + R_CS + 0.833), rel=1e-9)
+
+
+def test_written_chain_gives_the_temperatures_that_were_computed(tmp_path: Path) -> None:
+    sitting = evaluate(stage_of(tmp_path, PROFILE, CAUER))[0]
+    op, steps = sitting.judged[0].operating, chain(sitting.judged[0].operating, sitting.place)
+    assert steps.T_heatsink is not None
+    assert steps.T_j_mean is not None
+    assert steps.T_heatsink.at(0) == pytest.approx(op.T_heatsink[0, 0], rel=1e-12)
+    assert steps.T_j_mean.at(0) == pytest.approx(op.T_j_mean[0, 0], rel=1e-12)
+
+
+def test_long_shot_on_a_sink_of_unknown_capacity_is_not_within(tmp_path: Path) -> None:
+    # 60 W for 100 s: held at 60 degC the junction would do, with the sink following it would not: nobody knows.
+    rows = 'points = [["0 s", "30 V", "2 A"], ["100 s", "30 V", "2 A"]]'
+    stage = put(PROFILE, repeat='false\nT_start = "60 degC"', points=rows.split(" = ", 1)[1])
+    sitting = evaluate(stage_of(tmp_path, stage, CAUER))[0]
+    hot = next(f for f in sitting.findings if f.limit == "junction-temperature")
+    assert hot.status[0] == 2
+    assert "heat_path.heatsink.C_th" in hot.missing(0)
