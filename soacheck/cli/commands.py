@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import difflib
+import json
 import os
 import sys
 from collections.abc import Sequence
@@ -16,6 +17,7 @@ from soacheck import __version__
 from soacheck.cli.answer import Answer, ExitStatus, worst
 from soacheck.cli.process import refused
 from soacheck.errors import InputError, Problem
+from soacheck.show.text import clean, wants_colour
 
 if TYPE_CHECKING:
     from soacheck.result import Result
@@ -40,15 +42,12 @@ class Format(StrEnum):
 
 
 JsonFlag = Annotated[bool, typer.Option("--json", help="One JSON document instead of text.")]
-SheetFlag = Annotated[
-    bool, typer.Option("--sheet", help="The calculation written out, to be redone by hand.")
-]
+SheetFlag = Annotated[bool, typer.Option("--sheet", help="The calculation written out, to be redone by hand.")]
 Devices = Annotated[
     list[Path] | None,
-    typer.Option(
-        "--devices", metavar="DIR", help="A further folder of rating files; may be given several times."
-    ),
+    typer.Option("--devices", metavar="DIR", help="A further folder of rating files; may be given several times."),
 ]
+_KINDS = "One of: npn, pnp, npn-darlington, pnp-darlington, n-mosfet, p-mosfet, n-igbt."  # a test compares it
 Force = Annotated[bool, typer.Option("--force", help="Write over files that are there.")]
 
 
@@ -70,8 +69,8 @@ def soacheck(
 @app.command()
 def check(
     stages: Annotated[list[Path], typer.Argument(metavar="STAGE", help="Stage files (TOML).")],
-    json: JsonFlag = False,
-    sheet: SheetFlag = False,
+    as_json: JsonFlag = False,
+    as_sheet: SheetFlag = False,
     devices: Devices = None,
 ) -> Answer:
     """Check stages against every limit and give the verdict."""
@@ -85,7 +84,7 @@ def check(
             results.append(decide(read_stage(path, devices=devices or ())))
         except InputError as error:
             problems += error.problems
-    return _rendered(results, problems, json, sheet)
+    return _rendered(results, problems, as_json, as_sheet)
 
 
 @app.command()
@@ -94,19 +93,13 @@ def point(
     voltage: Annotated[str, typer.Argument(metavar="V", help='Voltage across the device: "30 V".')],
     current: Annotated[str, typer.Argument(metavar="I", help='Current through it: "1.5 A".')],
     *,
-    pulse: Annotated[
-        str | None, typer.Option(help='Width of a single pulse, "10 ms"; absent: held for ever.')
-    ] = None,
-    heatsink: Annotated[
-        str | None, typer.Option(help='Thermal resistance, "1.6 K/W", or "ideal", "none".')
-    ] = None,
+    pulse: Annotated[str | None, typer.Option(help='Width of a single pulse, "10 ms"; absent: held for ever.')] = None,
+    heatsink: Annotated[str | None, typer.Option(help='Thermal resistance, "1.6 K/W", or "ideal", "none".')] = None,
     interface: Annotated[str | None, typer.Option(help='Case to sink, "0.4 K/W".')] = None,
     ambient: Annotated[str | None, typer.Option(help='Air temperature, "40 degC".')] = None,
-    case: Annotated[
-        str | None, typer.Option(help='Case temperature held, "90 degC", in place of the above.')
-    ] = None,
-    json: JsonFlag = False,
-    sheet: SheetFlag = False,
+    case: Annotated[str | None, typer.Option(help='Case temperature held, "90 degC", in place of the above.')] = None,
+    as_json: JsonFlag = False,
+    as_sheet: SheetFlag = False,
     devices: Devices = None,
 ) -> Answer:
     """Check one point, held or pulsed, without a stage file."""
@@ -123,30 +116,29 @@ def point(
         case=case,
         devices=devices or (),
     )
-    return _rendered([result], [], json, sheet)
+    return _rendered([result], [], as_json, as_sheet)
 
 
 @app.command()
 def plot(
     stage: Annotated[Path, typer.Argument(metavar="STAGE", help="A stage file (TOML).")],
     name: Annotated[str | None, typer.Argument(metavar="NAME", help="One picture; absent: all.")] = None,
-    folder: Annotated[
-        Path, typer.Option("-o", "--output", metavar="DIR", help="Where the files go.")
-    ] = Path(),
+    folder: Annotated[Path, typer.Option("-o", "--output", metavar="DIR", help="Where the files go.")] = Path(),
     form: Annotated[Format, typer.Option("--format", help="File format.")] = Format.png,
     devices: Devices = None,
 ) -> Answer:
     """Draw the pictures of a stage."""
     from soacheck.check import check as decide
     from soacheck.show.figures import NAMES, write_figures
-    from soacheck.show.files import make_folder
     from soacheck.stage import read_stage
 
     if name is not None and name not in NAMES:
         raise InputError(_unknown("picture", name, NAMES))
     result = decide(read_stage(stage, devices=devices or ()))
-    make_folder(folder)
-    return Answer(text=_lines(write_figures(result, folder, which=name, fmt=form.value)))
+    written = write_figures(result, folder, which=name, fmt=form.value)
+    left_out = "".join(f"left out: {clean(what)}: {clean(why)}\n" for what, why in written.left_out)
+    drawn = ExitStatus.WITHIN if written.paths else ExitStatus.INPUT
+    return Answer(text=_lines(written.paths), notes=left_out, status=drawn)
 
 
 @app.command()
@@ -182,9 +174,7 @@ def show(
 
 @device_app.command("new")
 def new(
-    kind: Annotated[
-        str, typer.Argument(metavar="KIND", help="npn, pnp, npn-darlington, n-mosfet, n-igbt, ...")
-    ],
+    kind: Annotated[str, typer.Argument(metavar="KIND", help=_KINDS)],
     name: Annotated[str | None, typer.Argument(metavar="NAME", help="The device's name.")] = None,
     output: Annotated[
         Path | None,
@@ -199,7 +189,7 @@ def new(
 
     if kind not in KINDS:
         raise InputError(_unknown("kind of device", kind, KINDS))
-    text = template(kind, name=name)
+    text = template(kind) if name is None else _named(template(kind), name)
     if output is None:
         return Answer(text=text)
     _keep_existing([output], force)
@@ -207,9 +197,7 @@ def new(
     return Answer(text=_lines([output]))
 
 
-def _rendered(
-    results: Sequence[Result], problems: Sequence[Problem], as_json: bool, as_sheet: bool
-) -> Answer:
+def _rendered(results: Sequence[Result], problems: Sequence[Problem], as_json: bool, as_sheet: bool) -> Answer:
     """Results as JSON, as the calculation sheet or as text for the terminal; input errors outrank them."""
     if as_json and as_sheet:
         raise typer.BadParameter("--json and --sheet exclude each other")
@@ -226,7 +214,6 @@ def _rendered(
         text = sheets(results)
     else:
         from soacheck.show.terminal import terminal_blocks
-        from soacheck.show.text import wants_colour
 
         # sys.stdout is ours only for help and completion: see process
         text = terminal_blocks(results, wants_colour(sys.__stdout__))
@@ -241,9 +228,14 @@ def _unknown(what: str, name: str, known: Sequence[str]) -> Problem:
     return Problem(value=name, problem=f"there is no {what} of this name", remedy=remedy)
 
 
-def _lines(paths: Sequence[Path] | dict[Path, bytes]) -> str:
-    from soacheck.show.text import clean
+def _named(text: str, name: str) -> str:
+    """A rating file with its name filled in, the remark beside it staying in its column where there is room."""
+    blank, filled = 'name = "..."', f"name = {json.dumps(clean(name))}"
+    room = " " * min(max(len(filled) - len(blank), 0), 20)
+    return text.replace(blank + room, filled, 1)
 
+
+def _lines(paths: Sequence[Path] | dict[Path, bytes]) -> str:
     return "".join(f"{clean(str(path))}\n" for path in paths)
 
 

@@ -11,6 +11,7 @@ import pytest
 import soacheck
 from soacheck.cli.answer import ExitStatus, worst
 from soacheck.cli.process import run
+from soacheck.device.ratings import KINDS
 from tests.whole import DEVICE, HELD
 
 EXAMPLES = Path(soacheck.__file__).parent / "examples"
@@ -23,9 +24,7 @@ def folder(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
     (tmp_path / "held.toml").write_text(HELD)
     (tmp_path / "no-sink.toml").write_text(HELD.replace('heatsink = "1.2 K/W"', ""))
     (tmp_path / "hot.toml").write_text(HELD.replace('V_CC = "24 V"', 'V_CC = "90 V"'))
-    (tmp_path / "wrong.toml").write_text(
-        HELD.replace('V_CC = "24 V"', 'V_CC = "24 W"').replace("I_CQ", "I_CX")
-    )
+    (tmp_path / "wrong.toml").write_text(HELD.replace('V_CC = "24 V"', 'V_CC = "24 W"').replace("I_CQ", "I_CX"))
     monkeypatch.chdir(tmp_path)
     return tmp_path
 
@@ -65,9 +64,7 @@ def test_a_stage_without_a_sink_is_unproven(folder: Path, capfd: pytest.CaptureF
     assert "heat_path.heatsink" in capfd.readouterr().out
 
 
-def test_several_stages_give_a_list_and_the_worst_status(
-    folder: Path, capfd: pytest.CaptureFixture[str]
-) -> None:
+def test_several_stages_give_a_list_and_the_worst_status(folder: Path, capfd: pytest.CaptureFixture[str]) -> None:
     assert run(["check", "no-sink.toml", "hot.toml", "--json"]) == ExitStatus.EXCEEDS
     content = json.loads(capfd.readouterr().out)
     assert [entry["verdict"] for entry in content] == ["unproven", "exceeds"]
@@ -114,9 +111,7 @@ def test_a_device_is_read_back(folder: Path, capfd: pytest.CaptureFixture[str]) 
     assert "160 V" in capfd.readouterr().out
 
 
-def test_a_rating_file_is_started_but_never_over_another(
-    folder: Path, capfd: pytest.CaptureFixture[str]
-) -> None:
+def test_a_rating_file_is_started_but_never_over_another(folder: Path, capfd: pytest.CaptureFixture[str]) -> None:
     assert run(["device", "new", "npn", "MY-PART", "-o", "mine.toml"]) == 0
     first = Path("mine.toml").read_text()
     assert "MY-PART" in first
@@ -125,6 +120,11 @@ def test_a_rating_file_is_started_but_never_over_another(
     assert "--force" in capfd.readouterr().err
     assert run(["device", "new", "npn", "OTHER", "-o", "mine.toml", "--force"]) == 0
     assert "OTHER" in Path("mine.toml").read_text()
+
+
+def test_the_help_names_every_kind_of_device(capfd: pytest.CaptureFixture[str]) -> None:
+    assert run(["device", "new", "--help"]) == 0
+    assert f"One of: {', '.join(KINDS)}." in " ".join(capfd.readouterr().out.split())
 
 
 def test_an_unknown_kind_of_device_is_told_the_nearest(capfd: pytest.CaptureFixture[str]) -> None:
