@@ -14,6 +14,7 @@ from dataclasses import dataclass, replace
 from soacheck.result import DutyResult, Finding, Result, Status
 from soacheck.show.text import GLUE, WIDTH, ZERO_CELSIUS, cells, clean, pad, percent, plain, wrapped
 from soacheck.show.words import (
+    FROM_AMBIENT,
     REMINDER,
     amounts,
     device_words,
@@ -128,6 +129,8 @@ def _finding(result: Result, finding: Finding, nominal: float, steps: _Steps) ->
     share = f", {percent(used)} of the allowance" if math.isfinite(used) else ""
     beside = f" (nominal {percent(nominal)})" if result.spread and math.isfinite(nominal) else ""
     lines += wrapped(f"{amounts(finding)}{share}{beside}: {status.word}", "Result  ")
+    if share and finding.unit == "degC":
+        lines += wrapped(FROM_AMBIENT, "        ")
     if status is not Status.WITHIN:
         for reason in finding.reasons:
             if bool(reason.applies[0]):
@@ -222,8 +225,7 @@ def _same_in_celsius(node: Traced) -> bool:
     if not any(value.unit == "degC" for value in node.inputs):
         return True
     lowered = [
-        replace(value, value=value.value - ZERO_CELSIUS) if value.unit == "degC" else value
-        for value in node.inputs
+        replace(value, value=value.value - ZERO_CELSIUS) if value.unit == "degC" else value for value in node.inputs
     ]
     wanted = node.at(0) - (ZERO_CELSIUS if node.unit == "degC" else 0.0)
     got = derived(node.symbol, node.formula, node.unit, *lowered).at(0)

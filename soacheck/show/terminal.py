@@ -9,6 +9,7 @@ from dataclasses import dataclass
 from soacheck.result import DutyResult, Finding, Reason, Result, Status
 from soacheck.show.text import WIDTH, cells, clean, number, pad, percent, shown, wrapped
 from soacheck.show.words import (
+    FROM_AMBIENT,
     REMINDER,
     amounts,
     counts,
@@ -68,9 +69,7 @@ def terminal_blocks(results: Sequence[Result], colour: bool = False) -> str:
 
 def _verdict(result: Result, colour: bool) -> list[str]:
     word = result.verdict.word.upper()
-    lines = _with_colour(
-        wrapped(f"{word}: {verdict_sentence(result)}", "", "  "), word, result.verdict, colour
-    )
+    lines = _with_colour(wrapped(f"{word}: {verdict_sentence(result)}", "", "  "), word, result.verdict, colour)
     return [*lines, *wrapped(counts(result.findings), "  ")]
 
 
@@ -87,9 +86,7 @@ def _coloured(word: str, status: Status, colour: bool) -> str:
 def _duties(duties: Sequence[DutyResult]) -> list[str]:
     names = [clean(duty_words(duty.name, duty.half)) for duty in duties]
     first = WIDTH - _COLUMN * len(_COLUMNS)
-    head = pad("Duties, per device", first) + "".join(
-        pad(title, _COLUMN, right=True) for title, _, _ in _COLUMNS
-    )
+    head = pad("Duties, per device", first) + "".join(pad(title, _COLUMN, right=True) for title, _, _ in _COLUMNS)
     units = " " * first + "".join(pad(unit, _COLUMN, right=True) for _, unit, _ in _COLUMNS)
     lines = [head, units]
     for name, duty in zip(names, duties, strict=True):
@@ -124,17 +121,11 @@ def _findings(result: Result, colour: bool) -> list[str]:
     The place stands on a line below: for all when the duty has no room beside the numbers, else for those
     that are not `within` and for the one that governs.
     """
-    rows = [
-        _row(result, finding, nominal)
-        for finding, nominal in zip(result.findings, result.nominal, strict=True)
-    ]
+    rows = [_row(result, finding, nominal) for finding, nominal in zip(result.findings, result.nominal, strict=True)]
     if not rows:
         return ["Findings: none"]
     titles = ("used", "nominal" if result.spread else "", "status", "limit", "applied of allowed")
-    widths = [
-        max(cells(text) for text in column)
-        for column in zip(titles, *(row.words for row in rows), strict=True)
-    ]
+    widths = [max(cells(text) for text in column) for column in zip(titles, *(row.words for row in rows), strict=True)]
     beside = len(_ROW) + cells(_columns(titles, widths)) + max(cells(row.duty) for row in rows) <= WIDTH
     title = _columns(titles, widths) + ("duty" if beside else "")
     lines = ["Findings, worst first", (_ROW + title).rstrip()]
@@ -149,6 +140,8 @@ def _findings(result: Result, colour: bool) -> list[str]:
             lines += wrapped(under, _UNDER)
         if row.status is not Status.WITHIN:
             lines += _reasons(finding, duty_words(finding.duty, finding.half), seen)
+    if any(finding.unit == "degC" for finding in result.findings):
+        lines += wrapped(FROM_AMBIENT, _INDENT)
     return lines
 
 
@@ -201,8 +194,6 @@ def _applies(reason: Reason) -> bool:
 def _listed(title: str, items: Iterable[str], mark: str = "") -> list[str]:
     """A titled list, empty when there is nothing to list; numbered unless a mark is given."""
     lines = [
-        line
-        for index, item in enumerate(items, start=1)
-        for line in wrapped(item, _INDENT + (mark or f"{index}. "))
+        line for index, item in enumerate(items, start=1) for line in wrapped(item, _INDENT + (mark or f"{index}. "))
     ]
     return ["", title, *lines] if lines else []

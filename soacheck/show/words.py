@@ -15,6 +15,7 @@ REMINDER = (
     "Arithmetic on the values supplied; it replaces no test. The maker's ratings, the local "
     "electrical-safety rules and a competent, licensed person decide."
 )
+FROM_AMBIENT = "Share of a temperature: (applied - T_ambient) / (allowed - T_ambient)."
 NOMINAL_ONLY = "nominal values only"
 _MEMBER_UNITS = {"V": "V", "I": "A", "T": "degC", "R": "ohm", "f": "Hz", "t": "s", "P": "W"}
 

@@ -48,9 +48,7 @@ def draw(result: Result, name: str, half: str | None = None) -> Figure:
     """One picture as a matplotlib Figure. Raises InputError where `lacks` gives a reason."""
     reason = lacks(result, name, half)
     if reason:
-        raise InputError(
-            Problem(problem=f"the picture {name} cannot be drawn: {reason}", remedy="state what it lacks")
-        )
+        raise InputError(Problem(problem=f"the picture {name} cannot be drawn: {reason}", remedy="state what it lacks"))
     with canvas.settings():
         figure: Figure = _picture(name).draw(result, half)
     return figure
@@ -89,15 +87,11 @@ def write_figures(
 
 def _picture(name: str) -> ModuleType:
     if name not in _PICTURES:
-        raise InputError(
-            Problem(problem=f"no picture is called {name!r}", remedy=f"one of {', '.join(NAMES)}")
-        )
+        raise InputError(Problem(problem=f"no picture is called {name!r}", remedy=f"one of {', '.join(NAMES)}"))
     return _PICTURES[name]
 
 
 def _format(fmt: str) -> str:
     if fmt not in FORMATS:
-        raise InputError(
-            Problem(problem=f"pictures are not written as {fmt!r}", remedy=f"one of {', '.join(FORMATS)}")
-        )
+        raise InputError(Problem(problem=f"pictures are not written as {fmt!r}", remedy=f"one of {', '.join(FORMATS)}"))
     return fmt

@@ -32,9 +32,7 @@ LONGEST = 80  # characters of the user's text that a picture shows
 UNKNOWN_SIGN = "\N{REPLACEMENT CHARACTER}"
 
 _SETTINGS: dict[str, Any] = {
-    "font.family": [
-        "DejaVu Sans"
-    ],  # comes with matplotlib, so pictures do not depend on the fonts of the machine
+    "font.family": ["DejaVu Sans"],  # comes with matplotlib, so pictures do not depend on the fonts of the machine
     "font.size": TEXT_SIZE,
     "mathtext.default": "regular",
     "axes.linewidth": 0.8,
@@ -144,9 +142,9 @@ def plain(text: str, longest: int = LONGEST) -> str:
         text = text[: 20 * longest]
     known = _drawable()
     signs = []
-    for sign in " ".join(text.split()):
-        if unicodedata.category(sign) in ("Cc", "Cf", "Cs"):
-            continue
+    seen = (" " if sign.isspace() else sign for sign in text)
+    shown = "".join(sign for sign in seen if unicodedata.category(sign) not in ("Cc", "Cf", "Cs"))
+    for sign in " ".join(shown.split()):
         signs.append(sign if ord(sign) in known else UNKNOWN_SIGN)
     if len(signs) > longest:
         signs = [*signs[: longest - 1], "…"]

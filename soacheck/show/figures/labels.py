@@ -24,8 +24,10 @@ if TYPE_CHECKING:
 _AROUND = {
     "NE": (0.7, 0.7), "SE": (0.7, -0.7), "NW": (-0.7, 0.7), "SW": (-0.7, -0.7),
     "E": (1.0, 0.0), "W": (-1.0, 0.0), "N": (0.0, 1.0), "S": (0.0, -1.0),
+    "ENE": (0.95, 0.3), "ESE": (0.95, -0.3), "WNW": (-0.95, 0.3), "WSW": (-0.95, -0.3),
+    "NNE": (0.3, 0.95), "SSE": (0.3, -0.95), "NNW": (-0.3, 0.95), "SSW": (-0.3, -0.95),
 }  # fmt: skip
-_DISTANCES = (5.0, 10.0, 18.0, 30.0, 46.0, 66.0, 90.0, 120.0)  # [points]
+_DISTANCES = (5.0, 10.0, 18.0, 30.0, 46.0, 66.0, 90.0, 120.0, 155.0)  # [points]
 _LEADER_FROM = 16.0  # [points]
 _GAP = 2.0  # [pixel] between labels
 
@@ -97,7 +99,8 @@ def place(axes: Axes, wanted: Iterable[Label]) -> tuple[str, ...]:
 def _text(axes: Axes, label: Label) -> Text:
     return axes.text(
         0, 0, label.text, transform=axes.transAxes, ha="left", va="bottom", color=label.colour,
-        fontsize=label.size, fontweight="bold" if label.bold else "normal", fontstyle="italic" if label.italic else "normal",
+        fontsize=label.size, fontweight="bold" if label.bold else "normal",
+        fontstyle="italic" if label.italic else "normal",
         zorder=8, gid="label", linespacing=1.15,
         bbox={"facecolor": palette.GROUND, "edgecolor": "none", "alpha": 0.8, "pad": 0.6},
     )  # fmt: skip
@@ -110,11 +113,11 @@ def _best(paper: _Paper, label: Label, at: Point, size: Point) -> tuple[Box, flo
             box = _box(at, size, _AROUND[direction], distance * paper.per_point)
             if not _inside(box, paper.frame) or any(_overlap(box, other) for other in paper.boxes):
                 continue
-            cost = 12.0 * _under(box, paper.strokes) + 1.6 * distance + 3.0 * order
+            cost = 25.0 * _under(box, paper.strokes) + 1.6 * distance + 2.0 * order
             cost += 400.0 * sum(_overlap(box, mark) for mark in paper.marks)
             if distance >= _LEADER_FROM:
                 leader = _leader(at, box)
-                cost += 20.0 + 60.0 * sum(_under(other, leader) for other in paper.boxes)
+                cost += 45.0 + 60.0 * sum(_under(other, leader) for other in paper.boxes)
             if best is None or cost < best[0]:
                 best = (cost, box, distance)
     return None if best is None else (best[1], best[2])
@@ -128,20 +131,12 @@ def _box(at: tuple[float, float], size: tuple[float, float], step: tuple[float, 
 
 
 def _inside(box: Box, frame: Sequence[float]) -> bool:
-    return (
-        box[0] >= frame[0] + 3
-        and box[1] >= frame[1] + 3
-        and box[2] <= frame[2] - 3
-        and box[3] <= frame[3] - 3
-    )
+    return box[0] >= frame[0] + 3 and box[1] >= frame[1] + 3 and box[2] <= frame[2] - 3 and box[3] <= frame[3] - 3
 
 
 def _overlap(box: Box, other: Box) -> bool:
     return (
-        box[0] < other[2] + _GAP
-        and other[0] < box[2] + _GAP
-        and box[1] < other[3] + _GAP
-        and other[1] < box[3] + _GAP
+        box[0] < other[2] + _GAP and other[0] < box[2] + _GAP and box[1] < other[3] + _GAP and other[1] < box[3] + _GAP
     )
 
 

@@ -185,7 +185,5 @@ def _regions(duty: Drawn, kind: str, factor: float, named: set[int]) -> list[Lab
         longest = max((np.arange(starts[k], stops[k]) for k in own), key=lambda part: _reach(duty, part))
         middle = int(longest[longest.size // 2])
         near = ("NE", "N", "E", "SW", "S")
-        labels.append(
-            Label(x=float(v[middle]), y=float(i[middle] / factor), text=word, italic=True, near=near)
-        )
+        labels.append(Label(x=float(v[middle]), y=float(i[middle] / factor), text=word, italic=True, near=near))
     return labels

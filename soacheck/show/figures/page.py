@@ -75,9 +75,7 @@ def _lay_out(page: Page) -> None:
     width, height = page.figure.get_size_inches()
     top = height - page.top
     for axes, tall in zip(page.rows, page.heights, strict=True):
-        axes.set_position(
-            (LEFT / width, (top - tall) / height, (width - LEFT - RIGHT) / width, tall / height)
-        )
+        axes.set_position((LEFT / width, (top - tall) / height, (width - LEFT - RIGHT) / width, tall / height))
         top -= tall + BETWEEN
 
 
@@ -95,14 +93,7 @@ def finish(page: Page, heading: str, result: Result, half: str | None) -> Figure
         foot.append(legend)
     lines = [line for note in page.notes for line in _wrapped(figure, note, _NOTE_SIZE, room)]
     line_height = _NOTE_SIZE * 1.35 / 72
-    height = (
-        page.top
-        + sum(page.heights)
-        + BETWEEN * (len(page.heights) - 1)
-        + below
-        + line_height * len(lines)
-        + 0.12
-    )
+    height = page.top + sum(page.heights) + BETWEEN * (len(page.heights) - 1) + below + line_height * len(lines) + 0.12
     figure.set_size_inches(width, height)
     _lay_out(page)
     floor = height - page.top - sum(page.heights) - BETWEEN * (len(page.heights) - 1)

@@ -38,17 +38,13 @@ class Panel:
     thinned: bool
 
 
-def panels(
-    result: Result, half: str | None, wanted: Callable[[Panel], bool]
-) -> tuple[list[Panel], list[str]]:
+def panels(result: Result, half: str | None, wanted: Callable[[Panel], bool]) -> tuple[list[Panel], list[str]]:
     """The rows in the order sweep, held lines, runs in time, at most three; and the duties left out."""
     duties = read.drawn(result, half)
     kind = read.device_kind(result, half)
     found = [_swept(sweep) for sweep in result.sweeps if sweep.half == half and sweep.x.size > 1]
     found += [_held(duty, kind) for duty in duties if duty.held and duty.points > 1]
-    found += [
-        _timed(duty) for duty in _by_weight(result, half, [d for d in duties if not d.held and d.points > 1])
-    ]
+    found += [_timed(duty) for duty in _by_weight(result, half, [d for d in duties if not d.held and d.points > 1])]
     if not found:
         found = [_held(duty, kind) for duty in duties if duty.points == 1]
     found = [panel for panel in found if wanted(panel)]
@@ -89,9 +85,7 @@ def _held(duty: Drawn, kind: str) -> Panel:
 def _timed(duty: Drawn) -> Panel:
     series = duty.series
     power = series.v * series.i
-    keep = page.thinned(
-        power, *(column for column in (series.T_j, series.T_case) if column.size == power.size)
-    )
+    keep = page.thinned(power, *(column for column in (series.T_j, series.T_case) if column.size == power.size))
     t = series.t[keep] - series.t[0]
     factor, sign = words.prefix(float(t[-1]))
     what = "one shot" if series.use == "once" else "one period"

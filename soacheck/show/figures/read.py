@@ -43,9 +43,7 @@ def drawn(result: Result, half: str | None) -> tuple[Drawn, ...]:
     return tuple(
         Drawn(duty=duty, series=duty.series)
         for duty in result.duties
-        if duty.half == half
-        and duty.series is not None
-        and np.any(np.isfinite(duty.series.v * duty.series.i))
+        if duty.half == half and duty.series is not None and np.any(np.isfinite(duty.series.v * duty.series.i))
     )
 
 

@@ -61,9 +61,7 @@ def draw(result: Result, half: str | None) -> Figure:
     return page.finish(sheet, "Safe area", result, half)
 
 
-def _loci(
-    result: Result, picture: SafeAreaPicture, half: str | None
-) -> list[tuple[str, FloatArray, FloatArray, bool]]:
+def _loci(result: Result, picture: SafeAreaPicture, half: str | None) -> list[tuple[str, FloatArray, FloatArray, bool]]:
     """Name, v, i of each locus, the governing one first; whether it is a single held point."""
     found = [(d.name, *page.path(d.series), d.points == 1) for d in read.drawn(result, half)]
     found.sort(key=lambda entry: (entry[3], entry[0] != picture.duty))
@@ -92,9 +90,7 @@ def _axes(
     hot_v = [float(spot.where.v[0])] if spot is not None else []
     hot_i = [float(spot.where.i[0])] if spot is not None else []
     v = page.known([np.concatenate([c[:, 0] for c in curves]), np.array([picture.V_max, *hot_v])])
-    i = page.known(
-        [np.concatenate([c[:, 1] for c in curves]), np.array([picture.I_max, picture.I_peak, *hot_i])]
-    )
+    i = page.known([np.concatenate([c[:, 1] for c in curves]), np.array([picture.I_max, picture.I_peak, *hot_i])])
     v_loci, i_loci = page.known([entry[1] for entry in loci]), page.known([entry[2] for entry in loci])
     v_high, i_high = max(v.max(), v_loci.max(initial=0.0)), max(i.max(), i_loci.max(initial=0.0))
     i_low = min(i[i > 0].min(), 0.5 * float(np.median(i_loci[i_loci > 0])) if np.any(i_loci > 0) else i_high)
@@ -150,9 +146,7 @@ def _ratings(axes: Axes, picture: SafeAreaPicture, kind: str) -> list[Label]:
         (picture.I_peak, words.peak_rating(kind)),
     ):
         if math.isfinite(value) and not (value == picture.I_max and symbol == words.peak_rating(kind)):
-            canvas.drawn_line(
-                axes, [left, min(picture.V_max, right)], [value, value], palette.RATING, zorder=2
-            )
+            canvas.drawn_line(axes, [left, min(picture.V_max, right)], [value, value], palette.RATING, zorder=2)
             text = f"{symbol} {words.amount(value, 'A')}"
             labels.append(Label(x=left * 1.06, y=value, text=text, near=("NE", "SE")))
     if math.isfinite(picture.V_max):
@@ -199,22 +193,20 @@ def _hot_labels(axes: Axes, spot: Finding | None) -> list[Label]:
         margin = "safe-area: nothing is allowed here"
     else:
         margin = "safe-area: no figure"
+    amounts = ""
     allowed = spot.allowed.at(0) if spot.allowed is not None and spot.unit == "A" else math.nan
     if math.isfinite(allowed) and allowed > 0:
         axes.plot([v, v], [i, allowed], color=palette.INK, linewidth=0.8, zorder=5)
         axes.plot([v], [allowed], color=palette.INK, marker="_", markersize=9, linestyle="none", zorder=5)
-    place_words = f"at {words.amount(v, 'V')}, {read.duty_words(spot)}: {read.status_word(spot)}"
-    return [
-        Label(x=v, y=i, text=f"{margin}\n{place_words}", bold=True, near=("NE", "E", "SW", "SE", "W", "NW"))
-    ]
+        amounts = f"{words.amount(i, 'A')} of {words.amount(allowed, 'A')} "
+    place_words = f"{amounts}at {words.amount(v, 'V')}\n{read.duty_words(spot)}: {read.status_word(spot)}"
+    return [Label(x=v, y=i, text=f"{margin}\n{place_words}", bold=True, near=("NE", "E", "SW", "SE", "W", "NW"))]
 
 
 def _notes(result: Result, picture: SafeAreaPicture, half: str | None, spot: Finding | None) -> list[str]:
     notes = []
     if not math.isfinite(picture.T):
-        notes.append(
-            "The temperature at the chart's reference point is not known, so no curve could be scaled."
-        )
+        notes.append("The temperature at the chart's reference point is not known, so no curve could be scaled.")
     if spot is None:
         notes.append("No hot spot is marked: no safe-area finding has a place on this chart.")
     elif spot.where.v[0] <= 0 or spot.where.i[0] <= 0:

@@ -40,9 +40,7 @@ def lacks(result: Result, half: str | None) -> str:
     """Why there is nothing to draw; empty when there is."""
     if panels(result, half, _wanted)[0]:
         return ""
-    missing = dict.fromkeys(
-        key for finding in read.findings(result, _LIMIT, half) for key in finding.missing(0)
-    )
+    missing = dict.fromkeys(key for finding in read.findings(result, _LIMIT, half) for key in finding.missing(0))
     return "no temperature is known" + (f", for want of {', '.join(missing)}" if missing else "")
 
 
