@@ -15,7 +15,7 @@ from soacheck.trace import FloatArray
 
 BOLTZMANN_OVER_CHARGE = 8.617333262e-5  # [V/K] k/e from the exact SI values of 2019
 T_CROSSOVER = 298.15  # [K] temperature of the thermal voltage; a hot pair crosses over a little more softly
-_STEPS = 60  # never needed: Newton from the left of a convex function takes about five
+_STEPS = 200  # never needed: Newton's steps on a convex function are about five, some twenty at worst
 
 
 class Pair(NamedTuple):
@@ -58,7 +58,7 @@ def exponential_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike, R_E: npt.ArrayLi
 
         g + r (sqrt(x^2 + exp(g)) - 1) = 0,      s = sqrt(x^2 + exp(g)).
 
-    The left side rises and is convex in g, so Newton's steps converge from the lower bound for every x.
+    The left side rises and is convex in g and its root is at most 0, so Newton's steps, kept below 0, converge.
 
     Parameters
     ----------
@@ -96,7 +96,7 @@ def exponential_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike, R_E: npt.ArrayLi
         product = np.exp(g)
         root = np.sqrt(square + product)
         step = (g + r * (root - 1.0)) / (1.0 + r * product / (2 * root + np.finfo(float).tiny))
-        g = g - step
+        g = np.minimum(g - step, 0.0)  # the root lies below 0, the left side there above it
         if bool(np.all(np.abs(step) <= 1e-14 * (1.0 + np.abs(g)))):
             break
     product = np.exp(g)

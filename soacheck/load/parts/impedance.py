@@ -202,9 +202,8 @@ class _Reader:
         self, name: str, kind: Literal["series", "parallel"], value: object, depth: int
     ) -> Group | None:
         if not isinstance(value, list) or not value:
-            return self._refused(
-                name, "a list of impedances is wanted", f'{kind} = ["8 ohm", {{ L = "1 mH" }}]'
-            )
+            self._refused(name, "a list of impedances is wanted", f'{kind} = ["8 ohm", {{ L = "1 mH" }}]')
+            return None
         parts = [self.read(f"{name}[{number}]", part, depth + 1) for number, part in enumerate(value, 1)]
         found = tuple(part for part in parts if part is not None)
         return Group(kind=kind, parts=found) if len(found) == len(parts) else None

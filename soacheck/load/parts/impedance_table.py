@@ -19,7 +19,7 @@ _NUMBER = re.compile(r"[+-]?(\d+([.]\d*)?|[.]\d+)([eE][+-]?\d+)?", re.ASCII)
 _REMEDY = "rows of three numbers: frequency in Hz (rising), magnitude in ohm, phase in degrees (-90 to 90)"
 
 
-class _Refused(Exception):
+class Refused(Exception):
     """What is wrong with the file, as a problem of the key that names it."""
 
 
@@ -40,7 +40,7 @@ def read_table(cells: Cells, name: str, value: object, folder: Path) -> Rows | N
         return None
     try:
         return parse(_text(folder / value), value)
-    except _Refused as refused:
+    except Refused as refused:
         cells.refuse(name, str(refused), _REMEDY)
         return None
 
@@ -51,20 +51,20 @@ def _text(path: Path) -> str:
         handle = os.open(path, os.O_RDONLY | getattr(os, "O_NONBLOCK", 0))
     except (OSError, ValueError) as error:
         reason = error.strerror if isinstance(error, OSError) else "not a file name"
-        raise _Refused(f"the file {path.name!r} cannot be read: {reason}") from error
+        raise Refused(f"the file {path.name!r} cannot be read: {reason}") from error
     try:
         if not stat.S_ISREG(os.fstat(handle).st_mode):
-            raise _Refused(f"{path.name!r} is not a file")
+            raise Refused(f"{path.name!r} is not a file")
         with os.fdopen(handle, "rb", closefd=False) as stream:
             data = stream.read(_LARGEST + 1)
     finally:
         os.close(handle)
     if len(data) > _LARGEST:
-        raise _Refused(f"{path.name!r} is larger than {_LARGEST // 1000} kB")
+        raise Refused(f"{path.name!r} is larger than {_LARGEST // 1000} kB")
     try:
         return data.decode("utf-8-sig")
     except UnicodeDecodeError as error:
-        raise _Refused(f"{path.name!r} is not UTF-8 text (byte {error.start})") from error
+        raise Refused(f"{path.name!r} is not UTF-8 text (byte {error.start})") from error
 
 
 def _fields(line: str) -> list[str]:
@@ -87,20 +87,20 @@ def parse(text: str, file: str) -> Rows:
             continue  # header
         place = f"{file}, line {number}"
         if len(fields) != 3:
-            raise _Refused(f"{place}: {len(fields)} fields where three are wanted")
+            raise Refused(f"{place}: {len(fields)} fields where three are wanted")
         if not all(numeric):
-            raise _Refused(f"{place}: {fields[numeric.index(False)]!r} is not a number")
+            raise Refused(f"{place}: {fields[numeric.index(False)]!r} is not a number")
         f, magnitude, phase = (float(field) for field in fields)
         if not (0 < f < math.inf):
-            raise _Refused(f"{place}: the frequency {fields[0]} Hz is not positive")
+            raise Refused(f"{place}: the frequency {fields[0]} Hz is not positive")
         if rows and f <= rows[-1][0]:
-            raise _Refused(f"{place}: the frequency {fields[0]} Hz does not rise")
+            raise Refused(f"{place}: the frequency {fields[0]} Hz does not rise")
         if not (0 < magnitude < math.inf):
-            raise _Refused(f"{place}: the magnitude {fields[1]} ohm is not positive")
+            raise Refused(f"{place}: the magnitude {fields[1]} ohm is not positive")
         if not -90 <= phase <= 90:
-            raise _Refused(f"{place}: the phase {fields[2]} degrees is that of a source, not of a load")
+            raise Refused(f"{place}: the phase {fields[2]} degrees is that of a source, not of a load")
         rows.append((f, magnitude, phase))
     if len(rows) < 2:
-        raise _Refused(f"{file}: {len(rows)} rows of numbers, at least two are wanted")
+        raise Refused(f"{file}: {len(rows)} rows of numbers, at least two are wanted")
     array = np.array(rows, dtype=np.float64)
     return Rows(file=file, f=array[:, 0], magnitude=array[:, 1], phase=array[:, 2])

@@ -9,6 +9,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
+import numpy.typing as npt
 
 from soacheck.load.parts import class_b
 from soacheck.load.parts.impedance import ComplexArray
@@ -101,6 +102,12 @@ def _refined(score: Callable[[FloatArray], FloatArray], scan: FloatArray) -> Flo
     return np.asarray(centre, dtype=np.float64)
 
 
+def first_best(P: FloatArray) -> npt.NDArray[np.intp]:
+    """Index (case, 1) of the first member within rounding of the greatest: the lowest frequency where all are equal."""
+    most = P.max(axis=1, keepdims=True)
+    return np.argmax(most * (1 - 1e-9) <= P, axis=1)[:, None]
+
+
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Levels:
     """All levels looked at, the worst among them: output peaks V [V] and f [Hz], each (case, member)."""
@@ -137,20 +144,18 @@ def every_level(driven: Driven, f: FloatArray, *, class_b_only: bool, resistance
     grid_level = np.broadcast_to(np.tile(levels, f.shape[1]), grid_f.shape)
     V, locus = driven.at(grid_level, grid_f)
     P = np.broadcast_to(locus.p_mean, (cases, grid_f.shape[1]))
-    best = np.argmax(P, axis=1)[:, None]
+    best = first_best(P)
     best_f = np.take_along_axis(grid_f, best, 1)
     if class_b_only:
         Z = driven.Z_at(best_f)
         V_max = driven.swing(Z)
-        best_level = (
-            class_b.worst_swing(driven.output.V_rail, V_max, driven.r, np.abs(Z), np.angle(Z)) / V_max
-        )
+        best_level = class_b.worst_swing(driven.output.V_rail, V_max, driven.r, np.abs(Z), np.angle(Z)) / V_max
         best_level = np.minimum(best_level, 1.0)
     else:
         best_level, best_f = _search(driven, levels, f, best, best_f, fixed_f=resistance)
     worst_V, worst = driven.at(best_level, best_f)
     last = P[:, levels.size - 1 :: levels.size]
-    full_f = np.take_along_axis(f, np.argmax(last, axis=1)[:, None], 1)
+    full_f = np.take_along_axis(f, first_best(last), 1)
     full_V, full = driven.at(np.ones((1, 1)), full_f)
     joined = Locus(
         t=_joined(locus.t, worst.t, cases),
@@ -202,9 +207,7 @@ def _narrowed(
 ) -> tuple[FloatArray, list[FloatArray]]:
     """The best of a few arguments between the ends, and its neighbours; the centre if nothing is better."""
     half = np.linspace(0, 1, _POINTS // 2 + 1)
-    tried = np.concatenate(
-        [ends[0] + (centre - ends[0]) * half, centre + (ends[1] - centre) * half[1:]], axis=1
-    )
+    tried = np.concatenate([ends[0] + (centre - ends[0]) * half, centre + (ends[1] - centre) * half[1:]], axis=1)
     values = np.broadcast_to(score(tried), tried.shape).copy()
     values[:, _POINTS // 2] *= 1 + 1e-12  # rounding alone must not move it
     best = np.argmax(values, axis=1)[:, None]

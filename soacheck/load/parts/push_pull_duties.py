@@ -8,7 +8,7 @@ import numpy as np
 
 from soacheck.duty import Duty, Fitted, Members
 from soacheck.load.parts import push_pull_facts as facts
-from soacheck.load.parts.levels import Driven, every_level, fractions, frequencies
+from soacheck.load.parts.levels import Driven, every_level, first_best, fractions, frequencies
 from soacheck.load.parts.push_pull_stage import PushPull, column, driven_by, law_of
 from soacheck.load.parts.swing import OVERDRIVE, clipped, held
 from soacheck.locus import Locus, Use
@@ -135,7 +135,7 @@ def _at_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ...
         V_max = driven.swing(load.Z_at(f))
         locus = driven.at(V / V_max, f)[1]
     P = locus.p_mean
-    hottest = np.argmax(P, axis=1)[:, None]
+    hottest = first_best(P)
     at = np.broadcast_to(f, P.shape)
     sheet = facts.sheet_of(
         load, fitted, _f_fact(load, np.take_along_axis(at, hottest, 1), "greatest mean dissipation")
