@@ -9,13 +9,12 @@ from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
-import numpy.typing as npt
 
 from soacheck.load.parts import class_b
 from soacheck.load.parts.impedance import ComplexArray
 from soacheck.load.parts.swing import Output, sine
 from soacheck.locus import Locus
-from soacheck.trace import FloatArray
+from soacheck.trace import FloatArray, IntArray
 
 _SCAN = 241  # frequencies of the first look at the load, evenly over log f
 _SPREAD = 9  # frequencies kept from end to end of the range, besides the worst of each sort
@@ -102,10 +101,10 @@ def _refined(score: Callable[[FloatArray], FloatArray], scan: FloatArray) -> Flo
     return np.asarray(centre, dtype=np.float64)
 
 
-def first_best(P: FloatArray) -> npt.NDArray[np.intp]:
+def first_best(P: FloatArray) -> IntArray:
     """Index (case, 1) of the first member within rounding of the greatest: the lowest frequency where all are equal."""
     most = P.max(axis=1, keepdims=True)
-    return np.argmax(most * (1 - 1e-9) <= P, axis=1)[:, None]
+    return np.asarray(np.argmax(most * (1 - 1e-9) <= P, axis=1)[:, None], dtype=np.int64)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -178,7 +177,7 @@ def every_level(driven: Driven, f: FloatArray, *, class_b_only: bool, resistance
 
 
 def _search(
-    driven: Driven, levels: FloatArray, f: FloatArray, best: FloatArray, best_f: FloatArray, *, fixed_f: bool
+    driven: Driven, levels: FloatArray, f: FloatArray, best: IntArray, best_f: FloatArray, *, fixed_f: bool
 ) -> tuple[FloatArray, FloatArray]:
     index = best % levels.size
     level = levels[index]
