@@ -262,7 +262,7 @@ def _not_analysed(stage: Stage) -> tuple[str, ...]:
 
 
 def _assumptions(stage: Stage, plan: CasePlan, governing: int) -> tuple[str, ...]:
-    said = list(stage.document.assumptions)
+    said = list(stage.assumptions)
     for half in stage.halves:
         said += [f"{half.fitted.device.name}: {text}" for text in half.fitted.device.assumptions]
         if half.ladder is not None and half.ladder.how:

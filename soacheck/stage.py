@@ -71,8 +71,6 @@ STAGE_KEYS: tuple[Key, ...] = (
         table="stage",
         name="parallel",
         form="count",
-        default="1",
-        assumption="one device, none in parallel (stage.parallel not stated)",
         meaning="Devices that share the current.",
         where="the circuit diagram",
     ),
@@ -135,6 +133,7 @@ class Stage:
     devices: int  # of the whole stage
     document: Document
     plan: CasePlan
+    assumptions: tuple[str, ...]  # taken because the stage file is silent
     half_open: bool  # the circuit has another half whose device is not stated
     folder: Path
 
@@ -246,13 +245,20 @@ def _build(
     rules = own.read(document.table("derating"))
     parallel = stage.count("parallel") or 1
     document.finish()
+    counts_itself = kind.sharing(values, 1) == kind.sharing(values, 2)
+    if counts_itself and stage.has("parallel"):
+        stage.refuse("parallel", f"a {kind_name} stage states its devices in [load]", "[load] pairs = 2")
     count, total = kind.sharing(values, parallel), kind.devices(values, parallel)
     if kind.halves(values) < len(devices):
         stage.refuse("complement", f"a {kind_name} stage has no other half", "leave the complement out")
     _check_sink(document.table("heat_path"), path, total)
     fitted = _fitted(stage, devices, count)
     document.finish()
+    alone = (
+        () if counts_itself or stage.has("parallel") else ("one device, none in parallel (stage.parallel not stated)",)
+    )
     return Stage(
+        assumptions=(*document.assumptions, *alone, *path.unused),
         title=stage.text("title") or "",
         revision=stage.text("revision") or "",
         file=file,
