@@ -214,9 +214,7 @@ def _level(cells: Cells) -> tuple[Literal["any", "clipped", "voltage", "ratio"],
     if word.endswith("%"):
         ratio = cells.tree_quantity(f"{cells.path}.level", raw, "ratio", (0.0, 10.0))
         if ratio is not None and not bool(np.all((ratio.value > 0) & (ratio.value <= 1))):
-            cells.refuse(
-                "level", "the largest unclipped swing is 100 %, silence 0 %", 'level = "60 %", or "clipped"'
-            )
+            cells.refuse("level", "the largest unclipped swing is 100 %, silence 0 %", 'level = "60 %", or "clipped"')
         return "ratio", ratio
     return "voltage", cells.tree_quantity(f"{cells.path}.level", raw, "voltage", (1e-3, 5000.0))
 
@@ -252,9 +250,7 @@ def _check_frequency(cells: Cells, stage: PushPull, load: Impedance) -> None:
         ends = low * (high / low) ** np.linspace(0, 1, 241)
     Z = stage.Z_at(ends if ends is not None else np.ones((1, 1)))
     if not bool(np.all(np.isfinite(Z) & (np.abs(Z) > 1e-4))):
-        cells.refuse(
-            "load", "the load resonates without losses at a frequency of the range", "add its resistance"
-        )
+        cells.refuse("load", "the load resonates without losses at a frequency of the range", "add its resistance")
         return
     _check_swing(cells, stage, np.abs(Z), np.angle(Z))
 

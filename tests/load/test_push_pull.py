@@ -12,7 +12,9 @@ from hypothesis import strategies as st
 from soacheck.load import push_pull
 from soacheck.load.parts import class_b
 from soacheck.load.parts.impedance import Group
-from soacheck.locus import Use
+from soacheck.load.parts.push_pull_stage import driven_by
+from soacheck.locus import Locus, Use
+from soacheck.trace import FloatArray
 
 from .pushpull import at_angle, by_name, fact, fitted, locus_of, mean, part, peak, stage
 
@@ -414,3 +416,33 @@ def test_a_duty_does_not_follow_temperature_and_its_locus_is_read_only() -> None
     locus = locus_of(duty)
     assert not duty.temperature_follows
     assert not locus.v.flags.writeable
+
+
+def longest_over(ratio: FloatArray, share_of_period: float) -> float:
+    """The height that a periodic, evenly sampled ratio stays above for just this share of its period."""
+    low, high = 0.0, float(ratio.max())
+    for _ in range(40):
+        height = (low + high) / 2
+        below = np.flatnonzero(np.concatenate([ratio <= height] * 2))
+        run = int(np.diff(below).max()) - 1 if below.size > 1 else ratio.size
+        low, high = (height, high) if run >= share_of_period * ratio.size else (low, height)
+    return high
+
+
+@pytest.mark.parametrize(("angle", "slope", "share"), [(0, 1.0, 0.3), (0, 2.0, 0.1), (45, 1.5, 0.1), (60, 1.0, 0.2)])
+def test_levels_lie_close_enough_for_the_time_spent_above_a_curve(angle: float, slope: float, share: float) -> None:
+    # Second way: the same reading at 300 levels. The curve: 6 A flat, then falling with this slope on log paper.
+    load = at_angle(8.0, angle)
+    time = np.linspace(0, 1e-3, 2000, endpoint=False)
+
+    def worst(locus: Locus) -> float:
+        heights = []
+        for member in range(locus.shape[1]):
+            v = np.interp(time, locus.t[0, member], locus.v[0, member])
+            i = np.interp(time, locus.t[0, member], locus.i[0, member])
+            heights.append(longest_over(i / np.minimum(6.0, 60 * np.maximum(v, 1e-9) ** -slope), share))
+        return max(heights)
+
+    driven = driven_by(stage(35.0, load), fitted())
+    close = driven.at(np.linspace(0.4, 1, 300)[None, :], np.array([[1000.0]]))[1]
+    assert worst(locus_of(by_name(stage(35.0, load))["any-level"])) == pytest.approx(worst(close), rel=5e-3)

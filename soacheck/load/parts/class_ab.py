@@ -137,6 +137,4 @@ def square_law_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike) -> Pair:
     both = np.abs(i) < 4 * idle
     some = np.where(both, idle, 1.0)
     y = np.where(both, i, 0.0) / (4 * some)
-    return Pair(
-        np.where(both, some * (1 + y) ** 2, ideal.upper), np.where(both, some * (1 - y) ** 2, ideal.lower)
-    )
+    return Pair(np.where(both, some * (1 + y) ** 2, ideal.upper), np.where(both, some * (1 - y) ** 2, ideal.lower))

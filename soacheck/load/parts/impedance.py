@@ -19,9 +19,7 @@ ComplexArray = npt.NDArray[np.complex128]
 _LETTERS: tuple[Literal["R", "L", "C"], ...] = ("R", "L", "C")
 _DIMENSION = {"R": "resistance", "L": "inductance", "C": "capacitance"}
 _BAND = {"R": (1e-4, 1e7), "L": (1e-10, 1e4), "C": (1e-13, 10.0)}
-_FORMS = (
-    '"8 ohm", { R = "6 ohm", L = "1.2 mH" }, { series = [...] }, { parallel = [...] } or { table = "z.csv" }'
-)
+_FORMS = '"8 ohm", { R = "6 ohm", L = "1.2 mH" }, { series = [...] }, { parallel = [...] } or { table = "z.csv" }'
 _DEEPEST = 16
 
 
@@ -130,9 +128,7 @@ def traced_elements(load: Impedance) -> tuple[Traced, ...]:
     for element in elements(load):
         counts[element.kind] = counts.get(element.kind, 0) + 1
         named.append(
-            element.value.named(
-                f"{element.kind}_{counts[element.kind]}" if element.kind in several else element.kind
-            )
+            element.value.named(f"{element.kind}_{counts[element.kind]}" if element.kind in several else element.kind)
         )
     return tuple(named)
 
@@ -198,9 +194,7 @@ class _Reader:
             return None
         return Sampled(file=rows.file, f=rows.f, magnitude=rows.magnitude, phase=rows.phase)
 
-    def _group(
-        self, name: str, kind: Literal["series", "parallel"], value: object, depth: int
-    ) -> Group | None:
+    def _group(self, name: str, kind: Literal["series", "parallel"], value: object, depth: int) -> Group | None:
         if not isinstance(value, list) or not value:
             self._refused(name, "a list of impedances is wanted", f'{kind} = ["8 ohm", {{ L = "1 mH" }}]')
             return None

@@ -47,9 +47,9 @@ class Driven:
         return V, sine(self.output, V, Z, f)
 
 
-def fractions(one_frequency: bool) -> FloatArray:
+def fractions(few_frequencies: bool) -> FloatArray:
     """Fractions of the largest swing that are looked at: few where little happens, 0 and 1 among them."""
-    few, many = (13, 52) if one_frequency else (4, 20)
+    few, many = (13, 52) if few_frequencies else (4, 20)
     return np.concatenate([np.linspace(0, 0.4, few, endpoint=False), np.linspace(0.4, 1, many)])
 
 
@@ -129,7 +129,7 @@ def every_level(driven: Driven, f: FloatArray, *, class_b_only: bool, resistance
     class_b_only: no idle current, so that the worst level has a closed form. Else it is searched: the best of
     the grid, then by turns a finer grid over the level and over the frequency around it.
     """
-    levels = fractions(f.shape[1] == 1)
+    levels = fractions(f.shape[1] <= 2)
     cases = np.broadcast_shapes(
         f.shape[:1],
         driven.Z_at(f).shape[:1],

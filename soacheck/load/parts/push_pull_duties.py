@@ -94,9 +94,7 @@ def _any_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ..
             worst_sheet.named["phi"],
             load.I_Q.named("I_Q"),
         )
-    full_sheet = facts.sheet_of(
-        load, fitted, _f_fact(load, levels.full_f, "greatest mean dissipation at full level")
-    )
+    full_sheet = facts.sheet_of(load, fitted, _f_fact(load, levels.full_f, "greatest mean dissipation at full level"))
     full_V = full_sheet.of("V", "V_max", "V")
     worst = Duty(
         name="worst-level",
@@ -137,9 +135,7 @@ def _at_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ...
     P = locus.p_mean
     hottest = first_best(P)
     at = np.broadcast_to(f, P.shape)
-    sheet = facts.sheet_of(
-        load, fitted, _f_fact(load, np.take_along_axis(at, hottest, 1), "greatest mean dissipation")
-    )
+    sheet = facts.sheet_of(load, fitted, _f_fact(load, np.take_along_axis(at, hottest, 1), "greatest mean dissipation"))
     swing, mean = facts.stated_swing(sheet), np.take_along_axis(P, hottest, 1)[:, 0]
     made = (
         facts.clipped_facts(sheet, swing, mean, OVERDRIVE)

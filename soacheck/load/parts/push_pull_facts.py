@@ -43,9 +43,7 @@ class Sheet:
         """A derived value whose inputs are found among the named values and `more`."""
         known = {**self.named, **{value.symbol: value for value in more}}
         words = _names(formula)
-        return derived(
-            symbol, formula, unit, *(value for name, value in known.items() if name in words), source=source
-        )
+        return derived(symbol, formula, unit, *(value for name, value in known.items() if name in words), source=source)
 
 
 def _names(formula: str) -> set[str]:
@@ -69,16 +67,12 @@ def sheet_of(load: PushPull, fitted: Fitted, f: Traced | None) -> Sheet:
         formula, size = ("R/2" if load.bridged else "R"), inputs[0]
         named["Z_mod"] = derived("Z_mod", formula, "ohm", size)
     else:
-        what = "magnitude of the load's impedance" + (
-            ", half of it for each amplifier" if load.bridged else ""
-        )
+        what = "magnitude of the load's impedance" + (", half of it for each amplifier" if load.bridged else "")
         named["Z_mod"] = found("Z_mod", np.abs(Z), "ohm", what, *inputs, *at_f)
     if load.resistive:
         named["phi"] = given("phi", 0.0, "deg", "the load is a pure resistance")
     else:
-        named["phi"] = found(
-            "phi", np.degrees(np.angle(Z)), "deg", "angle of the load's impedance", *inputs, *at_f
-        )
+        named["phi"] = found("phi", np.degrees(np.angle(Z)), "deg", "angle of the load's impedance", *inputs, *at_f)
     if bool(np.any(load.V_sat.value > 0)):
         named["V_sat"] = load.V_sat.named("V_sat")
     if bool(np.any(load.R_E.value > 0)):
@@ -152,11 +146,7 @@ def sine_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
 def held_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> tuple[Traced, ...]:
     """Governing formula first: dissipation of one half that holds the output at V."""
     resistor = " - r_E*V/Z_mod" if sheet.has_r else ""
-    facts = [
-        sheet.of(
-            "P_B", f"share*(V_rail - V{resistor})*V/Z_mod", "W", V, source="output held at V, ideal class B"
-        )
-    ]
+    facts = [sheet.of("P_B", f"share*(V_rail - V{resistor})*V/Z_mod", "W", V, source="output held at V, ideal class B")]
     if not sheet.load.class_b:
         facts.append(
             found(
@@ -175,9 +165,7 @@ def held_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
 
 def clipped_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, overdrive: float) -> tuple[Traced, ...]:
     """What a clipped duty is made from."""
-    answer = (
-        "the load's current to it" if sheet.resistive else "the load's current to it, odd harmonics summed"
-    )
+    answer = "the load's current to it" if sheet.resistive else "the load's current to it, odd harmonics summed"
     how = f"mean of v_CE i_C over one period; sine of {overdrive:g} V_max cut off at V_max, {answer}"
     return (found("P_clipped", P_mean, "W", how, V, *sheet.named.values()), *_always(sheet, V))
 
@@ -211,9 +199,7 @@ def shorted_facts(load: PushPull, fitted: Fitted, *, half_time: bool) -> tuple[T
     if bool(np.any(load.R_E.value > 0)):
         across = f"(V_rail - {load.R_name}/pairs*I_limit)"
         inputs += [load.R_E.named(load.R_name), given("pairs", float(load.pairs), "1", "load.pairs")]
-    P_on = derived(
-        "P_short", f"share*{across}*I_limit", "W", *inputs, source="output at 0 V, the half at its limit"
-    )
+    P_on = derived("P_short", f"share*{across}*I_limit", "W", *inputs, source="output at 0 V, the half at its limit")
     if not half_time:
         return (P_on,)
     return (

@@ -57,9 +57,7 @@ def sine(output: Output, V: FloatArray, Z: ComplexArray, f: FloatArray) -> Locus
     """
     Z_mod, phi = np.abs(Z), np.angle(Z)
     V, Z_mod, phi, f = np.broadcast_arrays(V, Z_mod, phi, f)
-    base = np.concatenate(
-        [np.linspace(0, np.pi, _CONDUCTING + 1), np.linspace(np.pi, 2 * np.pi, _RESTING + 1)[1:]]
-    )
+    base = np.concatenate([np.linspace(0, np.pi, _CONDUCTING + 1), np.linspace(np.pi, 2 * np.pi, _RESTING + 1)[1:]])
     extra = np.stack(
         [
             (np.pi / 2 - phi) % (2 * np.pi),
@@ -106,9 +104,7 @@ def clipped(
     """
     edge = np.arcsin(1 / OVERDRIVE)
     angle = np.sort(
-        np.concatenate(
-            [np.linspace(0, 2 * np.pi, _CLIPPED + 1), [edge, np.pi - edge, np.pi + edge, 2 * np.pi - edge]]
-        )
+        np.concatenate([np.linspace(0, 2 * np.pi, _CLIPPED + 1), [edge, np.pi - edge, np.pi + edge, 2 * np.pi - edge]])
     )
     V, f = np.broadcast_arrays(V, f)
     shape = np.clip(OVERDRIVE * np.sin(angle), -1.0, 1.0)
@@ -168,6 +164,4 @@ def held(output: Output, V: FloatArray, R: FloatArray) -> HeldOutput:
     _locked(t, v, i)
     with np.errstate(divide="ignore", invalid="ignore"):
         halves = 1 + (v_other * i_other / (v * i))[..., 0]
-    return HeldOutput(
-        locus=Locus(t=t, v=v, i=i, use=Use.HELD), halves=np.where(np.isfinite(halves), halves, 2.0)
-    )
+    return HeldOutput(locus=Locus(t=t, v=v, i=i, use=Use.HELD), halves=np.where(np.isfinite(halves), halves, 2.0))
