@@ -91,9 +91,7 @@ def read(cells: Cells, surround: Surround) -> Profile:
     points, repeat = cells.points("points"), bool(cells.flag("repeat"))
     wrong = points is None or _check_points(cells, points)
     if points is None or wrong:
-        points = np.array(
-            [[0.0, 0.0, 0.0], [1.0, 0.0, 0.0]]
-        )  # never used: the refusal above ends the reading
+        points = np.array([[0.0, 0.0, 0.0], [1.0, 0.0, 0.0]])  # never used: the refusal above ends the reading
     t, v, i = (frozen(column) for column in points.T)
     marks, spans = None, cells.points("turn_off")
     if spans is not None and not wrong and not _check_spans(cells, spans, t):

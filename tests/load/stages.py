@@ -121,3 +121,12 @@ def refusals(kind: str, text: str, device_kind: str = "npn") -> list[tuple[str, 
     except InputError as error:
         return [(one.key, one.problem, one.remedy) for one in error.problems]
     return []
+
+
+# tables that several tests start from
+
+HELD = 'use = "held"\nV_CC = "24 V"\nR_C = "8 ohm"\n'
+SWING = 'use = "swing"\nV_CC = "24 V"\nR_C = "8 ohm"\n'
+SWITCHED = 'use = "switched"\n'
+SATURATES: dict[str, Any] = {"V_CE_sat": triple("V_CE_sat", "V", 0.5)}
+PULSED = f'{SWITCHED}V_CC = "100 V"\nR_C = "10 ohm"\nf = "10 kHz"\nduty_factor = "40 %"\nt_r = "1 us"\nt_f = "2 us"\n'

@@ -8,9 +8,7 @@ from soacheck.device.ratings import Device
 from soacheck.locus import Locus, Use
 from soacheck.trace import FloatArray
 
-HELD_POINTS = (
-    257  # along the line, even in voltage: the top of the parabola is exact, an SOA slope of 5 within 1e-4
-)
+HELD_POINTS = 257  # along the line, even in voltage: the top of the parabola is exact, an SOA slope of 5 within 1e-4
 SEGMENTS = 256  # of one period of a sine: the mean of its square is met within 1e-4
 
 
@@ -73,9 +71,7 @@ def sine_swing(
     )
 
 
-def slow_swing(
-    i_Q: FloatArray, v_Q: FloatArray, ohms: FloatArray, amplitude: FloatArray, share: FloatArray
-) -> Locus:
+def slow_swing(i_Q: FloatArray, v_Q: FloatArray, ohms: FloatArray, amplitude: FloatArray, share: FloatArray) -> Locus:
     """The same swing at no stated frequency: any of its points may be held for ever."""
     several = i_Q.shape[1] > 1
     chosen = np.unique(np.linspace(0, i_Q.shape[1] - 1, 9).round().astype(int)) if several else np.array([0])

@@ -66,9 +66,7 @@ def longest_line(device: Device, share: Traced | None) -> OnState:
         return OnState(R_on=None if cold is None else for_all(cold.named("R_DS_on"), share))
     if device.igbt:
         slope, knee = _low(typical.r_CE), _low(typical.V_CE_TO)
-        return OnState(
-            V_0=_named(knee, "V_CE_TO"), R_on=None if slope is None else for_all(slope.named("r_CE"), share)
-        )
+        return OnState(V_0=_named(knee, "V_CE_TO"), R_on=None if slope is None else for_all(slope.named("r_CE"), share))
     return OnState(V_0=_named(_low(typical.V_CE_sat), "V_CE_sat"))
 
 
@@ -79,18 +77,14 @@ def most_heat(device: Device, share: Traced | None) -> OnState:
         hot = laws.R_DS_on_hot(device)
         if hot is None:
             return OnState(
-                missing=(
-                    _lack("R_DS_on", "data sheet, characteristics: on-resistance at its gate-source voltage"),
-                )
+                missing=(_lack("R_DS_on", "data sheet, characteristics: on-resistance at its gate-source voltage"),)
             )
         return OnState(R_on=for_all(hot.named("R_DS_on_hot"), share))
     if device.igbt:
         knee = typical.V_CE_TO_hot or _high(typical.V_CE_TO)
         slope = typical.r_CE_hot or _high(typical.r_CE)
         missing = tuple(
-            _lack(
-                name, "data sheet: straight line through the hot output characteristic at full gate voltage"
-            )
+            _lack(name, "data sheet: straight line through the hot output characteristic at full gate voltage")
             for name, node in (("V_CE_TO", knee), ("r_CE", slope))
             if node is None
         )
@@ -120,9 +114,7 @@ def end_of_line(symbol: str, supply: Traced, resistances: tuple[Traced, ...], on
     ohms = " + ".join(node.symbol for node in in_loop)
     if on.V_0 is None:
         return derived(symbol, f"{supply.symbol} / ({ohms})", "A", supply, *in_loop)
-    return derived(
-        symbol, f"max({supply.symbol} - {on.V_0.symbol}, 0) / ({ohms})", "A", supply, on.V_0, *in_loop
-    )
+    return derived(symbol, f"max({supply.symbol} - {on.V_0.symbol}, 0) / ({ohms})", "A", supply, on.V_0, *in_loop)
 
 
 def _lack(name: str, where: str) -> Missing:

@@ -1,8 +1,9 @@
 """The quiescent point of a single-ended stage from its bias network.
 
 A bipolar transistor draws base current from a source V_th through R_th (Thevenin's equivalent of the
-network); a gate draws none, and the transfer characteristic is a straight line of slope g_fs from the threshold.
-The point then stands on the load line: not above its upper end, where the device is fully on, and not below leakage.
+network); a gate draws none, and the transfer characteristic is a straight line of slope g_fs from the
+threshold. The point then stands on the load line: not above its upper end, where the device is fully on, and
+not below leakage.
 Everything is at 25 degC: how the point moves with the junction is the matter of thermal runaway.
 """
 
@@ -89,9 +90,7 @@ def quiescent(bias: Bias, circuit: Circuit, on: OnState) -> Quiescent | tuple[Mi
 
 def _by_current(bias: Bias, circuit: Circuit, on: OnState) -> Quiescent | tuple[Missing, ...]:
     if bias.I_Q is None:
-        return (
-            Missing(key=f"load.{circuit.family.quiescent}", where="the circuit diagram or a measurement"),
-        )
+        return (Missing(key=f"load.{circuit.family.quiescent}", where="the circuit diagram or a measurement"),)
     point = _on_line(bias.I_Q.named("I_bias"), circuit, on, None)
     return _single(point)
 
@@ -236,15 +235,11 @@ def _on_line(active: Traced, circuit: Circuit, on: OnState, h_FE: Traced | None)
     i = (
         derived(family.quiescent, f"min({active.symbol}, I_end)", "A", active, end)
         if leakage is None
-        else derived(
-            family.quiescent, f"min(max({active.symbol}, {leakage.symbol}), I_end)", "A", active, leakage, end
-        )
+        else derived(family.quiescent, f"min(max({active.symbol}, {leakage.symbol}), I_end)", "A", active, leakage, end)
     )
     drop, drops = on.drop(i)
     # the emitter resistor carries the base current as well
-    through = (
-        f"{i.symbol} * {lower.symbol}" if h_FE is None else f"(1 + 1 / h_FE) * {i.symbol} * {lower.symbol}"
-    )
+    through = f"{i.symbol} * {lower.symbol}" if h_FE is None else f"(1 + 1 / h_FE) * {i.symbol} * {lower.symbol}"
     v = derived(
         f"{family.across}Q",
         f"max({circuit.supply.symbol} - {i.symbol} * {upper.symbol} - {through}, {drop})",

@@ -15,10 +15,10 @@ from soacheck.load.parts.resistive_stage import Resistive
 from soacheck.load.parts.switching import resistive_switching
 from soacheck.locus import Locus, Use
 from soacheck.table import Missing
-from soacheck.trace import FloatArray, Traced, derived, frozen, given
+from soacheck.trace import FloatArray, Traced, derived, found, frozen, given
 
 COLD_BIAS = "bias worked out at 25 degC; its drift with temperature belongs to runaway"
-SLOW = given("held", 1.0, "1", "no frequency is stated: each point of the swing may be held for ever")
+SLOW = "greatest v * i along the swing: no frequency is stated, so that each of its points may be held"
 
 
 def duties(load: Resistive, fitted: Fitted) -> tuple[Duty, ...]:
@@ -100,9 +100,7 @@ def _idle(bias: Bias, circuit: Circuit, fitted: Fitted) -> Duty:
     for end, point in (("low", Q.low), ("high", Q.high)):
         if point is not None:
             facts.append(_idle_power(f"P_idle_{end}", point, circuit))
-    members = (
-        Members(name=circuit.family.quiescent, unit="A", value=frozen(Q.i)) if Q.i.shape[1] > 1 else None
-    )
+    members = Members(name=circuit.family.quiescent, unit="A", value=frozen(Q.i)) if Q.i.shape[1] > 1 else None
     I_B = (Q.low or Q.middle).I_B
     if I_B is not None and circuit.share is not None:
         I_B = derived("I_B_each", "share * I_B", "A", circuit.share, I_B)
@@ -145,16 +143,15 @@ def _full_swing(load: Resistive, bias: Bias, circuit: Circuit, fitted: Fitted) -
     upper, lower = circuit.upper, circuit.lower_seen
     line = load.R_ac or derived("R_line", f"{upper.symbol} + {lower.symbol}", "ohm", upper, lower)
     on = on_state.longest_line(device, circuit.share)
-    amplitude = load_line.clipping_amplitude(
-        Q.i, Q.v, line.value[:, None], on.volts[:, None], on.ohms[:, None]
-    )
+    amplitude = load_line.clipping_amplitude(Q.i, Q.v, line.value[:, None], on.volts[:, None], on.ohms[:, None])
     facts = _swing_facts(Q.middle, line, on, circuit)
     share = fitted.share.value
     several = Q.i.shape[1] > 1
     if load.f is None:
         locus = load_line.slow_swing(Q.i, Q.v, line.value, amplitude, share)
         members = Members(name=circuit.family.across, unit="V", value=frozen(locus.v[:, :, 0]))
-        return _duty("full-swing", fitted, locus, (*facts, SLOW), members=members)
+        greatest = found("P_max", locus.p_mean.max(axis=1), "W", SLOW, *facts[1:])
+        return _duty("full-swing", fitted, locus, (greatest, *facts[1:]), members=members)
     locus = load_line.sine_swing(Q.i, Q.v, line.value, amplitude, f=load.f.value, share=share)
     members = Members(name=circuit.family.quiescent, unit="A", value=frozen(Q.i)) if several else Members()
     return _duty("full-swing", fitted, locus, (*facts, load.f), members=members)
@@ -162,10 +159,13 @@ def _full_swing(load: Resistive, bias: Bias, circuit: Circuit, fitted: Fitted) -
 
 def _swing_facts(point: Point, line: Traced, on: on_state.OnState, circuit: Circuit) -> tuple[Traced, ...]:
     drop, drops = on.drop(point.i)
-    extra = "" if on.R_on is None else f" + {on.R_on.symbol}"
+    ohms = line.symbol if on.R_on is None else f"({line.symbol} + {on.R_on.symbol})"
+    room = point.v.symbol if drop == "0" else f"({point.v.symbol} - {drop})"
+    if on.V_0 is not None and on.R_on is not None:
+        room = f"({point.v.symbol} - ({drop}))"
     swing = derived(
         "I_swing",
-        f"max(min({point.i.symbol}, ({point.v.symbol} - ({drop})) / ({line.symbol}{extra})), 0)",
+        f"max(min({point.i.symbol}, {room} / {ohms}), 0)",
         "A",
         point.i,
         point.v,
@@ -185,9 +185,7 @@ def _off_leakage(device: Device) -> Traced:
     """Leakage of one device while off, as its sheet states it. [A]"""
     stated = device.typical.leakage
     leak = None if stated is None else stated.high
-    return (
-        given("I_leak", 0.0, "A", "no leakage stated: taken as 0") if leak is None else leak.named("I_leak")
-    )
+    return given("I_leak", 0.0, "A", "no leakage stated: taken as 0") if leak is None else leak.named("I_leak")
 
 
 def _idle_off(circuit: Circuit, fitted: Fitted) -> Duty:
@@ -244,9 +242,7 @@ def _switched(load: Resistive, circuit: Circuit, fitted: Fitted) -> Duty:
     conduction = _power("P_on", "V_on * I_on * (D - t_r * f)", circuit, V_on, I_on, D, t_r, f)
     off = derived("P_off", f"{supply.symbol} * I_leak * (1 - D - t_f * f)", "W", supply, leak, D, t_f, f)
     total = derived("P_mean", "P_edges + P_on + P_off", "W", edges, conduction, off)
-    drive = Drive(
-        V_off=load.reverse, V_on=load.V_GS, I_B=load.I_B, I_on=_on_current(circuit, device), saturates=True
-    )
+    drive = Drive(V_off=load.reverse, V_on=load.V_GS, I_B=load.I_B, I_on=_on_current(circuit, device), saturates=True)
     facts, reverse = (total, edges, conduction, off), locus.turn_off is not None
     return _duty("switched", fitted, locus, facts, drive=drive, reverse=reverse, I_B_peak=load.I_B)
 

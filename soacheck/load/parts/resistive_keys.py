@@ -34,9 +34,7 @@ def _volts(
     )
 
 
-def _amperes(
-    name: str, belongs: frozenset[str] | None, role: str, meaning: str, *, where: str = _DIAGRAM
-) -> Key:
+def _amperes(name: str, belongs: frozenset[str] | None, role: str, meaning: str, *, where: str = _DIAGRAM) -> Key:
     return Key(
         table="load",
         name=name,
@@ -209,13 +207,9 @@ KEYS: tuple[Key, ...] = (
     ),
     _volts("V_BE_off", BASE_DRIVEN, "reverse", _REVERSE, where="the drive circuit"),
     _volts("V_GS_off", GATE_DRIVEN, "reverse", _REVERSE, where="the drive circuit"),
-    _amperes(
-        "I_B2", BASE_DRIVEN, "", "Reverse base current of each device at turn-off.", where="the drive circuit"
-    ),
-    _amperes("I_B", BASE_DRIVEN, "on", "Base current of each device while on.", where="the drive circuit"),
-    _volts(
-        "V_GS", GATE_DRIVEN, "on", "Gate-source (gate-emitter) voltage while on.", where="the drive circuit"
-    ),
+    _amperes("I_B2", BASE_DRIVEN, "", "Reverse base current of each device at turn-off.", where="the drive circuit"),
+    _amperes("I_B", BASE_DRIVEN, "", "Base current of each device while on.", where="the drive circuit"),
+    _volts("V_GS", GATE_DRIVEN, "", "Gate-source (gate-emitter) voltage while on.", where="the drive circuit"),
 )
 
 # Which keys of [load] only some of the uses read.

@@ -69,6 +69,9 @@ def read(cells: Cells, surround: Surround) -> Resistive:
             f"{family.upper} and {family.lower} are both 0: no resistance limits the current",
             f'{family.upper} = "20 ohm"',
         )
+    bias = _read_bias(cells, bias_cells, family)
+    if bias is not None:
+        _refuse_excess_current(cells, family, bias.I_Q, supply, upper)
     _refuse_slow_edges(cells, values["f"], values["duty_factor"], values["t_r"], values["t_f"])
     return Resistive(
         family=family,
@@ -77,7 +80,7 @@ def read(cells: Cells, surround: Surround) -> Resistive:
         upper=upper,
         lower=lower,
         R_ac=values["R_ac"],
-        bias=_read_bias(cells, bias_cells, family),
+        bias=bias,
         f=values["f"],
         duty_factor=values["duty_factor"],
         t_r=values["t_r"],
@@ -106,6 +109,19 @@ def _refuse_other_uses(cells: Cells, use: str | None, family: Family) -> None:
                 read_by = " or ".join(f'use = "{one}"' for one in uses)
                 problem = f'use = "{use}" does not read it, only {read_by} does'
                 cells.refuse(name, problem, f"leave {name} out, or {read_by}")
+
+
+def _refuse_excess_current(
+    cells: Cells, family: Family, I_Q: Traced | None, supply: Traced | None, upper: Traced | None
+) -> None:
+    """A stated current that the supply cannot drive through the upper resistor, at any stated value of the three."""
+    if I_Q is None or supply is None or upper is None:
+        return
+    with np.errstate(divide="ignore"):
+        most = supply.value / upper.value
+    if np.any(I_Q.value > most):
+        problem = f"{family.supply} drives no more than {float(np.min(most)):.4g} A through {family.upper}"
+        cells.refuse(family.quiescent, problem, f"a smaller {family.quiescent}, or the right {family.upper}")
 
 
 def _refuse_slow_edges(
@@ -144,17 +160,13 @@ def _read_bias(cells: Cells, table: Cells | None, family: Family) -> Bias | None
         ways.append("resistor")
     choices = f"R_1 and R_2, or {family.bias}" + ("" if family.gate else ", or R_B")
     if len(ways) > 1 or ("divider" in ways and R_B is not None):
-        cells.refuse(
-            "bias", "[load.bias] states two ways of setting the quiescent point", f"one of them: {choices}"
-        )
+        cells.refuse("bias", "[load.bias] states two ways of setting the quiescent point", f"one of them: {choices}")
         return None
     if not ways:
         cells.refuse("bias", "[load.bias] states nothing that sets the quiescent point", choices)
         return None
     if ways == ["divider"] and (R_1 is None or R_2 is None):
         lacking = "R_1" if R_1 is None else "R_2"
-        cells.refuse(
-            "bias", f"a divider wants two resistors, {lacking} is not stated", f'{lacking} = "4.7 kohm"'
-        )
+        cells.refuse("bias", f"a divider wants two resistors, {lacking} is not stated", f'{lacking} = "4.7 kohm"')
         return None
     return Bias(way=ways[0], R_1=R_1, R_2=R_2, R_B=R_B, V_BB=V_BB)

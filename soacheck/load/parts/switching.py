@@ -46,9 +46,7 @@ def resistive_switching(
         Seven times, one member. In a transition v + R*i stays the supply, so that each costs
         i_on*(supply + 2*v_on)*t/6.
     """
-    zero = np.zeros(
-        np.broadcast_shapes(*(np.shape(x) for x in (supply, v_on, i_on, i_off, on_time, period, t_r, t_f)))
-    )
+    zero = np.zeros(np.broadcast_shapes(*(np.shape(x) for x in (supply, v_on, i_on, i_off, on_time, period, t_r, t_f))))
 
     def path(*values: FloatArray) -> FloatArray:
         return np.stack([value + zero for value in values], axis=-1)[:, None, :]
