@@ -91,7 +91,7 @@ class Cells:
         key, value = self._value(name)
         if key is None or not isinstance(value, Stated):
             return None
-        if key.lists == 2 and value.ends:
+        if len(value.ends) == 2:
             raise ValueError(f"{key.path} may be an operating range: read it with span()")
         return self._traced(key, value)
 
@@ -102,6 +102,8 @@ class Cells:
         key, value = self._value(name)
         if key is None or not isinstance(value, Stated):
             return None
+        if len(value.ends) == 2:
+            raise ValueError(f"{key.path} may be an operating range: read it with span()")
         typ = self._traced(key, value)
         if joined(self.path, name) in self.sheet.plan.values:
             return None, typ, None

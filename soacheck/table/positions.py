@@ -133,7 +133,7 @@ def places(text: str) -> dict[Path, Place]:
     return _Index(text.replace("\r\n", "\n") + "\n").run()
 
 
-_PART = re.compile(r'"((?:[^"\\]|\\.)*)"|([^.\[\]"]+)|\[(\d+)\]|\.')
+_PART = re.compile(r'"((?:[^"\\]|\\.)*)"|([^.\[\]"]+)|\[(\d+)\]|\.', re.DOTALL)
 
 
 def parts_of(dotted: str) -> Path:
@@ -141,7 +141,7 @@ def parts_of(dotted: str) -> Path:
     parts: list[str | int] = []
     for match in _PART.finditer(dotted):
         if match[1] is not None:
-            parts.append(match[1])
+            parts.append(re.sub(r"\\(.)", r"\1", match[1], flags=re.DOTALL))
         elif match[2] is not None:
             parts.append(match[2])
         elif match[3] is not None:
