@@ -63,13 +63,29 @@ def _by_weight(result: Result, half: str | None, duties: list[Drawn]) -> list[Dr
 
 
 def _swept(sweep: Sweep) -> Panel:
+    """Several members at one x (a level at two frequencies) are drawn as the worst of them."""
     unit = f" ({sweep.unit})" if sweep.unit and sweep.unit != "1" else ""
     what = "peak voltage at the load" if sweep.name == "level" else sweep.name
+    order = np.argsort(sweep.x, kind="stable")
+    x, starts = np.unique(sweep.x[order], return_index=True)
+
+    def worst(column: FloatArray, pick: np.ufunc) -> FloatArray:
+        return pick.reduceat(column[order], starts) if column.size == order.size else _EMPTY
+
     return Panel(
-        duty=sweep.duty, title=f"{sweep.duty}: each point is a {sweep.name} that may last", timed=False,
-        x=sweep.x, x_name=f"{what}{unit}", P=sweep.P_mean, P_allowed=sweep.P_allowed, T_j=sweep.T_j_peak,
-        T_case=sweep.T_case, T_heatsink=sweep.T_heatsink, T_air=sweep.T_air, thinned=False,
-    )  # fmt: skip
+        duty=sweep.duty,
+        title=f"{sweep.duty}: each point is a {sweep.name} that may last",
+        timed=False,
+        x=x,
+        x_name=f"{what}{unit}",
+        P=worst(sweep.P_mean, np.fmax),
+        P_allowed=worst(sweep.P_allowed, np.fmin),
+        T_j=worst(sweep.T_j_peak, np.fmax),
+        T_case=worst(sweep.T_case, np.fmax),
+        T_heatsink=worst(sweep.T_heatsink, np.fmax),
+        T_air=worst(sweep.T_air, np.fmax),
+        thinned=False,
+    )
 
 
 def _held(duty: Drawn, kind: str) -> Panel:

@@ -207,6 +207,20 @@ def test_the_dissipation_of_a_stage_with_levels_shows_power_over_level_first() -
     assert {"mean 42.5 W", "allowed mean 46 W"} <= set(texts(figure, "label"))
 
 
+def test_a_level_at_two_frequencies_is_drawn_as_the_worse() -> None:
+    result = build.push_pull(complement=False)
+    (sweep,) = result.sweeps
+    both = {
+        name: np.concatenate([column, column * factor])
+        for name, factor, column in (("x", 1.0, sweep.x), ("P_mean", 1.2, sweep.P_mean), ("T_case", 1.1, sweep.T_case))
+    }
+    twice = replace(sweep, P_allowed=np.concatenate([sweep.P_allowed, sweep.P_allowed * 0.9]), **both)
+    figure = figures.draw(replace(result, sweeps=(twice,)), "dissipation")
+    drawn = {line.get_color(): line.get_ydata() for line in figure.axes[0].lines if len(line.get_xdata()) > 2}
+    assert np.asarray(drawn[palette.LOAD]) == pytest.approx(1.2 * sweep.P_mean)
+    assert np.asarray(drawn[palette.LIMIT]) == pytest.approx(0.9 * sweep.P_allowed)
+
+
 def test_an_allowance_far_above_the_power_is_told_not_drawn() -> None:
     line = build.held_line()
     series = line.duties[1].series
