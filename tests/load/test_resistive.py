@@ -28,7 +28,7 @@ from tests.load.stages import (
 
 def test_the_worst_held_point_is_half_the_supply() -> None:
     # Analytic limit: V^2/(4 R) at V/2.
-    duty = duties("resistive", HELD)["held-worst-point"]
+    duty = duties("resistive", HELD, device(**SATURATES))["held-worst-point"]
     path = locus(duty)
     assert path.use is Use.HELD
     worst = int(np.argmax(path.p_mean[0]))

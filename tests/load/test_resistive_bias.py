@@ -147,6 +147,14 @@ def test_a_stage_that_is_off_carries_the_stated_leakage() -> None:
     assert locus(duty).p_mean == pytest.approx(2e-3 * (30 - 0.02))
 
 
+def test_parallel_devices_that_are_off_leak_each_for_itself() -> None:
+    made = bipolar(50, leakage=triple("I_CBO", "A", 2e-3))
+    text = 'V_CC = "30 V"\nR_C = "10 ohm"\n[load.bias]\nV_BB = "0.3 V"\nR_B = "1 kohm"'
+    path = locus(idle(text, made, count=4, share=0.25))
+    assert path.i == pytest.approx(2e-3)
+    assert path.v == pytest.approx(30 - 4 * 2e-3 * 10)
+
+
 def test_a_stage_that_is_fully_on_keeps_the_highest_saturation_voltage() -> None:
     made = bipolar(100, V_CE_sat=triple("V_CE_sat", "V", 0.2, 0.5, 1.5))
     duty = idle('V_CC = "12 V"\nR_C = "3 ohm"\n[load.bias]\nR_B = "100 ohm"', made)
