@@ -71,13 +71,27 @@ def sine_swing(
     )
 
 
-def slow_swing(i_Q: FloatArray, v_Q: FloatArray, ohms: FloatArray, amplitude: FloatArray, share: FloatArray) -> Locus:
-    """The same swing at no stated frequency: any of its points may be held for ever."""
+def slow_swing(
+    i_Q: FloatArray,
+    v_Q: FloatArray,
+    ohms: FloatArray,
+    amplitude: FloatArray,
+    *,
+    share: FloatArray,
+    one_line: bool,
+) -> Locus:
+    """The same swing at no stated frequency: any of its points may be held for ever.
+
+    one_line: all quiescent points stand on the line of the swing; the members then run along it, v rising.
+    """
     several = i_Q.shape[1] > 1
     chosen = np.unique(np.linspace(0, i_Q.shape[1] - 1, 9).round().astype(int)) if several else np.array([0])
     s = np.linspace(-1.0, 1.0, 65 if several else HELD_POINTS)
     wave = np.broadcast_to(amplitude, i_Q.shape)[:, chosen, None] * s
     v = np.broadcast_to(v_Q, i_Q.shape)[:, chosen, None] - ohms[:, None, None] * wave
     i = np.maximum(i_Q[:, chosen, None] + wave, 0.0) * share[:, None, None]
-    v, i = np.broadcast_arrays(v, i)
-    return held_points(v.reshape(v.shape[0], -1), i.reshape(i.shape[0], -1))
+    v, i = (full.reshape(full.shape[0], -1) for full in np.broadcast_arrays(v, i))
+    if one_line:
+        order = np.argsort(v, axis=1)
+        v, i = np.take_along_axis(v, order, axis=1), np.take_along_axis(i, order, axis=1)
+    return held_points(v, i)

@@ -284,13 +284,10 @@ def _over_spread(point: Callable[[Traced, Traced], Point], gain: Triple, volts: 
         a_, b_, c_ = (x[:, None] for x in np.broadcast_arrays(a.value, b.value, c.value))
         return np.concatenate([a_ + (b_ - a_) * s, c_], axis=1)
 
-    return Quiescent(
-        middle=middle,
-        low=low,
-        high=high,
-        v=between(low.v, high.v, middle.v),
-        i=between(low.i, high.i, middle.i),
-    )
+    v, i = between(low.v, high.v, middle.v), between(low.i, high.i, middle.i)
+    order = np.argsort(i, axis=1)
+    v, i = np.take_along_axis(v, order, axis=1), np.take_along_axis(i, order, axis=1)
+    return Quiescent(middle=middle, low=low, high=high, v=v, i=i)
 
 
 def _stated(node: Traced | None) -> Traced:

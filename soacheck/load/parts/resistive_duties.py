@@ -148,7 +148,7 @@ def _full_swing(load: Resistive, bias: Bias, circuit: Circuit, fitted: Fitted) -
     share = fitted.share.value
     several = Q.i.shape[1] > 1
     if load.f is None:
-        locus = load_line.slow_swing(Q.i, Q.v, line.value, amplitude, share)
+        locus = load_line.slow_swing(Q.i, Q.v, line.value, amplitude, share=share, one_line=load.R_ac is None)
         members = Members(name=circuit.family.across, unit="V", value=frozen(locus.v[:, :, 0]))
         greatest = found("P_max", locus.p_mean.max(axis=1), "W", SLOW, *facts[1:])
         return _duty("full-swing", fitted, locus, (greatest, *facts[1:]), members=members)
