@@ -184,9 +184,7 @@ class Cells:
             return self.data[name]
         return None if key.default is None else default_value(key)
 
-    def tree_quantity(
-        self, path: str, value: object, dimension: str, band: tuple[float, float]
-    ) -> Traced | None:
+    def tree_quantity(self, path: str, value: object, dimension: str, band: tuple[float, float]) -> Traced | None:
         """A quantity inside a tree; `path` is the dotted path from the file's root, elements counted from 1:
         "load.load.series[1].R". The symbol is the last name of the path. The band decides on the sign."""
         name = path.rpartition(".")[2].partition("[")[0]

@@ -33,15 +33,13 @@ def check_table(sheet: Sheet, path: str, table: str, data: Mapping[str, Any]) ->
                 ledger.refuse(dotted, f"{name} is a table", f"write its keys under [{inner}]")
         else:
             problem, remedy, near = declared.unknown(table, name, data)
-            if near and isinstance(raw, str):  # the line that would be right
+            if near and near not in data and isinstance(raw, str):  # the line that would be right
                 remedy += f' {near} = "{plain(raw)}"'
             ledger.refuse(dotted, problem, remedy)
             offered.add(near)
     for name, key in own.items():
         if key.required and name not in data and name not in offered and not key.not_built:
-            ledger.refuse(
-                joined(path, name), "this key is wanted and absent", _how_to_state(key, "[" in path)
-            )
+            ledger.refuse(joined(path, name), "this key is wanted and absent", _how_to_state(key, "[" in path))
     if not path:
         for name in declared.top_tables() - data.keys() - offered:
             check_table(sheet, name, name, {})

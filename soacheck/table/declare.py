@@ -112,9 +112,7 @@ class CasePlan:
             )
         ends = [(spread.low, spread.high) for spread in spreads]
         table = np.array(list(product(*ends)), dtype=np.float64) if spreads else np.empty((0, 0))
-        values = {
-            spread.key: np.concatenate(([spread.nominal], table[:, n])) for n, spread in enumerate(spreads)
-        }
+        values = {spread.key: np.concatenate(([spread.nominal], table[:, n])) for n, spread in enumerate(spreads)}
         return cls(count=1 + len(table), values=values)
 
     def block(self, start: int, stop: int) -> CasePlan:

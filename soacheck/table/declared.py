@@ -57,11 +57,11 @@ class Declared:
         """Problem, remedy and the name that was offered, for a name of the file that is not declared."""
         foreign = self._foreign.get((table, name))
         if foreign is not None:
-            return self._of_another_kind(foreign)
+            return self._of_another_kind(foreign, set(stated))
         shown, where = plain(name), f"[{table}]" if table else "the top of the file"
         problem = f"{where} has no key {shown}" if table else f"{shown} is not a table that is known here"
         homes = sorted(other for other in self._own if other != table and self._same(name, other))
-        own = [key for key in self.own(table) if key not in set(stated)] or list(self.own(table))
+        own = list(self.own(table))
         if not table:
             own += [path for path in self.tables if path and "." not in path]
         best = max((likeness(name, key) for key in own), default=0.0)
@@ -69,18 +69,19 @@ class Declared:
             right = self._same(name, homes[0])
             if not homes[0]:
                 return problem, f"{right} stands at the top of the file", ""
-            misplaced = (
-                f"{shown} does not belong under {where}" if table else f"{shown} stands outside its table"
-            )
+            misplaced = f"{shown} does not belong under {where}" if table else f"{shown} stands outside its table"
             return misplaced, f"put {right} under [{homes[0]}]", ""
         near = nearest(name, own, _NEAR)
         opposite = {_RATINGS: _CHARACTERISTICS, _CHARACTERISTICS: _RATINGS}.get(table)
         if near and opposite and max((likeness(name, k) for k in self.own(opposite)), default=0.0) > best:
             near = None  # a rating must not be offered for a characteristic, nor the reverse
+        if near and near in set(stated):
+            return problem, f"{near} is stated too: keep one of the two", near
         if near:
             line = f"[{near}]" if not table and near in self.tables else near
             return problem, f"was {line} meant?", near
-        known = ", ".join(f"[{key}]" if not table and key in self.tables else key for key in sorted(set(own)))
+        built = {key for key in own if key not in self.own(table) or not self.own(table)[key].not_built}
+        known = ", ".join(f"[{key}]" if not table and key in self.tables else key for key in sorted(built))
         return problem, f"known here: {known}" if known else "leave it out", ""
 
     def _same(self, name: str, table: str) -> str:
@@ -88,15 +89,13 @@ class Declared:
         plain_name = folded(name)
         return next((key for key in self.own(table) if plain_name and folded(key) == plain_name), "")
 
-    def _of_another_kind(self, foreign: Key) -> tuple[str, str, str]:
+    def _of_another_kind(self, foreign: Key, stated: set[str]) -> tuple[str, str, str]:
         kinds = " ".join(sorted(foreign.belongs_to or ()))
         problem = f"{foreign.name} belongs to {kinds}; the device here is {self.device_kind}"
         twin = next(
-            (
-                key.name
-                for key in self.own(foreign.table).values()
-                if foreign.role and key.role == foreign.role
-            ),
+            (key.name for key in self.own(foreign.table).values() if foreign.role and key.role == foreign.role),
             "",
         )
+        if twin in stated:
+            return problem, f"leave it out: {twin} stands here already", ""
         return problem, f"here it is {twin}:" if twin else "leave it out", twin

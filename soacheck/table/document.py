@@ -108,9 +108,7 @@ def _leaves(path: str, raw: object, sheet: Sheet) -> Iterator[str]:
             yield from _leaves(f"{path}[{number}]", inner, sheet)
 
 
-def read_document(
-    path: Path, keys: Sequence[Key], *, shown_as: str, device_kind: str | None = None
-) -> Document:
+def read_document(path: Path, keys: Sequence[Key], *, shown_as: str, device_kind: str | None = None) -> Document:
     """Read a TOML file against the declarations. Raises InputError at once only when it cannot be parsed;
     what is wrong with its keys and values waits for `Document.finish()`, so that the readers can add
     theirs."""

@@ -14,9 +14,7 @@ from soacheck.table.toml_text import Source
 
 _PLAIN_NAME = re.compile(r"[A-Za-z0-9_-]+")
 _LONGEST_VALUE = 60
-MOST_PROBLEMS = (
-    100  # a file with more is not a rating or stage file; looking for near names would take seconds
-)
+MOST_PROBLEMS = 100  # a file with more is not a rating or stage file; looking for near names would take seconds
 
 
 def joined(path: str, name: str) -> str:
@@ -81,9 +79,7 @@ class Ledger:
         found.sort(key=lambda item: len(self.source.text) if item.line is None else item.line)
         if self.full:
             remedy = "put these right first"
-            found.append(
-                Problem(file=self.source.file, problem="there is more, not listed here", remedy=remedy)
-            )
+            found.append(Problem(file=self.source.file, problem="there is more, not listed here", remedy=remedy))
         return tuple(found)
 
     def finish(self) -> None:

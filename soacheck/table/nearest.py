@@ -23,7 +23,5 @@ def likeness(written: str, name: str) -> float:
 
 def nearest(written: str, names: Iterable[str], cutoff: float = 0.6) -> str | None:
     """The known name that is most like the written one, None when nothing is."""
-    best = max(
-        ((likeness(written, name), name) for name in names), default=(0.0, ""), key=lambda pair: pair[0]
-    )
+    best = max(((likeness(written, name), name) for name in names), default=(0.0, ""), key=lambda pair: pair[0])
     return best[1] if best[0] >= cutoff else None

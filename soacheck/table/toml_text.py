@@ -51,9 +51,7 @@ class Source:
 def read_source(path: Path, *, shown_as: str) -> Source:
     """Read and parse a TOML file. InputError with line and column for whatever is wrong with it as TOML."""
     content = _content(path, shown_as)
-    return parse_source(
-        _decoded(content, shown_as), shown_as=shown_as, sha256=hashlib.sha256(content).hexdigest()
-    )
+    return parse_source(_decoded(content, shown_as), shown_as=shown_as, sha256=hashlib.sha256(content).hexdigest())
 
 
 def parse_source(text: str, *, shown_as: str, sha256: str = "") -> Source:
@@ -61,9 +59,7 @@ def parse_source(text: str, *, shown_as: str, sha256: str = "") -> Source:
     if not sha256:
         sha256 = hashlib.sha256(text.encode("utf-8", "surrogatepass")).hexdigest()
     if not text.strip():
-        raise InputError(
-            Problem(file=shown_as, problem="the file is empty", remedy="`soacheck device new` starts one")
-        )
+        raise InputError(Problem(file=shown_as, problem="the file is empty", remedy="`soacheck device new` starts one"))
     _guard(text, shown_as)
     try:
         data = tomllib.loads(text)
@@ -100,9 +96,7 @@ def _content(path: Path, shown_as: str) -> bytes:
     finally:
         os.close(descriptor)
     if len(content) > MOST_BYTES:
-        raise refused(
-            f"the file is larger than {MOST_BYTES // 1_000_000} MB", "a rating or stage file has a few kB"
-        )
+        raise refused(f"the file is larger than {MOST_BYTES // 1_000_000} MB", "a rating or stage file has a few kB")
     return content
 
 
@@ -181,18 +175,14 @@ def _syntax(error: ValueError, text: str, shown_as: str) -> Problem:
     lines = text.split("\n")
     if line is None:
         if "integer string conversion" in message:
-            return Problem(
-                file=shown_as, problem="a number with thousands of digits", remedy="write it as 1e3"
-            )
+            return Problem(file=shown_as, problem="a number with thousands of digits", remedy="write it as 1e3")
         line = len(text.rstrip().split("\n"))
         message += "" if message.startswith("Cannot") else ", and the file ends"
     here = lines[line - 1][:500] if line <= len(lines) else ""
     problem = f"not valid TOML: {plain(message, 120)}"
     if column is not None and here.isprintable() and len(here) <= 200:
         problem += f"\n{here}\n{' ' * (min(column, len(here) + 1) - 1)}^"
-    return Problem(
-        file=shown_as, line=line, column=column, problem=problem, remedy=_syntax_remedy(message, here)
-    )
+    return Problem(file=shown_as, line=line, column=column, problem=problem, remedy=_syntax_remedy(message, here))
 
 
 # What a line looks like, and what to write instead. The first that fits is offered; texts are blanked out

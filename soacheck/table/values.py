@@ -161,13 +161,9 @@ def _list(key: Key, dotted: str, raw: list[object], ledger: Ledger) -> Stated | 
     if key.lists == 0:
         ledger.refuse(dotted, "one value is wanted here, not a list", f'{key.name} = "{_example(key)}"')
         return None
-    words = (
-        "an operating range is a list of two, [from, to]" if key.lists == 2 else "a list is [min, typ, max]"
-    )
+    words = "an operating range is a list of two, [from, to]" if key.lists == 2 else "a list is [min, typ, max]"
     if len(raw) != key.lists:
-        ledger.refuse(
-            dotted, f"{words}; {len(raw)} values stand here", f"give {key.lists} values, or one alone"
-        )
+        ledger.refuse(dotted, f"{words}; {len(raw)} values stand here", f"give {key.lists} values, or one alone")
         return None
     ends = []
     for number, element in enumerate(raw, 1):
@@ -201,9 +197,7 @@ def _inline(key: Key, dotted: str, raw: dict[str, object], ledger: Ledger) -> St
         good = False
     if "grade" in raw and grade not in GRADES:
         near = nearest(grade, GRADES) if isinstance(grade, str) else None
-        ledger.refuse(
-            f"{dotted}.grade", "a grade is one of " + ", ".join(GRADES), f'grade = "{near or GRADES[0]}"'
-        )
+        ledger.refuse(f"{dotted}.grade", "a grade is one of " + ", ".join(GRADES), f'grade = "{near or GRADES[0]}"')
         good = False
     if "value" not in raw:
         ledger.refuse(dotted, "the value is missing", f'{key.name} = {{ value = "{_example(key)}", ... }}')
@@ -215,9 +209,7 @@ def _inline(key: Key, dotted: str, raw: dict[str, object], ledger: Ledger) -> St
     if ends is None:
         return None
     low, high = ends if ends != (nominal, nominal) else (None, None)
-    return Stated(
-        nominal=nominal, unit=unit_of(key), low=low, high=high, source=str(source), grade=str(grade)
-    )
+    return Stated(nominal=nominal, unit=unit_of(key), low=low, high=high, source=str(source), grade=str(grade))
 
 
 def _uncertainty(
@@ -246,13 +238,9 @@ def _uncertainty(
     return low, high
 
 
-def _tolerance(
-    key: Key, dotted: str, raw: object, nominal: float, ledger: Ledger
-) -> tuple[float, float] | None:
+def _tolerance(key: Key, dotted: str, raw: object, nominal: float, ledger: Ledger) -> tuple[float, float] | None:
     if key.dimension == "temperature":  # a percentage of a temperature means nothing
-        wanted = Key(
-            table="", name="tol", dimension="temperature difference", sign="non-negative", band=(0.0, 500.0)
-        )
+        wanted = Key(table="", name="tol", dimension="temperature difference", sign="non-negative", band=(0.0, 500.0))
         margin = single(wanted, dotted, "tol", raw, ledger)
     else:
         wanted = Key(table="", name="tol", dimension="ratio", sign="non-negative", band=(0.0, 0.99))
@@ -262,9 +250,7 @@ def _tolerance(
         return None
     low, high = nominal - margin, nominal + margin
     if key.band is not None and not (key.band[0] <= low and high <= key.band[1]):
-        ledger.refuse(
-            dotted, "the value with this tolerance leaves what is plausible here", "check the tolerance"
-        )
+        ledger.refuse(dotted, "the value with this tolerance leaves what is plausible here", "check the tolerance")
         return None
     return low, high
 
@@ -275,9 +261,7 @@ def _points(key: Key, dotted: str, raw: object, ledger: Ledger) -> FloatArray | 
     row = "[" + ", ".join(f'"1 {DIMENSIONS[column]}"' if column else "1" for column in key.columns) + "]"
     remedy = f"{key.name} = [{row}, ...]" if width > 1 else f"{key.name} = {row[:-1]}, ...]"
     if not isinstance(raw, list) or not raw:
-        ledger.refuse(
-            dotted, "a list of points is wanted here" if width > 1 else "a list is wanted here", remedy
-        )
+        ledger.refuse(dotted, "a list of points is wanted here" if width > 1 else "a list is wanted here", remedy)
         return None
     columns = [Key(table="", name="", dimension=column, sign="any") for column in key.columns]
     if width == 1:

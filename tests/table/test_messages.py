@@ -142,6 +142,13 @@ def test_a_rating_is_never_offered_for_a_characteristic_nor_the_reverse() -> Non
     assert "V_EBO " not in other.remedy
 
 
+def test_a_slip_beside_the_right_key_is_not_offered_a_duplicate() -> None:
+    (problem,) = problems(_HEAD + '[max]\nP_tot = "1 W"\nPtot = "2 W"\n')
+    assert problem.remedy == "P_tot is stated too: keep one of the two"
+    (foreign,) = problems(_HEAD + '[max]\nV_CEO = "60 V"\nV_DSS = "60 V"\n')
+    assert foreign.remedy == "leave it out: V_CEO stands here already"
+
+
 def test_a_key_outside_its_table_is_told_where_it_belongs() -> None:
     (problem,) = problems('V_CEO = "160 V"\n' + _HEAD)
     assert (problem.line, problem.remedy) == (1, "put V_CEO under [max]")
@@ -175,7 +182,7 @@ def test_an_array_of_tables_written_as_a_table_is_told_how_it_is_headed() -> Non
 
 def test_an_unknown_key_with_no_near_name_is_told_what_is_known() -> None:
     problem = only("xyzzy = 1", "path")
-    assert problem.remedy == "known here: V_out, altitude, extra, load, parallel, sink"
+    assert problem.remedy == "known here: V_out, extra, load, parallel, sink"
 
 
 def test_a_mosfet_file_with_bipolar_keys_names_the_kind_and_the_key_that_is_meant() -> None:

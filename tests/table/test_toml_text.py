@@ -51,11 +51,14 @@ def test_a_path_that_cannot_be_opened_says_why(file: Path, tmp_path: Path) -> No
     assert "cannot be read" in refused(tmp_path / ("é" * 200)).problem
 
 
-@pytest.mark.skipif(os.geteuid() == 0, reason="root reads everything")
-def test_an_unreadable_file_says_so(file: Path) -> None:
-    file.write_text("a = 1")
-    file.chmod(0)
-    assert "cannot be read" in refused(file).problem
+def test_an_unreadable_file_says_so(file: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def denied(*_: object) -> int:  # a file mode would not stop root
+        raise PermissionError(13, "Permission denied")
+
+    monkeypatch.setattr(os, "open", denied)
+    problem = refused(file)
+    monkeypatch.undo()
+    assert problem.problem == "the file cannot be read: Permission denied"
 
 
 def test_a_file_of_fifty_megabytes_is_refused_unread(file: Path) -> None:
