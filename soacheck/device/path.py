@@ -72,7 +72,7 @@ def device_name(file: Path) -> str | None:
 
 def _by_path(name: str, stage_folder: Path) -> Path:
     path = stage_folder / name
-    if path.exists():
+    if _exists(path):
         return path
     near = difflib.get_close_matches(path.name, [file.name for file in _files(path.parent)], n=3)
     raise InputError(
@@ -87,7 +87,7 @@ def _by_path(name: str, stage_folder: Path) -> Path:
 def _in_folder(name: str, folder: Path) -> Path | None:
     by_stem = folder / f"{name}.toml"
     # A stage file may carry the name of its device.
-    if by_stem.is_file() and not _is_stage(by_stem):
+    if _is_file(by_stem) and not _is_stage(by_stem):
         return by_stem
     named = [file for file in _files(folder) if _mentions(file, name) and device_name(file) == name]
     if len(named) > 1:
@@ -100,6 +100,20 @@ def _in_folder(name: str, folder: Path) -> Path | None:
             )
         )
     return named[0] if named else None
+
+
+def _exists(path: Path) -> bool:
+    try:
+        return path.exists()
+    except (OSError, ValueError):
+        return False
+
+
+def _is_file(path: Path) -> bool:
+    try:
+        return path.is_file()
+    except (OSError, ValueError):  # a name too long for the system, or with a zero byte in it, is no file
+        return False
 
 
 def _not_found(name: str, folders: Sequence[Path]) -> Problem:

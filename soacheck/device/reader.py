@@ -89,7 +89,7 @@ def _device(document: Document, kind: Kind, shown_as: str) -> Device:
     identity = document.table("device")
     maximum = _maximum(document.table("max"), kind)
     assumptions: list[str] = []
-    thermal = _thermal(document.table("thermal"), maximum)
+    thermal = _thermal(document.table("thermal"), document.table("max"), maximum)
     typical = _typical(document.table("typical"), kind)
     curves = read_curves(document, maximum.T_j.at(0) if maximum is not None else None, assumptions)
     derating = read_derating(document, curves, assumptions)
@@ -167,7 +167,7 @@ def _max_in_order(cells: Cells, voltage: str, current: str, peak: str) -> None:
             cells.refuse(stated, why, f"state max.{wanted} too: {line}")
 
 
-def _thermal(cells: Cells, maximum: MaxRatings | None) -> ThermalData:
+def _thermal(cells: Cells, max_cells: Cells, maximum: MaxRatings | None) -> ThermalData:
     R_th_jc = cells.quantity("R_th_jc")
     from_power = not cells.has("R_th_jc")
     if from_power and maximum is not None and maximum.P_tot is not None:
@@ -180,7 +180,7 @@ def _thermal(cells: Cells, maximum: MaxRatings | None) -> ThermalData:
             source="not stated in the rating file, from P_tot",
             grade=_weakest(*inputs),
         )
-    elif from_power and maximum is not None:
+    elif from_power and not max_cells.has("P_tot"):
         cells.refuse(
             "R_th_jc",
             "neither R_th_jc nor max.P_tot is stated; one of them is needed",

@@ -74,7 +74,8 @@ def template(kind: Kind) -> str:
 
     Keys that a device cannot do without stand open, with "..." to be replaced; the others are commented out.
     """
-    lines = [f"# {line}".rstrip() for line in _INTRO.format(kind=kind).splitlines()]
+    intro = textwrap.wrap(_INTRO.format(kind=kind), _WIDTH - 2, break_on_hyphens=False)
+    lines = [f"# {line}" for line in intro]
     mine = [key for key in KEYS if key.belongs(kind)]
     for table, title in _TABLES.items():
         keys = [key for key in mine if key.table == table]

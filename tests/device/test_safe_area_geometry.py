@@ -58,9 +58,7 @@ def allowed_by_hypothetical(volts: float, celsius: float) -> soa.Allowed:
         (40, 100, 3.57143, soa.DISSIPATION),
     ],
 )
-def test_hypothetical_part_allows_what_the_formulas_give(
-    volts: float, celsius: float, amps: float, by: int
-) -> None:
+def test_hypothetical_part_allows_what_the_formulas_give(volts: float, celsius: float, amps: float, by: int) -> None:
     # Second way: hyperbola (T_j_max - T)/(R*V) and I_1*(V/V_1)^-n with n = ln 5/ln 2, evaluated by hand to six digits
     # in the form of makers' bipolar safe-area charts with separate thermal and second-breakdown derating.
     allowed = allowed_by_hypothetical(volts, celsius)
@@ -370,9 +368,15 @@ def test_scaling_volts_and_amps_of_everything_changes_nothing(
     for voltage_scaled in (False, True):
         small, large = (
             soa.allowed_current(
-                each, volts * factor_v, T=np.array(T), T_j_max=kelvin(200), derating=FOUR_PER_MILLE,
-                Z=np.array(0.5 / (factor_v * factor_i)), I_rating=30.0 * factor_i, voltage_scaled=voltage_scaled,
-            )  # fmt: skip
+                each,
+                volts * factor_v,
+                T=np.array(T),
+                T_j_max=kelvin(200),
+                derating=FOUR_PER_MILLE,
+                Z=np.array(0.5 / (factor_v * factor_i)),
+                I_rating=30.0 * factor_i,
+                voltage_scaled=voltage_scaled,
+            )
             for each, factor_v, factor_i in ((chart, 1.0, 1.0), (grown, scale_v, scale_i))
         )
         assert large.current == pytest.approx(small.current * scale_i, rel=1e-9)
