@@ -30,6 +30,7 @@ class Problem:
     key: str = ""  # dotted path as in the file, `max.P_tot`
     value: str = ""  # the value as written
     column: int | None = None  # 1-based, of a syntax error
+    excerpt: tuple[str, ...] = ()  # the line of a syntax error and a mark under its place
 
     def __str__(self) -> str:
         place = plain(self.file, 4096)
@@ -37,13 +38,14 @@ class Problem:
             place += f":{number}" if number is not None else ""
         what = plain(self.key, 200) + (f" = {plain(self.value, 200)}" if self.value else "")
         head = ": ".join(part for part in (place, what) if part)
-        body = f"  problem: {_lines(self.problem)}\n  remedy:  {_lines(self.remedy)}"
+        body = "\n".join(
+            [
+                f"  problem: {plain(self.problem, 2000)}",
+                *(f"           {plain(line, 200)}" for line in self.excerpt),
+                f"  remedy:  {plain(self.remedy, 2000)}",
+            ]
+        )
         return f"{head}\n{body}" if head else body
-
-
-def _lines(text: str) -> str:
-    """Several lines stay several lines, set under the first; all else that is invisible is escaped."""
-    return "\n           ".join(plain(line, 2000) for line in text.split("\n"))
 
 
 class InputError(SoacheckError):

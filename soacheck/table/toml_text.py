@@ -179,10 +179,17 @@ def _syntax(error: ValueError, text: str, shown_as: str) -> Problem:
         line = len(text.rstrip().split("\n"))
         message += "" if message.startswith("Cannot") else ", and the file ends"
     here = lines[line - 1][:500] if line <= len(lines) else ""
-    problem = f"not valid TOML: {plain(message, 120)}"
+    excerpt: tuple[str, ...] = ()
     if column is not None and here.isprintable() and len(here) <= 200:
-        problem += f"\n{here}\n{' ' * (min(column, len(here) + 1) - 1)}^"
-    return Problem(file=shown_as, line=line, column=column, problem=problem, remedy=_syntax_remedy(message, here))
+        excerpt = (here, " " * (min(column, len(here) + 1) - 1) + "^")
+    return Problem(
+        file=shown_as,
+        line=line,
+        column=column,
+        problem=f"not valid TOML: {plain(message, 120)}",
+        remedy=_syntax_remedy(message, here),
+        excerpt=excerpt,
+    )
 
 
 # What a line looks like, and what to write instead. The first that fits is offered; texts are blanked out
