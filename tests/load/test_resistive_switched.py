@@ -93,6 +93,7 @@ def test_a_reverse_driven_base_marks_the_turn_off_and_nothing_else(drive: str) -
     assert duty.termination == "reverse"
     assert duty.drive is not None
     assert (duty.drive.V_off is not None) == ("V_BE_off" in drive)
+    assert (duty.drive.I_B2 is not None) == ("I_B2" in drive)
 
 
 def test_without_a_reverse_drive_no_turn_off_is_marked() -> None:
@@ -116,7 +117,7 @@ def test_the_drive_must_carry_the_current_of_the_lowest_drop() -> None:
 
 def test_a_mosfet_conducts_through_its_hot_on_resistance() -> None:
     made = device("n-mosfet", R_DS_on=triple("R_DS_on", "ohm", 0.1), R_DS_on_hot=triple("R_DS_on_hot", "ohm", 0.25))
-    text = PULSED.replace("V_CC", "V_DD").replace("R_C", "R_D") + 'V_GS = "10 V"\nV_GS_off = "5 V"'
+    text = PULSED.replace("V_CC", "V_DD").replace("R_C", "R_D") + 'V_GS = "10 V"\nV_GS_off = "5 V"\nR_G = "22 ohm"'
     duty = duties("resistive", text, made)["switched"]
     on = 100 / 10.25
     assert fact(duty, "I_on") == pytest.approx(on)
@@ -124,6 +125,8 @@ def test_a_mosfet_conducts_through_its_hot_on_resistance() -> None:
     assert duty.drive is not None
     assert duty.drive.V_on is not None
     assert duty.drive.V_on.at(0) == 10.0
+    assert duty.drive.R_G is not None
+    assert duty.drive.R_G.at(0) == 22.0
     assert duty.termination == "reverse"
 
 

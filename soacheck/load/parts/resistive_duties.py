@@ -242,7 +242,16 @@ def _switched(load: Resistive, circuit: Circuit, fitted: Fitted) -> Duty:
     conduction = _power("P_on", "V_on * I_on * (D - t_r * f)", circuit, V_on, I_on, D, t_r, f)
     off = derived("P_off", f"{supply.symbol} * I_leak * (1 - D - t_f * f)", "W", supply, leak, D, t_f, f)
     total = derived("P_mean", "P_edges + P_on + P_off", "W", edges, conduction, off)
-    drive = Drive(V_off=load.reverse, V_on=load.V_GS, I_B=load.I_B, I_on=_on_current(circuit, device), saturates=True)
+    I_on_max = _on_current(circuit, device)
+    drive = Drive(
+        V_off=load.reverse,
+        V_on=load.V_GS,
+        I_B=load.I_B,
+        I_B2=load.I_B2,
+        R_G=load.R_G,
+        I_on=I_on_max,
+        saturates=True,
+    )
     facts, reverse = (total, edges, conduction, off), locus.turn_off is not None
     return _duty("switched", fitted, locus, facts, drive=drive, reverse=reverse, I_B_peak=load.I_B)
 

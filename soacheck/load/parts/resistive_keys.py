@@ -210,12 +210,23 @@ KEYS: tuple[Key, ...] = (
     _amperes("I_B2", BASE_DRIVEN, "", "Reverse base current of each device at turn-off.", where="the drive circuit"),
     _amperes("I_B", BASE_DRIVEN, "", "Base current of each device while on.", where="the drive circuit"),
     _volts("V_GS", GATE_DRIVEN, "", "Gate-source (gate-emitter) voltage while on.", where="the drive circuit"),
+    Key(
+        table="load",
+        name="R_G",
+        dimension="resistance",
+        sign="non-negative",
+        band=(0.0, 1e6),
+        belongs_to=GATE_DRIVEN,
+        grade="",
+        meaning="Resistance that the gate is driven through: some turn-off areas hold only for so much of it.",
+        where="the drive circuit",
+    ),
 )
 
 # Which keys of [load] only some of the uses read.
 ONLY_WITH: tuple[tuple[tuple[str, ...], tuple[str, ...]], ...] = (
     (("R_ac",), ("swing",)),
     (("f",), ("swing", "switched")),
-    (("duty_factor", "t_r", "t_f", "V_BE_off", "V_GS_off", "I_B2", "I_B", "V_GS"), ("switched",)),
+    (("duty_factor", "t_r", "t_f", "V_BE_off", "V_GS_off", "I_B2", "I_B", "V_GS", "R_G"), ("switched",)),
     (("I_CQ", "I_DQ", "bias"), ("held", "swing")),
 )

@@ -37,6 +37,7 @@ class Resistive:
     I_B2: Traced | None = None  # [A]
     I_B: Traced | None = None  # [A]
     V_GS: Traced | None = None  # [V]
+    R_G: Traced | None = None  # [ohm]
     absent: tuple[Missing, ...] = ()
 
     def lacks(self, *names: str) -> tuple[Missing, ...]:
@@ -89,6 +90,7 @@ def read(cells: Cells, surround: Surround) -> Resistive:
         I_B2=None if family.gate else _quantity(cells, "I_B2"),
         I_B=None if family.gate else _quantity(cells, "I_B"),
         V_GS=_quantity(cells, "V_GS") if family.gate else None,
+        R_G=_quantity(cells, "R_G") if family.gate else None,
         absent=tuple(cells.missing(name) for name in (*names, family.quiescent) if not cells.has(name)),
     )
 
