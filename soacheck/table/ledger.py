@@ -58,7 +58,8 @@ class Ledger:
         remedy = error.remedy
         if error.instead:
             line = f'{name} = "{error.instead}"' if name else f'"{error.instead}"'
-            remedy = line if remedy.startswith(f'write "{error.instead}"') else f"{remedy} {line}"
+            colon = "" if remedy.endswith("?") else ":"
+            remedy = line if remedy.startswith(f'write "{error.instead}"') else f"{remedy}{colon} {line}"
         self.refuse(dotted, error.problem, remedy)
 
     def caution(self, identity: str, text: str) -> None:
