@@ -6,8 +6,10 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from soacheck.duty import Duty, Fitted
+from soacheck.duty import Drive, Duty, Fitted
 from soacheck.load.kind import Surround
+from soacheck.load.parts import turn_off_drive
+from soacheck.load.parts.turn_off_drive import TurnOffDrive
 from soacheck.locus import Locus, Use
 from soacheck.table import Cells, Key
 from soacheck.trace import BoolArray, FloatArray, Traced, found, frozen, given
@@ -70,6 +72,7 @@ KEYS: tuple[Key, ...] = (
         meaning="Why the current does not follow the junction temperature; printed with the result.",
         where="the circuit",
     ),
+    *turn_off_drive.KEYS,
 )
 
 
@@ -82,6 +85,7 @@ class Profile:
     i: FloatArray
     turn_off: BoolArray | None
     repeat: bool
+    drive: TurnOffDrive
     T_start: Traced | None = None
     because: str = ""  # why the current does not follow the temperature; empty where nothing is stated
 
@@ -96,6 +100,8 @@ def read(cells: Cells, surround: Surround) -> Profile:
     marks, spans = None, cells.points("turn_off")
     if spans is not None and not wrong and not _check_spans(cells, spans, t):
         t, v, i, marks = _marked(t, v, i, spans)
+    if not cells.has("turn_off"):
+        _refuse_idle_drive(cells)
     T_start = cells.quantity("T_start")
     if T_start is not None and repeat:
         cells.refuse(
@@ -103,7 +109,23 @@ def read(cells: Cells, surround: Surround) -> Profile:
             "a repeated profile has no start: its temperatures repeat with it",
             "leave T_start out, or repeat = false",
         )
-    return Profile(t=t, v=v, i=i, turn_off=marks, repeat=repeat, T_start=T_start, because=_because(cells))
+    return Profile(
+        t=t,
+        v=v,
+        i=i,
+        turn_off=marks,
+        repeat=repeat,
+        drive=turn_off_drive.read(cells),
+        T_start=T_start,
+        because=_because(cells),
+    )
+
+
+def _refuse_idle_drive(cells: Cells) -> None:
+    for key in turn_off_drive.KEYS:
+        if cells.quantity(key.name) is not None:
+            problem = "the drive at turn-off is stated, but no turn-off is marked in the points"
+            cells.refuse(key.name, problem, 'turn_off = [["2 ms", "2.1 ms"]]')
 
 
 def _because(cells: Cells) -> str:
@@ -243,9 +265,18 @@ def duties(load: Profile, fitted: Fitted) -> tuple[Duty, ...]:
             locus=lambda _: locus,
             heat_ratio=frozen(1.0 / fitted.share.value[:, None]),
             facts=tuple(facts),
+            drive=_drive(load),
             T_start=None if load.T_start is None else replace(load.T_start, symbol="T_start"),
         ),
     )
+
+
+def _drive(load: Profile) -> Drive | None:
+    """What the base or gate gets at the marked turn-offs; None where nothing of it is stated."""
+    at = load.drive
+    if not at.reverse and at.R_G is None:
+        return None
+    return Drive(V_off=at.V_off, I_B2=at.I_B2, R_G=at.R_G)
 
 
 def devices(load: Profile, parallel: int) -> int:

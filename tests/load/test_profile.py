@@ -86,6 +86,17 @@ def test_without_a_marked_turn_off_nothing_is_marked() -> None:
     assert locus(duties("profile", f"{RAMP}\nrepeat = true")["profile"]).turn_off is None
 
 
+def test_the_drive_at_a_marked_turn_off_is_handed_on() -> None:
+    text = f'{RAMP}\nrepeat = true\nturn_off = [["2 ms", "3 ms"]]\nV_BE_off = "5 V"\nI_B2 = "1 A"'
+    drive = duties("profile", text)["profile"].drive
+    assert drive is not None
+    assert drive.V_off is not None
+    assert drive.V_off.at(0) == 5.0
+    assert drive.I_B2 is not None
+    assert not drive.saturates
+    assert duties("profile", f"{RAMP}\nrepeat = true")["profile"].drive is None
+
+
 def test_a_negative_voltage_is_kept_for_the_limits_to_judge() -> None:
     text = 'points = [["0 ms", "-1 V", "2 A"], ["1 ms", "-1 V", "2 A"]]\nrepeat = true'
     assert locus(duties("profile", text)["profile"]).v.min() == -1.0
@@ -122,6 +133,7 @@ def test_a_stated_independence_of_temperature_is_printed_with_its_reason() -> No
             "no time",
             "later time",
         ),
+        (f'{RAMP}\nrepeat = true\nV_BE_off = "5 V"', "load.V_BE_off", "no turn-off is marked", "turn_off = "),
         (f'{RAMP}\nrepeat = true\nT_start = "80 degC"', "load.T_start", "has no start", "repeat = false"),
         (
             f"{RAMP}\nrepeat = true\ntemperature_independent = true",

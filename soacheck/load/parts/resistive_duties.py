@@ -235,7 +235,7 @@ def _switched(load: Resistive, circuit: Circuit, fitted: Fitted) -> Duty:
         period=1 / f.value,
         t_r=t_r.value,
         t_f=t_f.value,
-        reverse=load.reverse is not None or load.I_B2 is not None,
+        reverse=load.turn_off.reverse,
     )
     formula = f"I_on * ({supply.symbol} + 2 * V_on) * (t_r + t_f) * f / 6"
     edges = _power("P_edges", formula, circuit, I_on, supply, V_on, t_r, t_f, f)
@@ -244,11 +244,11 @@ def _switched(load: Resistive, circuit: Circuit, fitted: Fitted) -> Duty:
     total = derived("P_mean", "P_edges + P_on + P_off", "W", edges, conduction, off)
     I_on_max = _on_current(circuit, device)
     drive = Drive(
-        V_off=load.reverse,
+        V_off=load.turn_off.V_off,
         V_on=load.V_GS,
         I_B=load.I_B,
-        I_B2=load.I_B2,
-        R_G=load.R_G,
+        I_B2=load.turn_off.I_B2,
+        R_G=load.turn_off.R_G,
         I_on=I_on_max,
         saturates=True,
     )

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from soacheck.device.ratings import MOSFET
 from soacheck.load.parts.family import BASE_DRIVEN, GATE_DRIVEN, NAMED_AS_BIPOLAR
+from soacheck.load.parts.turn_off_drive import KEYS as TURN_OFF
 from soacheck.table import Key
 
 _DIAGRAM = "the circuit diagram"
@@ -94,7 +95,6 @@ def _bias_ohms(name: str, belongs: frozenset[str] | None, meaning: str) -> Key:
 
 
 _QUIESCENT = "Whole current of the stage without a signal."
-_REVERSE = "Reverse voltage at base or gate while off: turn-off is then judged by the turn-off area."
 
 KEYS: tuple[Key, ...] = (
     Key(
@@ -205,22 +205,9 @@ KEYS: tuple[Key, ...] = (
         meaning="Time in which voltage and current change over at turn-off; absent: the device's.",
         where="a scope picture, or the data sheet at this current and drive",
     ),
-    _volts("V_BE_off", BASE_DRIVEN, "reverse", _REVERSE, where="the drive circuit"),
-    _volts("V_GS_off", GATE_DRIVEN, "reverse", _REVERSE, where="the drive circuit"),
-    _amperes("I_B2", BASE_DRIVEN, "", "Reverse base current of each device at turn-off.", where="the drive circuit"),
+    *TURN_OFF,
     _amperes("I_B", BASE_DRIVEN, "", "Base current of each device while on.", where="the drive circuit"),
     _volts("V_GS", GATE_DRIVEN, "", "Gate-source (gate-emitter) voltage while on.", where="the drive circuit"),
-    Key(
-        table="load",
-        name="R_G",
-        dimension="resistance",
-        sign="non-negative",
-        band=(0.0, 1e6),
-        belongs_to=GATE_DRIVEN,
-        grade="",
-        meaning="Resistance that the gate is driven through: some turn-off areas hold only for so much of it.",
-        where="the drive circuit",
-    ),
 )
 
 # Which keys of [load] only some of the uses read.

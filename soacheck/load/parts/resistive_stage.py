@@ -8,9 +8,11 @@ from typing import Literal, cast
 import numpy as np
 
 from soacheck.load.kind import Surround
+from soacheck.load.parts import turn_off_drive
 from soacheck.load.parts.family import FAMILIES, Family, family_of
 from soacheck.load.parts.quiescent import Bias, Way
 from soacheck.load.parts.resistive_keys import ONLY_WITH
+from soacheck.load.parts.turn_off_drive import TurnOffDrive
 from soacheck.table import Cells, Missing
 from soacheck.trace import Traced
 
@@ -33,11 +35,9 @@ class Resistive:
     duty_factor: Traced | None = None
     t_r: Traced | None = None  # [s]
     t_f: Traced | None = None  # [s]
-    reverse: Traced | None = None  # V_BE_off or V_GS_off [V]
-    I_B2: Traced | None = None  # [A]
+    turn_off: TurnOffDrive
     I_B: Traced | None = None  # [A]
     V_GS: Traced | None = None  # [V]
-    R_G: Traced | None = None  # [ohm]
     absent: tuple[Missing, ...] = ()
 
     def lacks(self, *names: str) -> tuple[Missing, ...]:
@@ -60,7 +60,6 @@ def read(cells: Cells, surround: Surround) -> Resistive:
         "duty_factor",
         "t_r",
         "t_f",
-        family.reverse,
     )
     values = {name: _quantity(cells, name) for name in names}
     supply, upper, lower = values[family.supply], values[family.upper], values[family.lower]
@@ -86,11 +85,9 @@ def read(cells: Cells, surround: Surround) -> Resistive:
         duty_factor=values["duty_factor"],
         t_r=values["t_r"],
         t_f=values["t_f"],
-        reverse=values[family.reverse],
-        I_B2=None if family.gate else _quantity(cells, "I_B2"),
+        turn_off=turn_off_drive.read(cells),
         I_B=None if family.gate else _quantity(cells, "I_B"),
         V_GS=_quantity(cells, "V_GS") if family.gate else None,
-        R_G=_quantity(cells, "R_G") if family.gate else None,
         absent=tuple(cells.missing(name) for name in (*names, family.quiescent) if not cells.has(name)),
     )
 
