@@ -61,7 +61,7 @@ def _row(sheet: page.Page, axes: Axes, panel: Panel, result: Result, half: str |
     if panel.x.size > 1:
         canvas.drawn_line(axes, panel.x, power / factor, palette.POWER, zorder=4)
         sheet.explain(canvas.sample_line(palette.POWER), "power")
-    labels = [_peak(axes, panel, factor)]
+    labels = [_peak(axes, panel, factor)] if panel.x.size == 1 or high - low > 1e-9 * abs(high) else []
     if panel.timed:
         labels += _mean(sheet, axes, _result_of(result, panel.duty, half), factor)
     if shown:
@@ -102,7 +102,8 @@ def _mean(sheet: page.Page, axes: Axes, duty: DutyResult | None, factor: float) 
     sheet.explain(canvas.sample_line(palette.MEAN), "mean")
     x = page.ends(axes)[1]
     text = f"mean {words.amount(mean, 'W')}"
-    return [Label(x=x, y=mean / factor, text=text, colour=palette.LOAD, near=("NW", "SW"))]
+    also = ((0.5 * x, mean / factor), (0.0, mean / factor))
+    return [Label(x=x, y=mean / factor, text=text, colour=palette.LOAD, near=("NW", "SW"), also=also)]
 
 
 def _draw_allowance(sheet: page.Page, axes: Axes, panel: Panel, allowed: FloatArray, factor: float) -> Label:
@@ -118,7 +119,9 @@ def _draw_allowance(sheet: page.Page, axes: Axes, panel: Panel, allowed: FloatAr
     text = f"{text} {value}" if constant else f"{text}, at the least {value}"
     anchor = float(x[0]) if constant else float(x[at])
     near = ("NE", "SE") if constant else ("S", "SE", "SW", "N", "NE", "NW")
-    return Label(x=anchor, y=float(y[at]) / factor, text=text, colour=palette.LIMIT, near=near)
+    level = float(y[at]) / factor
+    also = ((float(x[-1]), level), (float(np.mean(x)), level)) if constant else ()
+    return Label(x=anchor, y=level, text=text, colour=palette.LIMIT, near=near, also=also)
 
 
 def _rest(axes: Axes, panel: Panel, result: Result, half: str | None, factor: float) -> list[Label]:

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from itertools import product
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -34,7 +35,11 @@ _GAP = 2.0  # [pixel] between labels
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Label:
-    """Text wanted at a point in data coordinates. near: directions in the order of preference."""
+    """Text wanted at a point in data coordinates.
+
+    near: directions in the order of preference. also: further points that serve as well. on: points of a curve on
+    which the text may sit, as the numbers of contour lines do; tried before all others.
+    """
 
     x: float
     y: float
@@ -44,10 +49,13 @@ class Label:
     size: float = canvas.TEXT_SIZE
     bold: bool = False
     italic: bool = False
+    also: tuple[tuple[float, float], ...] = ()
+    on: tuple[tuple[float, float], ...] = ()
 
 
 Box = tuple[float, float, float, float]  # left, bottom, right, top [pixel]
 Point = tuple[float, float]
+Place = tuple[Box, Point, float]  # the label's box, what it names, the distance between them [points]
 
 
 @dataclass(slots=True, kw_only=True)
@@ -73,19 +81,17 @@ def place(axes: Axes, wanted: Iterable[Label]) -> tuple[str, ...]:
     )  # fmt: skip
     homeless = []
     for label in wanted:
-        x, y = axes.transData.transform((label.x, label.y))
-        if not (np.isfinite(x) and np.isfinite(y)):
-            homeless.append(label.text)
-            continue
-        at = (float(np.clip(x, left, right)), float(np.clip(y, bottom, top)))
+        anchors = _on_paper(axes, paper.frame, ((label.x, label.y), *label.also))
+        curve = _on_paper(axes, paper.frame, label.on)
         text = _text(axes, label)
         extent = text.get_window_extent(renderer)
-        found = _best(paper, label, at, (extent.width, extent.height))
+        size = (extent.width, extent.height)
+        found = _sitting(paper, curve, size) or _best(paper, label, anchors, size)
         if found is None:
             text.remove()
             homeless.append(label.text.replace("\n", " "))
             continue
-        box, distance = found
+        box, at, distance = found
         paper.boxes.append(box)
         x, y = axes.transAxes.inverted().transform((box[0], box[1]))
         text.set_position((float(x), float(y)))
@@ -106,12 +112,35 @@ def _text(axes: Axes, label: Label) -> Text:
     )  # fmt: skip
 
 
-def _best(paper: _Paper, label: Label, at: Point, size: Point) -> tuple[Box, float] | None:
-    best: tuple[float, Box, float] | None = None
-    for distance in _DISTANCES:
-        for order, direction in enumerate((*label.near, *(d for d in _AROUND if d not in label.near))):
+def _on_paper(axes: Axes, frame: Box, points: Sequence[Point]) -> list[Point]:
+    """Points in pixels, held inside the axes; unknown ones left out."""
+    if not points:
+        return []
+    pixels = axes.transData.transform(np.asarray(points, dtype=np.float64))
+    pixels = np.clip(pixels[np.all(np.isfinite(pixels), axis=1)], frame[:2], frame[2:])
+    return [(float(x), float(y)) for x, y in pixels]
+
+
+def _sitting(paper: _Paper, curve: Sequence[Point], size: Point) -> Place | None:
+    """The point of a curve where its name hides least."""
+    best: tuple[float, Place] | None = None
+    for at in curve:
+        box = _box(at, size, (0.0, 0.0), 0.0)
+        if not _free(paper, box) or any(_overlap(box, mark) for mark in paper.marks):
+            continue
+        cost = _under(box, paper.strokes)
+        if best is None or cost < best[0]:
+            best = (cost, (box, at, 0.0))
+    return None if best is None else best[1]
+
+
+def _best(paper: _Paper, label: Label, anchors: Sequence[Point], size: Point) -> Place | None:
+    best: tuple[float, Place] | None = None
+    directions = (*label.near, *(d for d in _AROUND if d not in label.near))
+    for order, (at, direction) in enumerate(product(anchors, directions)):
+        for distance in _DISTANCES:
             box = _box(at, size, _AROUND[direction], distance * paper.per_point)
-            if not _inside(box, paper.frame) or any(_overlap(box, other) for other in paper.boxes):
+            if not _free(paper, box):
                 continue
             cost = 25.0 * _under(box, paper.strokes) + 1.6 * distance + 2.0 * order
             cost += 400.0 * sum(_overlap(box, mark) for mark in paper.marks)
@@ -119,8 +148,12 @@ def _best(paper: _Paper, label: Label, at: Point, size: Point) -> tuple[Box, flo
                 leader = _leader(at, box)
                 cost += 45.0 + 60.0 * sum(_under(other, leader) for other in paper.boxes)
             if best is None or cost < best[0]:
-                best = (cost, box, distance)
-    return None if best is None else (best[1], best[2])
+                best = (cost, (box, at, distance))
+    return None if best is None else best[1]
+
+
+def _free(paper: _Paper, box: Box) -> bool:
+    return _inside(box, paper.frame) and not any(_overlap(box, other) for other in paper.boxes)
 
 
 def _box(at: tuple[float, float], size: tuple[float, float], step: tuple[float, float], reach: float) -> Box:

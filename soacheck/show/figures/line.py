@@ -19,6 +19,7 @@ if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
 _SHORT = 0.1  # a region that takes up less of the line is named at its end
+_NOTHING = 1e-4  # of the greatest current: leakage, or the far tail of a device that another has taken over from
 _MOST_STRETCHES = 200  # looked at for the longest; a record that hops between regions would take for ever
 
 
@@ -43,14 +44,13 @@ def draw(result: Result, half: str | None) -> Figure:
     page.plain_numbers(axes)
     behind = _characteristics(axes, result, half, factor)
     labels: list[Label] = []
-    loci = [duty for duty in duties if duty.points > 1]
-    for count, duty in enumerate(loci):
+    loci = [duty for duty in duties if not duty.still]
+    for count, (same, x, y) in enumerate(_paths(loci)):
         stroke = palette.LOCI[min(count, len(palette.LOCI) - 1)]
-        x, y = page.path(duty.series)
         canvas.drawn_line(axes, x, y / factor, stroke, zorder=4)
-        sheet.explain(canvas.sample_line(stroke), f"{_what(duty)}, {duty.name}")
+        sheet.explain(canvas.sample_line(stroke), f"{_what(same[0])}, {' = '.join(duty.name for duty in same)}")
     for duty in duties:
-        if duty.points == 1:
+        if duty.still:
             at_v, at_i = float(duty.series.v[0]), float(duty.series.i[0])
             canvas.drawn_spot(axes, at_v, at_i / factor, palette.REST)
             text = f"{_point_name(duty)}\n{words.amount(at_v, 'V')}, {words.amount(at_i, 'A')}"
@@ -69,9 +69,22 @@ def _order(result: Result, half: str | None) -> tuple[Drawn, ...]:
     """The duty with the worst safe-area finding first: it carries the names of ends and regions."""
     duties = read.drawn(result, half)
     for finding in read.findings(result, "safe-area", half):
-        if any(duty.name == finding.duty and duty.points > 1 for duty in duties):
+        if any(duty.name == finding.duty and not duty.still for duty in duties):
             return tuple(sorted(duties, key=lambda duty: duty.name != finding.duty))
     return tuple(sorted(duties, key=lambda duty: -duty.points))
+
+
+def _paths(loci: list[Drawn]) -> list[tuple[list[Drawn], FloatArray, FloatArray]]:
+    """Each path once, with all duties that follow it."""
+    found: list[tuple[list[Drawn], FloatArray, FloatArray]] = []
+    for duty in loci:
+        v, i = page.path(duty.series)
+        twin = next((entry for entry in found if page.same_path((v, i), entry[1:])), None)
+        if twin is None:
+            found.append(([duty], v, i))
+        else:
+            twin[0].append(duty)
+    return found
 
 
 def _what(duty: Drawn) -> str:
@@ -147,7 +160,9 @@ def _ends(axes: Axes, duty: Drawn, kind: str, factor: float) -> tuple[list[Label
             if word is not None and _reach(duty, duty.series.region == code) < _SHORT:
                 tail = f", {word}"
                 named.add(code)
-        text = f"{head}{words.amount(float(v[at]), 'V')}, {words.amount(float(i[at]), 'A')}{tail}"
+        nothing = abs(float(i[at])) < _NOTHING * float(np.nanmax(np.abs(i)))
+        current = "≈ 0 A" if nothing and i[at] != 0 else words.amount(float(i[at]), "A")
+        text = f"{head}{words.amount(float(v[at]), 'V')}, {current}{tail}"
         near = ("NE", "E", "NW", "W", "N", "SE")
         labels.append(Label(x=x, y=y, text=text, colour=palette.LOAD, near=near))
     return labels, named

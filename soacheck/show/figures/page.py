@@ -227,6 +227,17 @@ def path(series: Series) -> tuple[FloatArray, FloatArray]:
     return (np.append(v, v[0]), np.append(i, i[0])) if series.use == "repeated" else (v, i)
 
 
+def same_path(one: tuple[FloatArray, FloatArray], other: tuple[FloatArray, FloatArray]) -> bool:
+    """Whether two loci are one line on paper, whether or not either was closed to its start."""
+    count = min(one[0].size, other[0].size)
+    if abs(one[0].size - other[0].size) > 1:
+        return False
+    return all(
+        np.allclose(a[:count], b[:count], rtol=1e-3, atol=1e-3 * float(np.nanmax(np.abs(b))))
+        for a, b in zip(one, other, strict=True)
+    )
+
+
 def plain_numbers(axes: Axes) -> None:
     """Tick numbers in full on linear axes, without an exponent or offset that a reader could miss."""
     from matplotlib.ticker import FuncFormatter, MaxNLocator

@@ -44,22 +44,36 @@ def panels(result: Result, half: str | None, wanted: Callable[[Panel], bool]) ->
     kind = read.device_kind(result, half)
     found = [_swept(sweep) for sweep in result.sweeps if sweep.half == half and sweep.x.size > 1]
     found += [_held(duty, kind) for duty in duties if duty.held and duty.points > 1]
-    found += [_timed(duty) for duty in _by_weight(result, half, [d for d in duties if not d.held and d.points > 1])]
+    found += [_timed(run) for run in _by_weight(result, half, [d for d in duties if not d.held and d.points > 1])]
     if not found:
         found = [_held(duty, kind) for duty in duties if duty.points == 1]
     found = [panel for panel in found if wanted(panel)]
     return found[:MOST_ROWS], [panel.duty for panel in found[MOST_ROWS:]]
 
 
-def _by_weight(result: Result, half: str | None, duties: list[Drawn]) -> list[Drawn]:
-    """The hottest first, so that what is left out is the least of them."""
+def _by_weight(result: Result, half: str | None, duties: list[Drawn]) -> list[tuple[Drawn, ...]]:
+    """The hottest first, so that what is left out is the least of them; duties with one and the same run together."""
 
     def weight(duty: Drawn) -> float:
         finding = read.of_duty(result, "junction-temperature", duty.name, half)
         used = float(finding.utilisation[0]) if finding is not None else np.nan
         return -used if np.isfinite(used) else np.inf
 
-    return sorted(duties, key=weight)
+    runs: list[list[Drawn]] = []
+    for duty in sorted(duties, key=weight):
+        twin = next((run for run in runs if _same_run(run[0].series, duty.series)), None)
+        if twin is None:
+            runs.append([duty])
+        else:
+            twin.append(duty)
+    return [tuple(run) for run in runs]
+
+
+def _same_run(one: Series, other: Series) -> bool:
+    columns = ((one.t, other.t), (one.v, other.v), (one.i, other.i), (one.T_j, other.T_j))
+    return one.use == other.use and all(
+        a.shape == b.shape and np.allclose(a, b, rtol=1e-4, atol=1e-12, equal_nan=True) for a, b in columns
+    )
 
 
 def _swept(sweep: Sweep) -> Panel:
@@ -98,15 +112,17 @@ def _held(duty: Drawn, kind: str) -> Panel:
     )  # fmt: skip
 
 
-def _timed(duty: Drawn) -> Panel:
+def _timed(run: tuple[Drawn, ...]) -> Panel:
+    duty = run[0]
     series = duty.series
     power = series.v * series.i
     keep = page.thinned(power, *(column for column in (series.T_j, series.T_case) if column.size == power.size))
     t = series.t[keep] - series.t[0]
     factor, sign = words.prefix(float(t[-1]))
+    names = " = ".join(same.name for same in run)
     what = "one shot" if series.use == "once" else "one period"
     return Panel(
-        duty=duty.name, title=f"{duty.name}: {what}", timed=True, x=t / factor, x_name=f"time ({sign}s)",
+        duty=duty.name, title=f"{names}: {what}", timed=True, x=t / factor, x_name=f"time ({sign}s)",
         P=power[keep], thinned=keep.size < power.size, **_figures(series, keep),
     )  # fmt: skip
 

@@ -10,6 +10,7 @@ import numpy as np
 from soacheck.result import DutyResult, Finding, Result, Series, Status
 from soacheck.show.figures import words
 from soacheck.show.words import member_unit, status_of
+from soacheck.trace import FloatArray
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -30,6 +31,16 @@ class Drawn:
     @property
     def held(self) -> bool:
         return self.series.use == "held"
+
+    @property
+    def still(self) -> bool:
+        """Whether the locus is a single point, however long it is held there."""
+        return stands_still(self.series.v, self.series.i)
+
+
+def stands_still(v: FloatArray, i: FloatArray) -> bool:
+    """Whether a locus is a single point."""
+    return all(bool(np.ptp(a) <= 1e-9 * np.abs(a).max()) for a in (v, i))
 
 
 def halves(result: Result) -> tuple[str | None, ...]:

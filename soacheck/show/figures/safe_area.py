@@ -62,20 +62,19 @@ def draw(result: Result, half: str | None) -> Figure:
 
 
 def _loci(result: Result, picture: SafeAreaPicture, half: str | None) -> list[tuple[str, FloatArray, FloatArray, bool]]:
-    """Name, v, i of each locus, the governing one first; whether it is a single held point."""
-    found = [(d.name, *page.path(d.series), d.points == 1) for d in read.drawn(result, half)]
-    found.sort(key=lambda entry: (entry[3], entry[0] != picture.duty))
-    if not picture.v.size:
-        return found
-    same = [entry for entry in found if _same(entry[1], picture.v) and _same(entry[2], picture.i)]
-    name = " = ".join([picture.duty, *(entry[0] for entry in same)])
-    rest = [entry for entry in found if all(entry is not other for other in same)]
-    return [(name, picture.v, picture.i, picture.v.size == 1), *rest]
-
-
-def _same(drawn: FloatArray, other: FloatArray) -> bool:
-    """Whether two loci are one, whether or not the first was closed."""
-    return drawn.size - other.size in (0, 1) and bool(np.allclose(drawn[: other.size], other, rtol=1e-3))
+    """Name, v, i of each locus, the governing one first; whether it stands still. One path is drawn once."""
+    duties = sorted(read.drawn(result, half), key=lambda duty: duty.name != picture.duty)
+    found = [(duty.name, *page.path(duty.series), duty.still) for duty in duties]
+    if picture.v.size:
+        found.insert(0, (picture.duty, picture.v, picture.i, read.stands_still(picture.v, picture.i)))
+    merged: list[tuple[str, FloatArray, FloatArray, bool]] = []
+    for name, v, i, still in found:
+        twin = next((k for k, other in enumerate(merged) if page.same_path((v, i), (other[1], other[2]))), None)
+        if twin is None or name == "idle":
+            merged.append((name, v, i, still))
+        else:
+            merged[twin] = (f"{merged[twin][0]} = {name}", *merged[twin][1:])
+    return sorted(merged, key=lambda entry: entry[3])
 
 
 def _axes(
@@ -125,17 +124,16 @@ def _curves(axes: Axes, picture: SafeAreaPicture) -> list[Label]:
 
 
 def _on_slope(points: FloatArray, text: str) -> Label:
-    """A curve's name beside its last slope, clear of the rating line at its end."""
-    a, b = np.log(points[max(-2, -len(points))]), np.log(points[-1])
-    x, y = np.exp(a + 0.72 * (b - a))
+    """A curve's name on its falling part, clear of the rating line at its end."""
+    falling = points[points[:, 1] < points[:, 1].max() * (1 - 1e-6)]
+    top = points[points.shape[0] - falling.shape[0] - 1 :] if falling.size else points
+    length = np.concatenate([[0.0], np.cumsum(np.hypot(*np.diff(np.log(top), axis=0).T))])
+    along = np.linspace(0.35, 0.92, 20) * length[-1]
+    on = np.exp(np.column_stack([np.interp(along, length, np.log(top[:, k])) for k in (0, 1)]))
     return Label(
-        x=float(x),
-        y=float(y),
-        text=text,
-        colour=palette.LIMIT,
-        bold=True,
-        near=("SW", "NE", "W", "S", "E", "N"),
-    )
+        x=float(on[-1, 0]), y=float(on[-1, 1]), text=text, colour=palette.LIMIT, bold=True, near=("SW", "NE"),
+        on=tuple((float(x), float(y)) for x, y in on[::-1]),
+    )  # fmt: skip
 
 
 def _ratings(axes: Axes, picture: SafeAreaPicture, kind: str) -> list[Label]:

@@ -75,7 +75,9 @@ def _row(sheet: page.Page, axes: Axes, panel: Panel, result: Result, half: str |
     if np.isfinite(limit):
         canvas.drawn_line(axes, [left, right], [limit, limit], palette.LIMIT_LINE, zorder=3)
         text = f"junction may reach {round(limit)} °C"
-        labels.append(Label(x=left, y=limit, text=text, colour=palette.LIMIT, near=("NE", "SE")))
+        labels.append(
+            Label(x=left, y=limit, text=text, colour=palette.LIMIT, near=("NE", "SE"), also=((right, limit),))
+        )
     for name, column in columns.items():
         stroke = _STROKES[name]
         if panel.x.size == 1 or (name == "T_air" and np.nanmax(column) == np.nanmin(column)):

@@ -328,6 +328,24 @@ def test_a_long_record_is_drawn_as_its_envelope_and_says_so(name: str) -> None:
         assert highest >= 9.0
 
 
+def test_duties_with_one_and_the_same_run_share_a_row_and_a_line() -> None:
+    result = build.push_pull(complement=False)
+    worst = result.duties[1]
+    same = replace(result, duties=(*result.duties[:2], replace(worst, name="full-level")), sweeps=())
+    for name in ("dissipation", "temperature"):
+        figure = figures.draw(same, name)
+        assert [axes.get_title(loc="left") for axes in figure.axes] == ["worst-level = full-level: one period"]
+    assert key(figures.draw(same, "line")) == ["path, worst-level = full-level"]
+
+
+def test_a_locus_that_stands_still_is_drawn_as_a_point() -> None:
+    still = build.series(np.array([0.0, 0.5, 1.0]), np.full(3, 60.0), np.full(3, 0.75), "repeated")
+    result = build.result((build.duty("profile", still),), (), safe_area=(build.picture("profile"),))
+    assert "profile\n60 V, 0.75 A" in texts(figures.draw(result, "line"), "label")
+    assert "profile" in texts(figures.draw(result, "safe-area"), "label")
+    assert texts(figures.draw(result, "dissipation"), "label") == []  # a constant power has no peak to mark
+
+
 def test_a_locus_with_no_current_at_all_can_be_drawn() -> None:
     off = build.series(np.array([0.0, 1e-3]), np.array([24.0, 24.0]), np.zeros(2), "repeated")
     result = build.result((build.duty("idle", off),), (), safe_area=(build.picture("idle"),))
