@@ -38,6 +38,7 @@ def find_device(name: str, stage_folder: Path, devices_dirs: Sequence[Path] = ()
         if not folder.is_dir():
             raise InputError(
                 Problem(
+                    key="--devices",
                     value=str(folder),
                     problem="this folder of devices is not there",
                     remedy="give a folder that holds rating files: --devices DIR",
@@ -77,6 +78,7 @@ def _by_path(name: str, stage_folder: Path) -> Path:
     near = difflib.get_close_matches(path.name, [file.name for file in _files(path.parent)], n=3)
     raise InputError(
         Problem(
+            key="device",
             value=name,
             problem=f"there is no file {path}",
             remedy=f"did you mean {_listed(near)}?" if near else "a path starts at the stage file's folder",
@@ -94,8 +96,9 @@ def _in_folder(name: str, folder: Path) -> Path | None:
         files = [file.name for file in named]
         raise InputError(
             Problem(
+                key="device",
                 value=name,
-                problem=f"two files of one folder hold a device of this name: {_listed(files)}",
+                problem=f"two files of one folder hold a device of this name: {' and '.join(files)}",
                 remedy=f"say which, by its file name: device = {named[0].stem!r}",
             )
         )
@@ -132,6 +135,7 @@ def _not_found(name: str, folders: Sequence[Path]) -> Problem:
         remedy = f"known here: {', '.join(some)}" + (" ..." if len(known) > len(some) else "")
     places = dict.fromkeys(str(folder) for folder in folders)
     return Problem(
+        key="device",
         value=name,
         problem=f"no device of this name; looked in {', '.join(places)}",
         remedy=remedy,

@@ -18,7 +18,7 @@ from soacheck.table import Cells, Document
 from soacheck.trace import FloatArray, Traced, frozen
 
 _LINE = 'points = [["10 V", "15 A"], ["50 V", "3 A"], ["160 V", "0.2 A"]]'
-_LARGEST = 2e4  # [V] and [A]
+_SMALLEST, _LARGEST = 1e-6, 2e4  # [V] and [A]
 _LONGEST = 200  # points; a printed curve has three to six corners
 _ABOVE = 1.2  # two charts read by eye, each to 10 %
 _DRIVE = ("V_BE_off", "I_B2", "R_G", "T_j_valid")
@@ -132,8 +132,8 @@ def _points(cells: Cells) -> FloatArray | None:
     elif not bool(np.all(points > 0)):
         problem = "log-log paper has no zero: voltages and currents must be above 0"
         remedy = "leave such a point out; the curve ends at its last point"
-    elif not bool(np.all(points <= _LARGEST)):
-        problem, remedy = "no transistor reaches 20 kV or 20 kA", "check the units of the points"
+    elif not bool(np.all((points >= _SMALLEST) & (points <= _LARGEST))):
+        problem, remedy = "points lie between 1 uV, 1 uA and 20 kV, 20 kA", "check the units of the points"
     elif not bool(np.all(np.diff(v) > 0)):
         number = int(np.argmax(np.diff(v) <= 0)) + 2
         problem = f"voltages must rise from point to point, but point {number} does not"

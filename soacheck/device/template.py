@@ -18,7 +18,7 @@ _INTRO = """\
 Rating file for one transistor ({kind}). Copy the figures from the data sheet: replace every
 "...", and take the leading # away from a line to state it. Leave out what the sheet does not
 say: nothing is guessed, and what a decision lacks is named. A value may carry its grade:
-{{ value = "0.83 K/W", grade = "typical" }}. A list of three is [min, typ, max]; one typical
+{{value = "0.83 K/W", grade = "typical"}}. A list of three is [min, typ, max]; one typical
 value may stand alone."""
 
 _TABLES = {

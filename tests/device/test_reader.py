@@ -3,13 +3,19 @@
 import dataclasses
 import hashlib
 from pathlib import Path
+from tempfile import TemporaryDirectory
 
 import numpy as np
 import pytest
+from hypothesis import given as for_all
+from hypothesis import settings
+from hypothesis import strategies as st
 
 from soacheck.device.keys import KEYS
 from soacheck.device.ratings import KINDS, MaxRatings, Mechanical, Typical
 from soacheck.device.reader import read_device
+from soacheck.device.shown import shown
+from soacheck.errors import InputError
 from tests.device.files import DC, IGBT, MOSFET, NPN, problems, read
 
 EXAMPLES = sorted((Path(__file__).parents[2] / "devices").glob("*.toml"))
@@ -216,7 +222,8 @@ def test_curves_keep_the_order_and_labels_of_the_file(tmp_path: Path) -> None:
     device = read(NPN + DC + pulse + reverse, tmp_path)
     assert [curve.label for curve in device.soa] == ["dc", "10 ms", "reverse"]
     dc, ten, off = device.soa
-    assert (dc.pulse, ten.pulse) == (float("inf"), pytest.approx(0.01))
+    assert dc.pulse == float("inf")
+    assert ten.pulse == pytest.approx(0.01)
     assert (dc.node, dc.bias, dc.single, dc.grade, dc.reading) == ("case", "forward", True, "guaranteed", 0.0)
     assert dc.points == pytest.approx(np.array([(5, 15), (10, 15), (50, 3), (160, 0.2)]))
     assert dc.source == "T1.toml: soa[dc]"
@@ -348,9 +355,9 @@ def test_example_charts_stay_below_what_their_thermal_data_allow(file: Path) -> 
     device = read_device(file, shown_as=file.name)
     R = device.thermal.R_th_jc
     assert R is not None
-    stated = (
-        dict(zip(device.thermal.pulse, device.thermal.value, strict=True)) if device.thermal.form == "pulse" else {}
-    )
+    stated: dict[float, float] = {}
+    if device.thermal.pulse is not None and device.thermal.value is not None:
+        stated = dict(zip(device.thermal.pulse, device.thermal.value, strict=True))
     for curve in device.soa:
         Z = R.at(0) if curve.label == "dc" else stated.get(curve.pulse)
         if curve.bias == "forward" and Z is not None:
@@ -375,3 +382,37 @@ def test_every_key_says_what_it_is_and_where_a_sheet_states_it() -> None:
     for key in KEYS:
         assert key.meaning, key.path
         assert key.where, key.path
+
+
+VALUES = st.one_of(
+    st.text(max_size=12).map(
+        lambda text: '"' + "".join(ch for ch in text if ch.isprintable() and ch not in '"\\') + '"'
+    ),
+    st.sampled_from(
+        ["1", "-1", "1e400", "nan", "inf", "true", "[]", "{}", '""', "[[]]", "[[1, 2], [3]]", "1979-05-27"]
+    ),
+    st.tuples(st.floats(-1e12, 1e12), st.sampled_from(["V", "A", "W", "K/W", "degC", "K", "s", "%", "ohm"])).map(
+        lambda pair: f'"{pair[0]:g} {pair[1]}"'
+    ),
+    st.sampled_from(
+        ['[["1 V", "1 A"], ["2 V", "1 A"]]', '{ foster = [["1 K/W", "1 s"]] }', '{ value = "1 V" }', '["1 V"]']
+    ),
+)
+
+
+@settings(max_examples=400)
+@for_all(file=st.sampled_from(EXAMPLES), where=st.floats(0, 1), value=VALUES)
+def test_any_value_anywhere_gives_a_device_or_an_input_error(file: Path, where: float, value: str) -> None:
+    lines = file.read_text(encoding="utf-8").splitlines()
+    stated = [number for number, line in enumerate(lines) if " = " in line]
+    number = stated[int(where * (len(stated) - 1))]
+    lines[number] = lines[number].partition(" = ")[0] + " = " + value
+    with TemporaryDirectory() as folder:
+        changed = Path(folder) / file.name
+        changed.write_text("\n".join(lines) + "\n", encoding="utf-8")
+        try:
+            device = read_device(changed, shown_as=file.name)
+        except InputError:
+            return  # an answer too
+    assert device.max.V_max.at(0) > 0
+    assert shown(device)
