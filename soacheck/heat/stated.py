@@ -18,7 +18,6 @@ REFUSED_ABOVE = 0.15  # no body answers like a curve that is missed by more, or 
 DECADES_BELOW = 3  # how far the root of time is followed below the first point of a curve
 PER_DECADE = 5  # points between the readings that steer the fit along the chart's straight lines
 ALIKE = 1e-6  # Foster time constants closer than this are one
-NEGLIGIBLE = 1e-7  # of the sum: smaller Foster resistances go to their neighbour
 
 
 class Cells(NamedTuple):
@@ -184,11 +183,9 @@ def foster_to_ladder(R: FloatArray, tau: FloatArray) -> tuple[FloatArray, FloatA
 
 def _joined(R: FloatArray, tau: FloatArray) -> tuple[FloatArray, FloatArray]:
     order = np.argsort(tau, kind="stable")
-    total = float(R.sum())
     cells: list[list[float]] = []
     for r, x in zip(R[order].tolist(), tau[order].tolist(), strict=True):
-        near = cells and (x <= cells[-1][1] * (1 + ALIKE) or min(r, cells[-1][0]) < NEGLIGIBLE * total)
-        if near:
+        if cells and x <= cells[-1][1] * (1 + ALIKE):
             last = cells[-1]
             last[0], last[1] = last[0] + r, (last[0] * last[1] + r * x) / (last[0] + r)
         else:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import mpmath
 import numpy as np
 import pytest
 from hypothesis import given
@@ -65,6 +66,30 @@ def test_foster_pairs_and_their_ladder_answer_a_step_alike_at_all_times(pairs: l
     exact = -np.expm1(-t[:, None] / tau) @ R
     assert ladder.R.sum() == pytest.approx(R.sum(), rel=1e-12)
     assert step(ladder, t) == pytest.approx(exact, rel=1e-9)
+
+
+def test_time_constants_close_together_keep_their_digits() -> None:
+    # Second way: the same continued fraction with 600 digits; 28 would not do.
+    R, tau = np.linspace(0.1, 0.3, 12), np.geomspace(1e-2, 1e-2 * 1.01**11, 12)
+    with mpmath.workdps(600):
+        bottom, top = [mpmath.mpf(1)], [mpmath.mpf(0)]
+        for r, x in zip(R.tolist(), tau.tolist(), strict=True):
+            top = [
+                a + b * mpmath.mpf(x) + c * mpmath.mpf(r)
+                for a, b, c in zip([*top, 0], [0, *top], [*bottom, 0], strict=True)
+            ]
+            bottom = [a + b * mpmath.mpf(x) for a, b in zip([*bottom, 0], [0, *bottom], strict=True)]
+        top.pop()
+        cells = []
+        while top:
+            C = bottom[-1] / top[-1]
+            bottom = [a - C * b for a, b in zip(bottom[:-1], [0, *top[:-1]], strict=True)]
+            r = top[-1] / bottom[-1]
+            top = [a - r * b for a, b in zip(top[:-1], bottom[:-1], strict=True)]
+            cells.append((float(r), float(C)))
+    ours_R, ours_C = foster_to_ladder(R, tau)
+    assert ours_R.tolist() == pytest.approx([r for r, _ in cells], rel=1e-14)
+    assert ours_C.tolist() == pytest.approx([c for _, c in cells], rel=1e-14)
 
 
 def test_first_ladder_capacity_is_all_foster_capacities_in_series() -> None:
@@ -215,6 +240,11 @@ def test_steady_rises_are_sums_of_resistances() -> None:
     assert net.nodes == ("junction", "case", "heatsink")
     steady = net.direct + net.gain.sum(axis=2)
     assert steady == pytest.approx(np.array([[2.6, 2.0, 1.6], [2.9, 2.0, 1.6]]), rel=1e-12)
+
+
+def test_a_ladder_scaled_to_its_resistance_keeps_its_time_constants() -> None:
+    a, b = (network(LADDER, R * ONE, HELD, None, None) for R in (0.6, 0.9))
+    assert b.tau == pytest.approx(a.tau, rel=1e-9)
 
 
 def test_a_held_sink_is_the_boundary() -> None:
