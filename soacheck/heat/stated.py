@@ -154,8 +154,7 @@ def foster_to_ladder(R: FloatArray, tau: FloatArray) -> tuple[FloatArray, FloatA
     tuple of two ndarray, shape (m,), m <= n
         R and C of the ladder from the heated node outwards. [K/W], [J/K]
 
-    Range: all values positive. Pairs with time constants equal to 1e-6 are joined, resistances below 1e-7 of
-    the sum go to their neighbour.
+    Range: all values positive. Pairs with time constants equal to 1e-6 are joined.
     Source: W. Cauer, continued fraction of a positive real driving-point impedance about infinity (from
     memory); digits are kept by computing with 60 + 20 n decimals.
     """
