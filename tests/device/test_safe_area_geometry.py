@@ -380,3 +380,20 @@ def test_scaling_volts_and_amps_of_everything_changes_nothing(
             for each, factor_v, factor_i in ((chart, 1.0, 1.0), (grown, scale_v, scale_i))
         )
         assert large.current == pytest.approx(small.current * scale_i, rel=1e-9)
+
+
+def test_a_first_segment_that_is_nearly_flat_does_not_drag_the_flat_down() -> None:
+    # Analytic: left of the corner no line falls slower than constant power: at 1 V a tenth of the corner's voltage
+    # allows ten times 0.4 * 15 A, so the flat stands; at 8 V it is 0.4 * 15 A * 10/8 = 7.5 A.
+    nearly = curve([(10, 15), (12, 14.9), (100, 1)])
+    found = soa.allowed_current(
+        nearly,
+        np.array([1.0, 8.0]),
+        T=np.array(kelvin(100)),
+        T_j_max=kelvin(150),
+        derating=LIKE_DISSIPATION,
+        Z=None,
+        I_rating=15.0,
+        voltage_scaled=False,
+    )
+    assert found.current == pytest.approx([15.0, 7.5])
