@@ -36,6 +36,8 @@ class Drive:
     I_B: Traced | None = None  # base current while on [A]
     I_on: Traced | None = None  # current that this drive must carry in saturation / on [A], per device
     saturates: bool = False  # the duty relies on saturation (on-state) being reached
+    I_B2: Traced | None = None  # reverse base current while turning off [A]
+    R_G: Traced | None = None  # gate resistance [ohm]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)

@@ -1,0 +1,200 @@
+"""Which printed safe-area curves count for a duty, and how much of each a locus uses.
+
+A curve that is drawn for the case counts as it is; one drawn for the ambient counts as a case curve up to 10 ms, and
+beyond that only for a device without a heat sink. A curve for repeated pulses counts for loci of no larger duty factor.
+What the dc curve allows for ever is refused by no pulse curve.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from soacheck.device.ratings import SafeAreaCurve, SafeAreaDerating
+from soacheck.device.soa import Allowed, allowed_current
+from soacheck.heat.ladder import network
+from soacheck.limit.judged import Judged
+from soacheck.limit.path import Path
+from soacheck.locus import Use
+from soacheck.trace import BoolArray, FloatArray, IntArray
+
+AMBIENT_LONGEST = 0.010  # [s] a chart drawn for the ambient: up to here the case has not warmed
+NOTHING = 1e12  # share of an allowance of 0: finite, so that it can be interpolated
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Line:
+    """One printed forward curve as it counts for this duty.
+
+    T: temperature of its node (case, member) [K]. Z: thermal resistance for its width (case, 1) [K/W], None where not
+    known. T_j_max [K], rating (current for its width) [A], factor (what the rules leave): (1 or case,).
+    duty_factor: a curve for repeated pulses counts up to it; infinite: no such bound.
+    """
+
+    curve: SafeAreaCurve
+    derating: SafeAreaDerating
+    T: FloatArray
+    Z: FloatArray | None
+    T_j_max: FloatArray
+    rating: FloatArray
+    factor: FloatArray
+    voltage_scaled: bool
+    duty_factor: float = np.inf
+
+    @property
+    def pulse(self) -> float:
+        return self.curve.pulse
+
+    @property
+    def label(self) -> str:
+        return self.curve.label
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Lines:
+    """The curves that count: dc, and pulses of rising width. left_out: sentences about curves that do not."""
+
+    dc: Line | None
+    pulses: tuple[Line, ...]
+    left_out: tuple[str, ...] = ()
+
+    @property
+    def longest(self) -> Line | None:
+        """The curve that everything is measured by: dc, else the longest pulse."""
+        return self.dc if self.dc is not None else self.pulses[-1] if self.pulses else None
+
+    @property
+    def widths(self) -> tuple[float, ...]:
+        """Distinct pulse widths, rising. [s]"""
+        return tuple(sorted({line.pulse for line in self.pulses}))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Share:
+    """How much of a line's allowance the locus uses.
+
+    r (case, member, time): i/allowance; 0 where the point does not count or a current rating is the allowance.
+    raw: the same where a current rating is the allowance too; NaN where the line says nothing.
+    beyond, zero (case, member): conducts where nothing is known; conducts where nothing is allowed.
+    """
+
+    r: FloatArray
+    raw: FloatArray
+    beyond: BoolArray
+    zero: BoolArray
+
+
+def lines_of(judged: Judged) -> Lines:
+    """The printed forward curves that count for a duty."""
+    device, operating, ratings = judged.device, judged.operating, judged.device.max
+    once = operating.locus is not None and operating.locus.use is Use.ONCE
+    T_case = operating.T_before if once else operating.T_case_peak
+    T_air = operating.T_before if once else operating.T_air
+    made, left_out = [], []
+    for curve in device.soa:
+        if curve.bias != "forward":
+            continue
+        from_air = curve.node == "ambient" and curve.pulse > AMBIENT_LONGEST * (1 + 1e-9)
+        if from_air and (operating.sink != "none" or device.thermal.R_th_ja is None):
+            left_out.append(
+                f"The {curve.label} curve is drawn for the ambient; it counts only without a heat sink and with R_th_ja "
+                "stated."
+            )
+            continue
+        if not curve.single and curve.duty_factor is None and not once:
+            left_out.append(f"The {curve.label} curve is drawn for repeated pulses and its duty factor is not stated.")
+            continue
+        made.append(
+            Line(
+                curve=curve, derating=device.soa_derating, T=T_air if from_air else T_case,
+                Z=_Z(judged, curve.pulse, from_air), T_j_max=ratings.T_j.value,
+                rating=_rating(judged, curve.pulse), factor=judged.rules.safe_area.value,
+                voltage_scaled=device.mosfet or device.igbt,
+                duty_factor=np.inf if curve.single or curve.duty_factor is None or once else curve.duty_factor,
+            )
+        )  # fmt: skip
+    dc = [line for line in made if np.isinf(line.pulse)]
+    pulses = sorted((line for line in made if np.isfinite(line.pulse)), key=lambda line: line.pulse)
+    return Lines(dc=dc[0] if dc else None, pulses=tuple(pulses), left_out=tuple(left_out))
+
+
+def _rating(judged: Judged, pulse: float) -> FloatArray:
+    """Current rating for a pulse width: the peak rating up to the width it is stated for. (1 or case,) [A]"""
+    ratings = judged.device.max
+    if ratings.I_peak is None or np.isinf(pulse):
+        return ratings.I_max.value
+    if ratings.I_peak_pulse is None:
+        return ratings.I_peak.value
+    short = pulse <= ratings.I_peak_pulse.value * (1 + 1e-9)
+    return np.where(short, ratings.I_peak.value, ratings.I_max.value)
+
+
+def _Z(judged: Judged, pulse: float, from_air: bool) -> FloatArray | None:
+    """Thermal resistance from the junction to the curve's node for a pulse width, (case, 1); None where not known."""
+    operating, R_ja = judged.operating, judged.device.thermal.R_th_ja
+    if from_air:
+        return R_ja.value[:, None] if np.isinf(pulse) and R_ja is not None else None
+    R = operating.R_th_jc
+    if R is None:
+        return None
+    if np.isinf(pulse):
+        return R.value[:, None]
+    if operating.ladder is None:
+        return None
+    modes = network(operating.ladder, R.value, np.full_like(R.value, 1e-9), None, None)
+    return modes.step(np.asarray([pulse]))[:, modes.nodes.index("junction"), :]
+
+
+def allowed(line: Line, v: FloatArray, members: IntArray) -> Allowed:
+    """What a line allows at voltages (case, member, time) of some members (1 or case, member), before the rules' factor."""
+    T = np.broadcast_to(line.T, (v.shape[0], line.T.shape[1]))
+    if T.shape[1] > 1:
+        T = np.take_along_axis(T, np.broadcast_to(members, v.shape[:2]), axis=1)
+    return allowed_current(
+        line.curve, v, T=T[..., None], T_j_max=line.T_j_max[:, None, None], derating=line.derating,
+        Z=None if line.Z is None else line.Z[..., None], I_rating=line.rating[:, None, None],
+        voltage_scaled=line.voltage_scaled,
+    )  # fmt: skip
+
+
+def share(line: Line, path: Path) -> Share:
+    """How much of one line's allowance a path uses."""
+    may = allowed(line, path.v, path.members)
+    current = may.current * line.factor[:, None, None]
+    none = path.counted & (current <= 0)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        raw = np.where(none, NOTHING, path.i / current)
+    judged_here = path.counted & ~may.rating_limited
+    unknown = path.active & np.isnan(raw)
+    return Share(
+        r=np.where(judged_here & ~np.isnan(raw), np.minimum(raw, NOTHING), 0.0),
+        raw=np.where(path.counted, raw, 0.0),
+        beyond=unknown.any(axis=2),
+        zero=none.any(axis=2),
+    )
+
+
+def shares(lines: Lines, path: Path, dc: Share | None, duty_factor: FloatArray) -> tuple[FloatArray, ...]:
+    """r of every distinct pulse width, rising, (case, member, time).
+
+    Two curves of one width: the lower counts. A curve for repeated pulses that the locus repeats too densely for is
+    stood in for by the next longer one. Where the dc curve allows more, it counts.
+    duty_factor: of the locus, (case, member).
+    """
+    longer = None if dc is None else dc.r
+    made: list[FloatArray] = []
+    for width in reversed(lines.widths):
+        here: FloatArray | None = None
+        for line in lines.pulses:
+            if line.pulse != width:
+                continue
+            one = share(line, path)
+            r = one.r if dc is None else np.where(np.isnan(one.raw), dc.r, np.where(dc.raw < one.r, dc.raw, one.r))
+            if np.isfinite(line.duty_factor) and longer is not None:
+                r = np.where(duty_factor[..., None] <= line.duty_factor, r, longer)
+            here = r if here is None else np.maximum(here, r)
+        if here is not None:
+            made.append(here)
+            longer = here
+    return tuple(reversed(made))

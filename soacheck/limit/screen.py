@@ -1,0 +1,118 @@
+"""A first look at every member of a duty: bounds of its utilisation, and what keeps it from having one."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from soacheck.limit.allowance import Lines, share
+from soacheck.limit.duration import time_above
+from soacheck.limit.judged import Judged
+from soacheck.limit.path import Path, path_of
+from soacheck.limit.superposition import mean_of
+from soacheck.limit.turn_off import TurnOff, turn_off
+from soacheck.locus import Use
+from soacheck.trace import BoolArray, FloatArray, IntArray
+
+ELEMENTS = 2_000_000  # of the largest array of one piece of work
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Screen:
+    """Per (case, member), measured by the dc curve or, without one, by the longest pulse.
+
+    top: greatest share, an upper bound of both tests; v_top: the voltage it stands at. low: a lower bound.
+    duty_factor: the larger of the share of time above the measure and P_mean/P_peak.
+    lasting: without a dc curve, active conduction that lasts or repeats beyond the longest pulse.
+    beyond, zero: conducts where nothing is known, where nothing is allowed. reversed: collector below emitter.
+    """
+
+    top: FloatArray
+    v_top: FloatArray
+    low: FloatArray
+    duty_factor: FloatArray
+    lasting: BoolArray
+    beyond: BoolArray
+    zero: BoolArray
+    reversed: BoolArray
+    T_unknown: BoolArray
+    turned_off: TurnOff | None
+
+    def T_unknown_of(self, pick: IntArray) -> BoolArray:
+        return np.take_along_axis(self.T_unknown, pick, axis=1)
+
+
+def screen(judged: Judged, lines: Lines) -> Screen:
+    """The first look, in pieces of members of bounded size."""
+    locus = judged.operating.locus
+    if locus is None:
+        raise ValueError("a duty without a locus has no members")
+    cases, members, times = judged.cases, locus.shape[1], locus.shape[2]
+    width = max(1, ELEMENTS // (cases * 2 * times))
+    pieces = [_piece(judged, lines, np.arange(start, min(start + width, members))[None])
+              for start in range(0, members, width)]  # fmt: skip
+    if len(pieces) == 1:
+        return pieces[0]
+    joined = {
+        name: np.concatenate([getattr(piece, name) for piece in pieces], axis=1)
+        for name in ("top", "v_top", "low", "duty_factor", "lasting", "beyond", "zero", "reversed", "T_unknown")
+    }
+    return Screen(**joined, turned_off=_joined([piece.turned_off for piece in pieces]))
+
+
+def _piece(judged: Judged, lines: Lines, members: IntArray) -> Screen:
+    measure, operating = lines.longest, judged.operating
+    path = path_of(judged, members)
+    if measure is None:
+        raise ValueError("without curves there is nothing to screen")
+    shape = path.v.shape[:2]
+    one = share(measure, path)
+    top, at = one.r.max(axis=2), one.r.argmax(axis=2)[..., None]
+    if lines.dc is not None and path.use is Use.REPEATED:
+        low = np.minimum(mean_of(path, one.r), top)
+    else:
+        low = np.where(path.use is Use.HELD, top, np.zeros(shape))
+
+    def pick(a: FloatArray) -> FloatArray:
+        full = np.broadcast_to(a, (judged.cases, a.shape[1]))
+        if full.shape[1] == 1:
+            return np.broadcast_to(full, shape)
+        return np.take_along_axis(full, np.broadcast_to(members, shape), axis=1)
+
+    with np.errstate(divide="ignore", invalid="ignore"):
+        crest = np.nan_to_num(pick(operating.P_mean) / pick(operating.P_peak))
+    return Screen(
+        top=top, v_top=np.take_along_axis(path.v, at, axis=2)[..., 0], low=low * (1 - 1e-9),
+        duty_factor=np.maximum(time_above(path.t, one.r, 1.0, path.use), crest),
+        lasting=_lasting(lines, path), beyond=one.beyond & ~np.isnan(pick(measure.T)), zero=one.zero,
+        reversed=(path.v < -1e-9 * judged.device.max.V_max.value[:, None, None]).any(axis=2),
+        T_unknown=np.isnan(pick(measure.T)),
+        turned_off=None if operating.locus is None or operating.locus.turn_off is None else turn_off(judged, path),
+    )  # fmt: skip
+
+
+def _lasting(lines: Lines, path: Path) -> BoolArray:
+    active = path.active
+    if lines.dc is not None:
+        return np.zeros(active.shape[:2], dtype=np.bool_)
+    some = active.any(axis=2)
+    if path.use is not Use.ONCE:
+        return np.asarray(some, dtype=np.bool_)
+    t = np.broadcast_to(path.t, active.shape)
+    first, last = active.argmax(axis=2), active.shape[2] - 1 - active[..., ::-1].argmax(axis=2)
+    span = (np.take_along_axis(t, at[..., None], axis=2)[..., 0] for at in (last, first))
+    return np.asarray(some & (next(span) - next(span) > lines.widths[-1] * (1 + 1e-9)), dtype=np.bool_)
+
+
+def _joined(pieces: list[TurnOff | None]) -> TurnOff | None:
+    whole = [piece for piece in pieces if piece is not None]
+    if not whole:
+        return None
+    notes = tuple(
+        replace(one[0], holds=np.concatenate(
+            [np.broadcast_to(note.holds, piece.value.shape) for note, piece in zip(one, whole, strict=True)], axis=1))
+        for one in zip(*(piece.notes for piece in whole), strict=True)
+    )  # fmt: skip
+    return TurnOff(value=np.concatenate([piece.value for piece in whole], axis=1),
+                   at=np.concatenate([piece.at for piece in whole], axis=1), notes=notes)  # fmt: skip
