@@ -32,7 +32,7 @@ from soacheck.stage import Stage
 from soacheck.table import CasePlan, Missing
 from soacheck.trace import Traced, derived
 
-BLOCK = 16  # cases worked out together; fixed, so that the answer does not depend on anything else
+BLOCK = 8  # cases worked out together; fixed, so that the answer does not depend on anything else
 
 # Limits of the contract that this version does not decide.
 NOT_DECIDED = (
@@ -175,6 +175,11 @@ def _decide(stage: Stage, plan: CasePlan, worst: list[Finding], cases: list[int]
     cautions: list[Caution] = [
         Caution(id=i, text=t) for half in stage.halves for i, t in half.fitted.device.cautions
     ] + [Caution(id=i, text=t) for i, t in stage.document.cautions]
+    cautions += [
+        Caution(id="z-th-raised", text=f"{half.fitted.device.name}: {half.ladder.how}.")
+        for half in stage.halves
+        if half.ladder is not None and half.ladder.raised
+    ]
     decided: list[Finding] = []
     position = 0
     for sitting in sittings:

@@ -196,16 +196,15 @@ def _from_source(source: Source, folder: Path, devices: Sequence[Path]) -> Stage
         except InputError as error:
             refused.append(("load", "kind", error))
     # what is known of the file is checked even when its device or its kind is not, so that all errors come together
-    keys = keys_of(kind) if kind is not None else STAGE_KEYS
+    keys = keys_of(kind) if kind is not None else (*STAGE_KEYS, *heat_path.KEYS, *own.KEYS)
     if kind is None:
-        source = replace(
-            source,
-            data={name: source.data[name] for name in ("stage",) if name in source.data}
-            | {"load": _kind_alone(source)},
-        )
+        source = replace(source, data={**source.data, "load": _kind_alone(source)})
     document = check_source(source, keys, device_kind=found[0].kind if found else None)
     for table, name, refusal in refused:
         _relay(document.table(table), name, refusal)
+    if kind is None or not found or refused:
+        heat_path.read(document.table("heat_path"), document.table("surroundings"))
+        own.read(document.table("derating"))
     elsewhere = tuple(problem for _, _, refusal in refused for problem in refusal.problems if problem.file)
     if elsewhere:
         raise InputError(*document.sheet.ledger.problems(), *elsewhere)

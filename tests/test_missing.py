@@ -132,7 +132,7 @@ def test_ten_spreads_are_worked_out_and_eleven_are_refused(tmp_path: Path) -> No
         'R_th_enclosure = { value = "0.05 K/W", tol = "1 %" }\nextra_box_heat = { value = "1 W", tol = "1 %" }',
     )
     stage = stage_of(tmp_path, ten)
-    assert len(stage.spreads) == 10 - 1
+    assert len(stage.spreads) == 10
     assert check(stage).verdict is Status.WITHIN
     (tmp_path / "stage.toml").write_text(ten + '[derating]\nvoltage = { value = "80 %", tol = "1 %" }\n'
                                          'current = { value = "80 %", tol = "1 %" }\n')  # fmt: skip

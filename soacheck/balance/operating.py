@@ -340,8 +340,9 @@ def _modes(
         return network(place.ladder, R_jc, np.full_like(R_jc, 1e-9), None, None), T_case
     R_cs = np.maximum(place.R_cs[:, 0], 1e-9)
     if path.sink == "resistance" and (path.C_th_sink is not None or sink_follows):
-        seen = place.R_sink[:, 0] * ratio[:, 0]
-        C = path.C_th_sink.value / ratio[:, 0] if path.C_th_sink is not None else None
+        others = place.sink_ratio(ratio)[:, 0]
+        seen = place.R_sink[:, 0] * others
+        C = path.C_th_sink.value / others if path.C_th_sink is not None else None
         return network(place.ladder, R_jc, R_cs, seen, C), T_air + place.R_sink * place.extra
     if path.sink == "none":
         return network(place.ladder, R_jc, R_cs, None, None), T_air
