@@ -6,6 +6,7 @@ the source. The governing finding comes first and is complete; other sections re
 
 from __future__ import annotations
 
+import ast
 import math
 import re
 from collections.abc import Iterable, Sequence
@@ -152,10 +153,10 @@ def _inputs(values: Sequence[Traced], steps: _Steps) -> list[str]:
 def _chain(roots: Sequence[Traced], steps: _Steps) -> list[str]:
     """The inputs that the values rest on as a table, then every step from them to the values."""
     order: dict[int, Traced] = {id(node): node for root in roots for node in root.walk()}
-    entered = [node for node in order.values() if not node.inputs and steps.new(node)]
-    worked = [node for node in order.values() if node.inputs and steps.new(node)]
-    lines = _table([node for node in entered if not node.how], steps)
-    for node in (*(node for node in entered if node.how), *worked):
+    entered = [node for node in order.values() if not node.inputs and not node.how and steps.new(node)]
+    worked = [node for node in order.values() if (node.inputs or node.how) and steps.new(node)]
+    lines = _table(entered, steps)
+    for node in worked:
         lines += _step(node, steps)
     printed = {id(node) for node in (*entered, *worked)}
     above = [f"{_value(root)} {steps.mark(root)}" for root in roots if id(root) not in printed]
@@ -192,19 +193,23 @@ def _step(node: Traced, steps: _Steps) -> list[str]:
         lines = wrapped(f"{result}{how}{source}", head + "= ", indent + "  ")
         from_ = ", ".join(f"{_value(value)} {steps.mark(value)}" for value in node.inputs)
         return lines + (wrapped(from_, indent + "from ") if from_ else [])
-    written = _POWER.sub("^", node.formula)
-    numbers = _put_in(node)
-    lines = wrapped(f"= {written}", head, indent + "  ")
-    if numbers == result:  # the formula is a mere name
-        return lines + wrapped(f"= {result}{source}", indent)
-    return lines + wrapped(f"= {numbers} = {result}{source}", indent, indent + "  ")
+    even = ast.unparse(ast.parse(node.formula, mode="eval"))  # the same spaces in every formula
+    formula = f"= {_POWER.sub('^', even)}"
+    numbers = _put_in(node, even)
+    ended = f"= {result}".replace(" ", GLUE) + source
+    filled = (
+        ended if numbers.replace(GLUE, " ") == result else f"= {numbers} {ended}"
+    )  # equal: the formula is a mere name
+    together = wrapped(f"{formula} {filled}", head)
+    if len(together) == 1:
+        return together
+    return wrapped(formula, head, indent + "  ") + wrapped(filled, indent, indent + "  ")
 
 
-def _put_in(node: Traced) -> str:
+def _put_in(node: Traced, text: str) -> str:
     """The formula with the numbers of its inputs in place of their symbols."""
     celsius = _same_in_celsius(node)
     values = {value.symbol: value for value in node.inputs}
-    text = node.formula
 
     def written(found: re.Match[str]) -> str:
         name = found.group()
@@ -212,7 +217,7 @@ def _put_in(node: Traced) -> str:
             return name  # a function or pi
         value = values[name]
         unit = "K" if value.unit == "degC" and not celsius else value.unit
-        quantity = plain(value.at(0), unit, _DIGITS)
+        quantity = plain(value.at(0), unit, _DIGITS).replace(" ", GLUE)
         divides = text[: found.start()].rstrip().endswith("/") and "/" in unit
         raised = text[found.end() :].lstrip().startswith("**")
         return f"({quantity})" if divides or raised or quantity.startswith("-") else quantity

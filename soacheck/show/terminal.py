@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterable, Sequence
+from collections import Counter
+from collections.abc import Hashable, Iterable, Sequence
 from dataclasses import dataclass
 
-from soacheck.result import DutyResult, Finding, Reason, Result, Status
+from soacheck.result import DutyResult, Finding, Result, Status
 from soacheck.show.text import WIDTH, cells, clean, number, pad, percent, shown, wrapped
 from soacheck.show.words import (
     FROM_AMBIENT,
@@ -32,6 +33,8 @@ _COLUMNS = (
     ("T_sink", "degC", "T_heatsink"),
 )
 _COLUMN = 8
+_UNKNOWN = "-"
+BOTH = "both"  # halves
 _COLOURS = {Status.WITHIN: "32", Status.MARGINAL: "33", Status.UNPROVEN: "35", Status.EXCEEDS: "1;31"}
 _INDENT = "  "
 _ROW = " "  # before a finding: one column less lets the longest usual names stand beside the numbers
@@ -83,33 +86,59 @@ def _coloured(word: str, status: Status, colour: bool) -> str:
     return f"\x1b[{_COLOURS[status]}m{word}\x1b[0m" if colour else word
 
 
+def _merged(rows: Iterable[tuple[str | None, Hashable]]) -> list[tuple[str | None, int]]:
+    """Half and index of the rows to print: two halves that would read the same become one row, "both".
+
+    rows: the half and all else that is printed of each.
+    """
+    first: dict[Hashable, int] = {}
+    halves: dict[Hashable, str | None] = {}
+    repeats: Counter[Hashable] = Counter()
+    for index, (half, content) in enumerate(rows):
+        key = (content, repeats[half, content])  # only rows of different halves meet
+        repeats[half, content] += 1
+        first.setdefault(key, index)
+        halves[key] = half if key not in halves else BOTH
+    return [(halves[key], index) for key, index in first.items()]
+
+
 def _duties(duties: Sequence[DutyResult]) -> list[str]:
-    names = [clean(duty_words(duty.name, duty.half)) for duty in duties]
+    if not duties:
+        return ["Duties: none"]
     first = WIDTH - _COLUMN * len(_COLUMNS)
-    head = pad("Duties, per device", first) + "".join(pad(title, _COLUMN, right=True) for title, _, _ in _COLUMNS)
-    units = " " * first + "".join(pad(unit, _COLUMN, right=True) for _, unit, _ in _COLUMNS)
-    lines = [head, units]
-    for name, duty in zip(names, duties, strict=True):
-        label = _INDENT + name
+    head = pad("Duties, per device", first) + _across(title for title, _, _ in _COLUMNS)
+    lines = [head, " " * first + _across(unit for _, unit, _ in _COLUMNS)]
+    figures = [_figures(duty) for duty in duties]
+    contents = [(duty.half, (duty.name, row)) for duty, row in zip(duties, figures, strict=True)]
+    for half, index in _merged(contents):
+        label = _INDENT + clean(duty_words(duties[index].name, half))
         if cells(label) >= first:  # a long name gets a line of its own
             lines.append(label)
             label = ""
-        figures = [_figure(getattr(duty, attribute)) for _, _, attribute in _COLUMNS]
-        lines.append(pad(label, first) + "".join(pad(figure, _COLUMN, right=True) for figure in figures))
-    if any(getattr(duty, attribute) is None for duty in duties for _, _, attribute in _COLUMNS):
-        lines.append(f"{_INDENT}- not known")
-    return lines if duties else ["Duties: none"]
+        lines.append(pad(label, first) + _across(figures[index]))
+    if any(_UNKNOWN in row for row in figures):
+        lines.append(f"{_INDENT}{_UNKNOWN} not known")
+    return lines
+
+
+def _across(texts: Iterable[str]) -> str:
+    return "".join(pad(text, _COLUMN, right=True) for text in texts)
+
+
+def _figures(duty: DutyResult) -> tuple[str, ...]:
+    return tuple(_figure(getattr(duty, attribute)) for _, _, attribute in _COLUMNS)
 
 
 def _figure(traced: Traced | None) -> str:
     if traced is None or math.isnan(traced.at(0)):
-        return "-"
+        return _UNKNOWN
     value = shown(traced.at(0), traced.unit)
     return f"{value:.1f}" if traced.unit == "degC" else number(value, 3, strip=False)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class _Row:
+    finding: Finding
     status: Status
     words: tuple[str, ...]  # utilisation, nominal, status, limit, amounts
     duty: str
@@ -121,40 +150,66 @@ def _findings(result: Result, colour: bool) -> list[str]:
     The place stands on a line below: for all when the duty has no room beside the numbers, else for those
     that are not `within` and for the one that governs.
     """
-    rows = [_row(result, finding, nominal) for finding, nominal in zip(result.findings, result.nominal, strict=True)]
+    rows = _rows(result)
     if not rows:
         return ["Findings: none"]
     titles = ("used", "nominal" if result.spread else "", "status", "limit", "applied of allowed")
-    widths = [max(cells(text) for text in column) for column in zip(titles, *(row.words for row in rows), strict=True)]
+    widths = [max(map(cells, column)) for column in zip(titles, *(row.words for row in rows), strict=True)]
     beside = len(_ROW) + cells(_columns(titles, widths)) + max(cells(row.duty) for row in rows) <= WIDTH
     title = _columns(titles, widths) + ("duty" if beside else "")
     lines = ["Findings, worst first", (_ROW + title).rstrip()]
     seen: dict[tuple[str, ...], str] = {}
-    for index, (row, finding) in enumerate(zip(rows, result.findings, strict=True)):
+    for row in rows:
         text = _ROW + _columns(row.words, widths) + (row.duty if beside else "")
         lines.append(_coloured_row(text.rstrip(), row.status, colour))
-        detailed = row.status is not Status.WITHIN or index == 0 or not beside
-        place = where_words(result, finding) if detailed else ""
+        detailed = row.status is not Status.WITHIN or row is rows[0] or not beside
+        place = where_words(result, row.finding) if detailed else ""
         under = ", ".join(part for part in ("" if beside else row.duty, place) if part)
         if under:
             lines += wrapped(under, _UNDER)
         if row.status is not Status.WITHIN:
-            lines += _reasons(finding, duty_words(finding.duty, finding.half), seen)
+            lines += _reasons(row, seen)
     if any(finding.unit == "degC" for finding in result.findings):
         lines += wrapped(FROM_AMBIENT, _INDENT)
     return lines
 
 
-def _row(result: Result, finding: Finding, nominal: float) -> _Row:
-    status = status_of(finding)
-    words = (
+def _rows(result: Result) -> list[_Row]:
+    """What is printed of each finding; findings of two halves that would read the same are one row."""
+    pairs = list(zip(result.findings, result.nominal, strict=True))
+    words = [_words(finding, nominal, result.spread) for finding, nominal in pairs]
+    contents = (
+        (finding.half, (row, finding.duty, _told(finding))) for finding, row in zip(result.findings, words, strict=True)
+    )
+    return [
+        _Row(
+            finding=result.findings[index],
+            status=status_of(result.findings[index]),
+            words=words[index],
+            duty=clean(duty_words(result.findings[index].duty, half)),
+        )
+        for half, index in _merged(contents)
+    ]
+
+
+def _words(finding: Finding, nominal: float, spread: bool) -> tuple[str, ...]:
+    return (
         percent(float(finding.utilisation[0])),
-        percent(nominal) if result.spread else "",
-        status.word,
+        percent(nominal) if spread else "",
+        status_of(finding).word,
         clean(finding.limit),
         amounts(finding),
     )
-    return _Row(status=status, words=words, duty=clean(duty_words(finding.duty, finding.half)))
+
+
+def _told(finding: Finding) -> tuple[str, ...]:
+    """The reasons that apply and what they lack, as text."""
+    return tuple(
+        text
+        for reason in finding.reasons
+        if bool(reason.applies[0])
+        for text in (reason.text, *(f"{item.key} {item.where}" for item in reason.missing))
+    )
 
 
 def _columns(words: Sequence[str], widths: Sequence[int]) -> str:
@@ -170,25 +225,21 @@ def _coloured_row(line: str, status: Status, colour: bool) -> str:
     return line.replace(status.word, _coloured(status.word, status, colour), 1)
 
 
-def _reasons(finding: Finding, label: str, seen: dict[tuple[str, ...], str]) -> list[str]:
+def _reasons(row: _Row, seen: dict[tuple[str, ...], str]) -> list[str]:
     """Why a finding is not `within`, and what it lacks; once in full, then by reference to where it stood."""
-    reasons = [reason for reason in finding.reasons if _applies(reason)]
-    if not reasons:
+    told = _told(row.finding)
+    if not told:
         return []
-    key = tuple(text for reason in reasons for text in (reason.text, *(str(item) for item in reason.missing)))
-    missing = ", ".join(finding.missing(0))
-    if key in seen:
-        return wrapped(f"as for {seen[key]}" + (f"; missing: {missing}" if missing else ""), _UNDER)
-    seen[key] = f"{finding.limit} in {label}"
+    if told in seen:
+        missing = ", ".join(row.finding.missing(0))
+        return wrapped(f"as for {seen[told]}" + (f"; missing: {missing}" if missing else ""), _UNDER)
+    seen[told] = f"{row.finding.limit} in {row.duty}"
+    reasons = [reason for reason in row.finding.reasons if bool(reason.applies[0])]
     lines = [line for reason in reasons for line in wrapped(reason.text, _UNDER)]
     stated = {item.key: item.where for reason in reasons for item in reason.missing}
     for path, where in stated.items():
         lines += wrapped(f"{path} ({where})" if where else path, _UNDER + "missing: ", _UNDER + "         ")
     return lines
-
-
-def _applies(reason: Reason) -> bool:
-    return bool(reason.applies[0])
 
 
 def _listed(title: str, items: Iterable[str], mark: str = "") -> list[str]:

@@ -80,7 +80,9 @@ def verdict_sentence(result: Result) -> str:
     used = float(finding.utilisation[0])
     status = status_of(finding)
     if status is Status.EXCEEDS:
-        size = f"{percent(used)} of the allowance" if math.isfinite(used) else "nothing is allowed"
+        none = finding.allowed is not None and finding.allowed.at(0) <= 0
+        without = "nothing is allowed" if none else "by an amount that has no number"
+        size = f"{percent(used)} of the allowance" if math.isfinite(used) else without
         return f"{subject}, {size}, {amounts(finding)}{tail}"
     if status is Status.UNPROVEN:
         missing = finding.missing(0)
@@ -98,7 +100,7 @@ def counts(findings: Sequence[Finding]) -> str:
 
 def device_words(facts: DeviceFacts) -> str:
     """The device on one line: name, file, where the ratings are from."""
-    source = f"ratings from {facts.ratings_from or 'a source that is not stated'}"
+    source = f"ratings: {facts.ratings_from or 'their source is not stated'}"
     file = f" ({PurePath(facts.file).name})" if facts.file else ""
     return f"{facts.name}{file}, {source}"
 

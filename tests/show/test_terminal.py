@@ -52,9 +52,7 @@ def test_the_blocks_come_in_the_order_verdict_duties_findings_gaps_assumptions_c
 
 
 def test_findings_keep_the_order_of_the_result_and_each_carries_its_word() -> None:
-    rows = re.findall(
-        r"^ +(?:[\d.]+ %|-) +(exceeds|unproven|marginal|within) ", terminal(amplifier()), re.MULTILINE
-    )
+    rows = re.findall(r"^ +(?:[\d.]+ %|-) +(exceeds|unproven|marginal|within) ", terminal(amplifier()), re.MULTILINE)
     assert rows == ["exceeds"] * 2 + ["unproven"] * 2 + ["marginal"] + ["within"] * 3
 
 
@@ -158,9 +156,30 @@ def test_several_stages_end_with_the_worst() -> None:
     assert terminal_blocks([first]) == terminal(first)
 
 
+def test_halves_that_read_the_same_are_one_row() -> None:
+    items = [finding(half=half, where=where(40.0, 1.0, t)) for half, t in (("upper", 0.0), ("lower", 0.5))]
+    duties = tuple(DutyResult(name="idle", half=half) for half in ("upper", "lower"))
+    text = terminal(result(*items, duties=duties))
+    assert text.count("worst-level (both)") == 1
+    assert text.count("idle (both)") == 1
+    assert "2 findings: 2 within" in text
+
+
+def test_halves_that_differ_and_findings_of_one_half_stay_apart() -> None:
+    items = [finding(half="upper"), finding(half="upper"), finding(half="lower", applied=22.5)]
+    rows = [line for line in terminal(result(*items)).splitlines() if "  dissipation  " in line]
+    assert [row.split("worst-level ")[1] for row in rows] == ["(upper)", "(upper)", "(lower)"]
+
+
+def test_an_excess_without_a_number_is_not_called_an_allowance_of_nothing() -> None:
+    item = finding("safe-area", "held", 1.2, np.nan, "A", np.nan, Status.EXCEEDS)
+    head = terminal(result(item)).splitlines()[0]
+    assert head.startswith("EXCEEDS: safe-area in held, by an amount that has no number, 1.2 A of unknown")
+
+
 def test_the_lower_half_is_described_by_the_complement() -> None:
     lower = DeviceFacts(name="EXAMPLE-P-MOS", file="p.toml", sha256="", ratings_from="", kind="p-mosfet")
     item = finding(half="lower", where=where(40.0, 1.0, region=2))
     text = terminal(replace(result(item), complement=lower))
-    assert "Lower   EXAMPLE-P-MOS (p.toml), ratings from a source that is not stated" in text
+    assert "Lower   EXAMPLE-P-MOS (p.toml), ratings: their source is not stated" in text
     assert "at 40 V, 1 A, on (nominal values only)" in text
