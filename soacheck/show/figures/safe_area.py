@@ -46,7 +46,8 @@ def draw(result: Result, half: str | None) -> Figure:
     labels = [*_hot_labels(axes, spot), *_curves(axes, picture), *_ratings(axes, picture, kind)]
     for count, (name, v, i, single) in enumerate(loci):
         if single:
-            labels.extend(_rest(axes, name, v, i))
+            at_hot = spot is not None and spot.duty in name and np.isclose(spot.where.v[0], v[0])
+            labels.extend([] if at_hot else _rest(axes, name, v, i))
             continue
         stroke = palette.LOCI[min(count, len(palette.LOCI) - 1)]
         canvas.drawn_line(axes, *_on_log_paper(axes, v, i), stroke, zorder=4)
@@ -119,7 +120,7 @@ def _curves(axes: Axes, picture: SafeAreaPicture) -> list[Label]:
             canvas.drawn_line(axes, shown[:, 0], shown[:, 1], palette.SCALED, zorder=3)
             labels.append(_on_slope(shown, text))
         elif printed.size:
-            labels.append(_on_slope(printed, f"{text}: nothing allowed"))
+            labels.append(_on_slope(printed, f"{text}: printed only"))
     return labels
 
 
@@ -203,6 +204,8 @@ def _hot_labels(axes: Axes, spot: Finding | None) -> list[Label]:
 
 def _notes(result: Result, picture: SafeAreaPicture, half: str | None, spot: Finding | None) -> list[str]:
     notes = []
+    if any(printed.size and not scaled.size for _, printed, scaled in picture.curves):
+        notes.append("Printed only: allows nothing at this temperature, or is no curve that this duty is judged by.")
     if not math.isfinite(picture.T):
         notes.append("The temperature at the chart's reference point is not known, so no curve could be scaled.")
     if spot is None:

@@ -146,10 +146,12 @@ def test_a_factor_of_the_rules_is_named_beside_the_allowed_curves() -> None:
     assert "allowed at 89 °C, 80 % by the rules" in key(figures.draw(result, "safe-area"))
 
 
-def test_a_curve_that_allows_nothing_says_so() -> None:
+def test_a_curve_without_an_allowance_says_so() -> None:
     curves = (("dc", build.DC, np.empty((0, 2))), ("10 ms", build.TEN_MS, build.TEN_MS_HOT))
     result = replace(build.held_line(), safe_area=(build.picture("held-worst-point", curves=curves),))
-    assert "dc: nothing allowed" in texts(figures.draw(result, "safe-area"), "label")
+    figure = figures.draw(result, "safe-area")
+    assert "dc: printed only" in texts(figure, "label")
+    assert any(text.startswith("Printed only: allows nothing") for text in texts(figure, "note"))
 
 
 def test_an_unproven_safe_area_says_why_below_the_picture() -> None:
