@@ -26,4 +26,4 @@ _MODULES = (voltage, current, peak_current, dissipation, safe_area, junction_tem
 LIMITS: tuple[Limit, ...] = tuple(module.find for module in _MODULES)
 NAMES: tuple[str, ...] = tuple(module.NAME for module in _MODULES)
 
-__all__ = ["LIMITS", "NAMES", "Limit"]
+__all__ = ["LIMITS", "NAMES", "Limit", "dissipation", "safe_area"]

@@ -98,7 +98,7 @@ def lines_of(judged: Judged) -> Lines:
         from_air = curve.node == "ambient" and curve.pulse > AMBIENT_LONGEST * (1 + 1e-9)
         if from_air and (operating.sink != "none" or device.thermal.R_th_ja is None):
             left_out.append(
-                f"The {curve.label} curve is drawn for the ambient; it counts only without a heat sink and with R_th_ja "
+                f"The {curve.label} curve is drawn for the ambient; it counts only without a heat sink, with R_th_ja "
                 "stated."
             )
             continue
@@ -107,13 +107,17 @@ def lines_of(judged: Judged) -> Lines:
             continue
         made.append(
             Line(
-                curve=curve, derating=device.soa_derating, T=T_air if from_air else T_case,
-                Z=_Z(judged, curve.pulse, from_air), T_j_max=ratings.T_j.value,
-                rating=_rating(judged, curve.pulse), factor=judged.rules.safe_area.value,
+                curve=curve,
+                derating=device.soa_derating,
+                T=T_air if from_air else T_case,
+                Z=_Z(judged, curve.pulse, from_air),
+                T_j_max=ratings.T_j.value,
+                rating=_rating(judged, curve.pulse),
+                factor=judged.rules.safe_area.value,
                 voltage_scaled=device.mosfet or device.igbt,
                 duty_factor=np.inf if curve.single or curve.duty_factor is None or once else curve.duty_factor,
             )
-        )  # fmt: skip
+        )
     dc = [line for line in made if np.isinf(line.pulse)]
     pulses = sorted((line for line in made if np.isfinite(line.pulse)), key=lambda line: line.pulse)
     return Lines(dc=dc[0] if dc else None, pulses=tuple(pulses), left_out=tuple(left_out))
@@ -147,15 +151,23 @@ def _Z(judged: Judged, pulse: float, from_air: bool) -> FloatArray | None:
 
 
 def allowed(line: Line, v: FloatArray, members: IntArray) -> Allowed:
-    """What a line allows at voltages (case, member, time) of some members (1 or case, member), before the rules' factor."""
+    """What a line allows at voltages (case, member, time), before the rules' factor.
+
+    members (1 or case, member): which members of the duty the voltages belong to.
+    """
     T = np.broadcast_to(line.T, (v.shape[0], line.T.shape[1]))
     if T.shape[1] > 1:
         T = np.take_along_axis(T, np.broadcast_to(members, v.shape[:2]), axis=1)
     return allowed_current(
-        line.curve, v, T=T[..., None], T_j_max=line.T_j_max[:, None, None], derating=line.derating,
-        Z=None if line.Z is None else line.Z[..., None], I_rating=line.rating[:, None, None],
+        line.curve,
+        v,
+        T=T[..., None],
+        T_j_max=line.T_j_max[:, None, None],
+        derating=line.derating,
+        Z=None if line.Z is None else line.Z[..., None],
+        I_rating=line.rating[:, None, None],
         voltage_scaled=line.voltage_scaled,
-    )  # fmt: skip
+    )
 
 
 def share(line: Line, path: Path) -> Share:
@@ -170,8 +182,8 @@ def share(line: Line, path: Path) -> Share:
     return Share(
         r=np.where(judged_here & ~np.isnan(raw), np.minimum(raw, NOTHING), 0.0),
         raw=np.where(path.counted, raw, 0.0),
-        beyond=unknown.any(axis=2),
-        zero=none.any(axis=2),
+        beyond=np.asarray(np.any(unknown, axis=2), dtype=np.bool_),
+        zero=np.asarray(np.any(none, axis=2), dtype=np.bool_),
     )
 
 

@@ -44,20 +44,27 @@ def _one(judged: Judged, line: Line, decided: Verdict, v: FloatArray) -> tuple[T
     if line.voltage_scaled:
         at = derived(f"V_{name}", f"V / {factor.symbol}", "V", V, factor)
     printed = _printed(line, at, name)
-    scaled = printed if line.voltage_scaled else derived(f"I_{name}_scaled", f"{printed.symbol} * {factor.symbol}", "A",
-                                                         printed, factor)  # fmt: skip
+    scaled = (
+        printed
+        if line.voltage_scaled
+        else derived(f"I_{name}_scaled", f"{printed.symbol} * {factor.symbol}", "A", printed, factor)
+    )
     parts = [scaled]
     k = judged.rules.safe_area.named("k_SOA")
     if line.Z is not None:
-        Z = found(f"Z_{name}", line.Z[:, 0], "K/W", "thermal resistance from the junction for this width: R_th for dc, "
-                  "Z_th of the ladder for a pulse")  # fmt: skip
+        Z = found(
+            f"Z_{name}",
+            line.Z[:, 0],
+            "K/W",
+            "thermal resistance from the junction for this width: R_th for dc, Z_th of the ladder for a pulse",
+        )
         parts.append(derived(f"I_{name}_heat", f"(T_j_max - {T.symbol}) / ({Z.symbol} * V)", "A", T_j_max, T, Z, V))
     rating = given("I_rating", line.rating, "A", "current rating for this pulse width")
     names = ", ".join(part.symbol for part in parts)
     total = derived(f"I_{name}_allowed", f"k_SOA * min(I_rating, {names})", "A", k, rating, *parts)
     if bool(np.all(np.isclose(total.value, value, rtol=1e-9, equal_nan=True))):
         return (*_order(T, factor, printed, parts), total)
-    how = "k_SOA times the least of rating, flat, scaled curve (continued under the flat at its slope) and dissipation line"
+    how = "k_SOA times the least of rating, flat, scaled curve (it goes on under the flat) and dissipation line"
     return (*_order(T, factor, printed, parts), found(f"I_{name}_allowed", value, "A", how, k, rating, *parts))
 
 
@@ -71,11 +78,15 @@ def _factor(line: Line, T: Traced, T_ref: Traced, T_j_max: Traced, name: str) ->
     like = line.Z is None or derating.convention == "like-dissipation"
     if like:
         source = derating.source if derating.stated else f"{COMMON_PRACTICE}: the cautious convention"
-        return derived(symbol, f"max(0, min(1, (T_j_max - {T.symbol}) / (T_j_max - T_ref)))", "1", T_j_max, T, T_ref,
-                       source=source)  # fmt: skip
+        return derived(
+            symbol, f"max(0, min(1, (T_j_max - {T.symbol}) / (T_j_max - T_ref)))", "1", T_j_max, T, T_ref, source=source
+        )
     value = breakdown_factor(derating, T.value, line.curve.T_ref, T_j_max.value)
-    how = "chart drawn for T_j at its maximum: not derated" if derating.convention == "held" else "read at T from the " \
-          "device's own derating curve"  # fmt: skip
+    how = (
+        "chart drawn for T_j at its maximum: not derated"
+        if derating.convention == "held"
+        else "read at T from the device's own derating curve"
+    )
     return found(symbol, value, "1", how, T, source=derating.source)
 
 
@@ -88,11 +99,20 @@ def _printed(line: Line, at: Traced, name: str) -> Traced:
     if len(points) == 1 or bool(np.all(v <= corner[0])):
         return given(symbol, corner[1], "A", f"{source}: the flat of the curve", line.curve.grade)
     k = np.clip(np.searchsorted(points[:, 0], v), 1, len(points) - 1)
-    ends = [given(f"{what}_{n}", points[k - 2 + n, column], unit, f"{source}: printed point")
-            for n in (1, 2) for column, what, unit in ((0, "V", "V"), (1, "I", "A"))]  # fmt: skip
+    ends = [
+        given(f"{what}_{n}", points[k - 2 + n, column], unit, f"{source}: printed point")
+        for n in (1, 2)
+        for column, what, unit in ((0, "V", "V"), (1, "I", "A"))
+    ]
     if bool(np.all((v > corner[0]) | np.isnan(v))):
         formula = f"I_1 * ({at.symbol} / V_1) ** (ln(I_2 / I_1) / ln(V_2 / V_1))"
         return derived(symbol, formula, "A", at, *ends, source="straight on log-log paper", grade=line.curve.grade)
     value = np.exp(np.interp(np.log(np.maximum(v, 1e-12)), np.log(points[:, 0]), np.log(points[:, 1])))
-    return found(symbol, value, "A", "straight on log-log paper between printed points, flat left of the corner", at,
-                 source=source)  # fmt: skip
+    return found(
+        symbol,
+        value,
+        "A",
+        "straight on log-log paper between printed points, flat left of the corner",
+        at,
+        source=source,
+    )

@@ -15,6 +15,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from soacheck.limit.body_diode import body_diode
 from soacheck.limit.duration import HAIR, bisect, exact_where_it_matters, longest_run
 from soacheck.limit.found import (
     Note,
@@ -33,13 +34,13 @@ from soacheck.limit.judged import Judged
 from soacheck.locus import Use
 from soacheck.result import Finding, Status
 from soacheck.table import Missing
-from soacheck.trace import FloatArray, IntArray, Traced, derived, found
+from soacheck.trace import BoolArray, FloatArray, IntArray, Traced, derived, found
 
 NAME = "current"
 
 
 def find(judged: Judged) -> tuple[Finding, ...]:
-    """One finding; a second one where a body diode conducts."""
+    """One finding: forward conduction, or the body diode where that uses more of its own rating."""
     rating = judged.device.max.I_max
     basis = f"rms, or the level held longer than the peak rating's pulse, <= k_I * {rating.symbol}"
     if judged.device.mosfet:
@@ -49,10 +50,8 @@ def find(judged: Judged) -> tuple[Finding, ...]:
         return (without_locus(judged, limit=NAME, basis=basis, unit="A"),)
     i = np.broadcast_to(locus.i, (judged.cases, *locus.shape[1:]))
     lasting = lasting_current(judged, np.maximum(i, 0.0))
-    findings = [_forward(judged, lasting, basis)]
-    if not judged.device.bipolar and bool(np.any(i < 0)):
-        findings.append(_body_diode(judged, lasting_current(judged, np.maximum(-i, 0.0))))
-    return tuple(findings)
+    diode = lasting_current(judged, np.maximum(-i, 0.0)) if not judged.device.bipolar else None
+    return (_found(judged, lasting, diode, basis),)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -75,7 +74,7 @@ def lasting_current(judged: Judged, i: FloatArray) -> Lasting:
     if locus.use is Use.HELD:
         zero = np.zeros((cases, members), dtype=np.int64)
         return Lasting(value=peak, at=zero, level=peak, rms=peak)
-    t = locus.t
+    t, use = locus.t, locus.use
     dt = np.diff(t, axis=2)
     a, b = i[..., :-1], i[..., 1:]
     with np.errstate(divide="ignore", invalid="ignore"):
@@ -91,12 +90,10 @@ def lasting_current(judged: Judged, i: FloatArray) -> Lasting:
 
         def exact(pick: IntArray) -> FloatArray:
             some = np.take_along_axis(i, pick[..., None], axis=1)
-            t_some = np.take_along_axis(t, pick[..., None], axis=1) if t.shape[1] > 1 and t.shape[0] == cases else t
-            if t.shape[1] > 1 and t.shape[0] != cases:
-                t_some = np.take_along_axis(np.broadcast_to(t, i.shape), pick[..., None], axis=1)
+            when = t if t.shape[1] == 1 else np.take_along_axis(np.broadcast_to(t, i.shape), pick[..., None], axis=1)
 
-            def fails(level: FloatArray) -> np.ndarray[tuple[int, ...], np.dtype[np.bool_]]:
-                return longest_run(t_some, some, level, locus.use).duration > width
+            def fails(level: FloatArray) -> BoolArray:
+                return longest_run(when, some, level, use).duration > width
 
             low = np.take_along_axis(floor, pick, axis=1)
             return bisect(fails, low, np.take_along_axis(peak, pick, axis=1))
@@ -121,7 +118,7 @@ def continuous_rating(judged: Judged) -> tuple[Traced, FloatArray]:
     return plain, plain.value[:, None] * share
 
 
-def _forward(judged: Judged, lasting: Lasting, basis: str) -> Finding:
+def _found(judged: Judged, lasting: Lasting, diode: Lasting | None, basis: str) -> Finding:
     ratings = judged.device.max
     plain, allowed = continuous_rating(judged)
     use = ratio(lasting.value, allowed)
@@ -129,18 +126,35 @@ def _forward(judged: Judged, lasting: Lasting, basis: str) -> Finding:
     if judged.device.mosfet:
         notes += temperature_unknown(judged, judged.operating.T_case)
         notes += nothing_allowed(allowed, "The case is at the junction's limit or above it: no current is allowed.")
-        cold = lasting.value > plain.value[:, None]
-        unknown = np.isnan(use) & ~np.isnan(lasting.value) & np.isnan(allowed) & cold
-        notes.append(Note(text="The current is above the rating at any case temperature.", holds=unknown,
-                          best=Status.EXCEEDS))  # fmt: skip
-    notes += _pulse_missing(judged, lasting)
+        cold = np.isnan(allowed) & (lasting.value > plain.value[:, None])
+        text = "The current is above the rating at any case temperature."
+        notes.append(Note(text=text, holds=cold, best=Status.EXCEEDS))
+    notes += _pulse_missing(judged)
+    third = body_diode(judged, diode.value, use, allowed) if diode is not None else None
+    if diode is not None and third is not None:
+        use, notes = third.use, [*notes, *third.notes]
+        lasting = Lasting(
+            value=np.where(third.governs, diode.value, lasting.value),
+            at=np.where(third.governs, diode.at, lasting.at),
+            level=np.where(third.governs, diode.level, lasting.level),
+            rms=np.where(third.governs, diode.rms, lasting.rms),
+        )
+        basis += "; body diode: the same against k_I * I_S"
     notes += typical(plain, ratings.T_j if judged.device.mosfet else None)
     decided = verdict(judged, use, notes)
     limit = plain if not judged.device.mosfet else _derated(judged, decided, plain)
+    if third is not None:
+        limit = third.limit(judged, decided, limit)
     return finding(
-        judged, decided, limit=NAME, basis=basis, unit="A", allowed=limit, point=point_at(judged, decided, lasting.at),
-        applied=_applied(judged, decided, lasting, "I_lasting"),
-    )  # fmt: skip
+        judged,
+        decided,
+        limit=NAME,
+        basis=basis,
+        unit="A",
+        allowed=limit,
+        point=point_at(judged, decided, lasting.at),
+        applied=_applied(judged, decided, lasting),
+    )
 
 
 def _derated(judged: Judged, decided: Verdict, plain: Traced) -> Traced:
@@ -150,50 +164,38 @@ def _derated(judged: Judged, decided: Verdict, plain: Traced) -> Traced:
     return derived(
         "I_allowed",
         f"k_I * {rating.symbol} * sqrt(max(0, min(1, (T_j_max - T_case) / (T_j_max - T_ref))))",
-        "A", k, rating, ratings.T_j.named("T_j_max"), T, ratings.T_case.named("T_ref"),
-    )  # fmt: skip
+        "A",
+        k,
+        rating,
+        ratings.T_j.named("T_j_max"),
+        T,
+        ratings.T_case.named("T_ref"),
+    )
 
 
-def _applied(judged: Judged, decided: Verdict, lasting: Lasting, symbol: str) -> Traced:
+def _applied(judged: Judged, decided: Verdict, lasting: Lasting) -> Traced:
     rms, level = decided.of(lasting.rms), decided.of(lasting.level)
     value = decided.of(lasting.value)
     locus = judged.operating.locus
     if locus is not None and locus.use is Use.HELD:
-        return found(symbol, value, "A", "current of the held point")
-    how = "larger of the rms current and the level held longer than the peak rating's pulse"
+        return found("I_lasting", value, "A", "current of the held point")
     parts = (
         found("I_rms", rms, "A", "exact mean of i^2 over straight segments"),
         found("I_level", level, "A", "level held without a break for longer than the peak rating's pulse"),
     )
-    return found(symbol, value, "A", how, *parts)
+    if bool(np.all(value == np.maximum(rms, level))):
+        return derived("I_lasting", "max(I_rms, I_level)", "A", *parts)
+    return found("I_lasting", value, "A", "level held longer than the peak rating's pulse; one shot has no rms", *parts)
 
 
-def _pulse_missing(judged: Judged, lasting: Lasting) -> tuple[Note, ...]:
+def _pulse_missing(judged: Judged) -> tuple[Note, ...]:
     ratings, locus = judged.device.max, judged.operating.locus
     if ratings.I_peak is None or ratings.I_peak_pulse is not None or locus is None or locus.use is Use.HELD:
         return ()
     over = locus.i_peak > judged.rules.current.value[:, None] * ratings.I_max.value[:, None]
     missing = Missing(key=f"max.{ratings.I_peak.symbol}_pulse", where="pulse width stated with the peak current rating")
-    text = f"{ratings.I_peak.symbol} is stated without the pulse width it holds for, and the current goes above " \
-           f"{ratings.I_max.symbol}."  # fmt: skip
+    text = (
+        f"{ratings.I_peak.symbol} is stated without the pulse width it holds for, and the current goes above "
+        f"{ratings.I_max.symbol}."
+    )
     return (Note(text=text, holds=over, best=Status.UNPROVEN, missing=(missing,)),)
-
-
-def _body_diode(judged: Judged, lasting: Lasting) -> Finding:
-    rating = judged.device.max.I_S
-    basis = "body diode: rms, or the level held longer than the peak rating's pulse, <= k_I * I_S"
-    notes: list[Note] = [*sharing(judged)]
-    if rating is None:
-        missing = Missing(key="max.I_S", where="source-drain (body) diode: continuous current")
-        notes.append(Note(text="Current flows through the body diode and its rating I_S is not stated.",
-                          holds=lasting.value > 0, best=Status.UNPROVEN, missing=(missing,)))  # fmt: skip
-        allowed, use = None, np.where(lasting.value > 0, np.nan, 0.0)
-    else:
-        allowed = derived("I_allowed", f"k_I * {rating.symbol}", "A", judged.rules.current.named("k_I"), rating)
-        use = ratio(lasting.value, allowed.value[:, None])
-        notes += typical(allowed)
-    decided = verdict(judged, use, notes)
-    return finding(
-        judged, decided, limit=NAME, basis=basis, unit="A", allowed=allowed,
-        applied=_applied(judged, decided, lasting, "I_diode"), point=point_at(judged, decided, lasting.at),
-    )  # fmt: skip

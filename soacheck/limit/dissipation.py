@@ -51,18 +51,28 @@ def find(judged: Judged) -> tuple[Finding, ...]:
     ]
     if rated is not None:
         cap = judged.rules.power.value[:, None] * rated.value[:, None]
-        notes.append(Note(text="The dissipation is above P_tot at any case temperature.",
-                          holds=np.isnan(allowed) & (applied > cap), best=Status.EXCEEDS))  # fmt: skip
+        notes.append(
+            Note(
+                text="The dissipation is above P_tot at any case temperature.",
+                holds=np.isnan(allowed) & (applied > cap),
+                best=Status.EXCEEDS,
+            )
+        )
     decided = verdict(judged, ratio(applied, allowed), notes)
     at = np.zeros(allowed.shape, dtype=np.int64)
     point = point_at(judged, decided, at) if locus.use is Use.HELD else None
     return (
         finding(
-            judged, decided, limit=NAME, basis=basis, unit="W", point=point,
+            judged,
+            decided,
+            limit=NAME,
+            basis=basis,
+            unit="W",
+            point=point,
             applied=found("P_mean", decided.of(applied), "W", "exact mean of v * i over the locus"),
             allowed=_traced(judged, decided),
         ),
-    )  # fmt: skip
+    )
 
 
 def allowed_power(judged: Judged) -> FloatArray:
@@ -86,7 +96,16 @@ def _traced(judged: Judged, decided: Verdict) -> Traced | None:
     k, T_j = judged.rules.power.named("k_P"), ratings.T_j.named("T_j_max")
     if ratings.P_tot is None:
         T_ref = ratings.T_case.named("T_ref")
-        return derived("P_allowed", "k_P * (T_j_max - max(T_case, T_ref)) / R_th_jc", "W", k, T_j, T, T_ref,
-                       R.named("R_th_jc"))  # fmt: skip
-    return derived("P_allowed", "k_P * min(P_tot, (T_j_max - T_case) / R_th_jc)", "W", k, ratings.P_tot.named("P_tot"),
-                   T_j, T, R.named("R_th_jc"))  # fmt: skip
+        return derived(
+            "P_allowed", "k_P * (T_j_max - max(T_case, T_ref)) / R_th_jc", "W", k, T_j, T, T_ref, R.named("R_th_jc")
+        )
+    return derived(
+        "P_allowed",
+        "k_P * min(P_tot, (T_j_max - T_case) / R_th_jc)",
+        "W",
+        k,
+        ratings.P_tot.named("P_tot"),
+        T_j,
+        T,
+        R.named("R_th_jc"),
+    )

@@ -1,8 +1,8 @@
 """drive: what the base or gate gets, against its ratings and against what saturation needs.
 
-Rules: reverse base-emitter voltage <= k_V * V_EBO, gate voltage of either sign <= k_V * V_GSS, base current <= k_I * I_B.
-A bipolar transistor that the duty relies on to saturate needs I_on <= h_FE_min * I_B, with the least gain stated at that
-current or above it; a MOSFET's R_DS_on counts only at the V_GS it is stated for, or more.
+Rules: reverse base-emitter voltage <= k_V * V_EBO, gate voltage of either sign <= k_V * V_GSS, base current <= k_I *
+I_B. A bipolar transistor that the duty relies on to saturate needs I_on <= h_FE_min * I_B, with the least gain stated
+at that current or above it; a MOSFET's R_DS_on counts only at the V_GS it is stated for, or more.
 Source: limiting values of IEC 60747-7 and 60747-8; the least gain decides, never the typical one (common practice).
 Range: what the stage states; where it states no drive there is nothing to judge.
 """
@@ -94,8 +94,9 @@ def _base(judged: Judged, drive: Drive) -> Finding | None:
     basis = "I_B <= k_I * I_B_max"
     if rating is None:
         missing = Missing(key="max.I_B", where="maximum ratings: base current")
-        return _made(judged, drive.I_B, None, basis, "A",
-                     (*sharing(judged), *_lacks("The rating I_B is not stated.", missing)))  # fmt: skip
+        return _made(
+            judged, drive.I_B, None, basis, "A", (*sharing(judged), *_lacks("The rating I_B is not stated.", missing))
+        )
     allowed = derived("I_B_allowed", "k_I * I_B_max", "A", judged.rules.current.named("k_I"), rating.named("I_B_max"))
     return _made(judged, drive.I_B, allowed, basis, "A", sharing(judged))
 
@@ -108,21 +109,35 @@ def _saturation(judged: Judged, drive: Drive) -> Finding | None:
         missing = Missing(key="load.I_B", where="base current while the transistor is on: the drive circuit")
         return _made(judged, drive.I_on, None, basis, "A", _lacks("The base current while on is not stated.", missing))
     if drive.I_on is None:
-        return _made(judged, None, None, basis, "A",
-                     _lacks("The current to be carried while on is not known.", *judged.duty.unknown))  # fmt: skip
+        return _made(
+            judged,
+            None,
+            None,
+            basis,
+            "A",
+            _lacks("The current to be carried while on is not known.", *judged.duty.unknown),
+        )
     gain, at = judged.device.typical.h_FE, judged.device.typical.h_FE_I_C
     least = gain.min if gain is not None else None
     if least is None:
-        text = "Whether saturation is reached needs the least gain; a typical gain does not decide. A forced gain of 10 to " \
-               "20 is common practice."  # fmt: skip
+        text = (
+            "Whether saturation is reached needs the least gain; a typical gain does not decide. A forced gain of 10 "
+            "to 20 is common practice."
+        )
         return _made(judged, drive.I_on, None, basis, "A", _lacks(text, GAIN_MISSING))
     notes = [*sharing(judged)]
     if at is None:
         notes += _lacks("The current that the gain is stated at is not given.", GAIN_I_MISSING)
     else:
         beyond = np.broadcast_to(drive.I_on.value > at.value * (1 + 1e-9), (judged.cases,))[:, None]
-        notes.append(Note(text="The least gain is stated at a lower current than has to be carried, where it is higher.",
-                          holds=beyond, best=Status.UNPROVEN, missing=(GAIN_MISSING,)))  # fmt: skip
+        notes.append(
+            Note(
+                text="The least gain is stated at a lower current than has to be carried, where it is higher.",
+                holds=beyond,
+                best=Status.UNPROVEN,
+                missing=(GAIN_MISSING,),
+            )
+        )
     allowed = derived("I_saturated", "h_FE_min * I_B", "A", least.named("h_FE_min"), drive.I_B.named("I_B"))
     return _made(judged, drive.I_on, allowed, basis, "A", tuple(notes))
 
@@ -134,14 +149,22 @@ def _on_state(judged: Judged, drive: Drive) -> Finding | None:
     needed = judged.device.typical.R_DS_on_V_GS
     if needed is None:
         missing = Missing(key="typical.R_DS_on_V_GS", where="gate voltage beside the on-resistance in its table")
-        return _made(judged, None, drive.V_on, basis, "V",
-                     _lacks("R_DS_on is stated without the gate voltage it holds for.", missing))  # fmt: skip
+        return _made(
+            judged,
+            None,
+            drive.V_on,
+            basis,
+            "V",
+            _lacks("R_DS_on is stated without the gate voltage it holds for.", missing),
+        )
     if drive.V_on is None:
         missing = Missing(key="load.V_GS", where="gate-source voltage while on: the drive circuit")
         return _made(judged, needed, None, basis, "V", _lacks("The gate voltage while on is not stated.", missing))
     low = np.broadcast_to(drive.V_on.value < needed.value * (1 - 1e-9), (judged.cases,))[:, None]
-    text = "The gate voltage is lower than the one R_DS_on is stated for; nothing is known of the on-state there. The " \
-           "threshold voltage does not mean on."  # fmt: skip
+    text = (
+        "The gate voltage is lower than the one R_DS_on is stated for; nothing is known of the on-state there. The "
+        "threshold voltage does not mean on."
+    )
     missing = Missing(key="typical.R_DS_on", where="on-resistance at this gate voltage")
     note = Note(text=text, holds=low, best=Status.UNPROVEN, missing=(missing,))
     # Not a rating: meeting the stated condition is all that is wanted, and falling short proves nothing either way.

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from typing import TypeVar
 
 import numpy as np
 
@@ -17,7 +18,8 @@ from soacheck.result import Finding, Reason, Status, Where, status_of
 from soacheck.table import Missing
 from soacheck.trace import BoolArray, FloatArray, IntArray, Traced
 
-NEVER = np.zeros((1, 1), dtype=np.bool_)
+A = TypeVar("A", FloatArray, IntArray, BoolArray)
+
 ALWAYS = np.ones((1, 1), dtype=np.bool_)
 
 
@@ -40,15 +42,10 @@ class Verdict:
     member: IntArray
     notes: tuple[Note, ...]
 
-    def of(self, array: FloatArray) -> FloatArray:
+    def of(self, array: A) -> A:
         """(case,) values of the worst member; `array` broadcasts to (case, member)."""
         full = np.broadcast_to(array, self.status.shape)
-        return np.asarray(np.take_along_axis(full, self.member[:, None], axis=1)[:, 0])
-
-    def holds(self, mask: BoolArray) -> BoolArray:
-        """The same for a mask."""
-        full = np.broadcast_to(mask, self.status.shape)
-        return np.asarray(np.take_along_axis(full, self.member[:, None], axis=1)[:, 0], dtype=np.bool_)
+        return np.take_along_axis(full, self.member[:, None], axis=1)[:, 0]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -94,14 +91,16 @@ def point_at(judged: Judged, decided: Verdict, time: IntArray) -> Point:
     locus = judged.operating.locus
     if locus is None:
         return nowhere(judged.cases)
-    index = time if time.ndim == 1 else decided.of(time).astype(np.int64)
+    index = time if time.ndim == 1 else decided.of(time)
 
-    def pick(array: FloatArray) -> FloatArray:
-        full = np.broadcast_to(array, (*decided.status.shape, locus.shape[2]))
-        return np.asarray(full[np.arange(judged.cases), decided.member, index])
+    times = locus.shape[2]
+
+    def pick(array: A) -> A:
+        full = np.broadcast_to(array, (*decided.status.shape, times))
+        return full[np.arange(judged.cases), decided.member, index]
 
     v, i = pick(locus.v), pick(locus.i)
-    region = regions(judged.device, v, i) if locus.region is None else pick(locus.region).astype(np.int64)
+    region = regions(judged.device, v, i) if locus.region is None else pick(locus.region)
     return Point(t=pick(locus.t), v=v, i=i, region=region)
 
 
@@ -125,15 +124,24 @@ def finding(
     value = np.where(known, _member_value(judged, decided), np.nan) if members.name else np.full(judged.cases, np.nan)
     reasons = []
     for note in decided.notes:
-        applies = decided.holds(note.holds)
+        applies = decided.of(note.holds)
         if bool(np.any(applies)):
             reasons.append(Reason(text=note.text, applies=applies, missing=note.missing))
     return Finding(
-        limit=limit, duty=judged.duty.name, half=judged.duty.half, applied=applied, allowed=allowed, unit=unit,
-        utilisation=decided.of(decided.utilisation), status=decided.of(decided.status).astype(np.int64),
-        where=Where(t=point.t, v=point.v, i=point.i, region=point.region, member=value), member_name=members.name,
-        basis=basis, reasons=(*reasons, *more), trace=trace,
-    )  # fmt: skip
+        limit=limit,
+        duty=judged.duty.name,
+        half=judged.duty.half,
+        applied=applied,
+        allowed=allowed,
+        unit=unit,
+        utilisation=decided.of(decided.utilisation),
+        status=decided.of(decided.status),
+        where=Where(t=point.t, v=point.v, i=point.i, region=point.region, member=value),
+        member_name=members.name,
+        basis=basis,
+        reasons=(*reasons, *more),
+        trace=trace,
+    )
 
 
 def _member_value(judged: Judged, decided: Verdict) -> FloatArray:
@@ -170,9 +178,13 @@ def temperature_unknown(judged: Judged, T: FloatArray) -> tuple[Note, ...]:
     keys = ", ".join(missing.key for missing in judged.operating.missing)
     because = f": {keys} is not stated" if keys else ""
     return (
-        Note(text=f"The temperatures are not known{because}.", holds=unknown, best=Status.UNPROVEN,
-             missing=judged.operating.missing),
-    )  # fmt: skip
+        Note(
+            text=f"The temperatures are not known{because}.",
+            holds=unknown,
+            best=Status.UNPROVEN,
+            missing=judged.operating.missing,
+        ),
+    )
 
 
 def typical(*values: Traced | None, holds: BoolArray = ALWAYS) -> tuple[Note, ...]:

@@ -1,9 +1,9 @@
 """The hot spot's own step response, read from the family of safe-area curves at one voltage.
 
-What the curves allow for a pulse of width t_p is, turned over, how far the hottest cell has come after t_p on its way to
-what dc does to it: g(t_p) = I_dc/I(t_p), straight on log-log paper between the printed pulses, dc placed one decade above
-the longest, and constant below the shortest. The same sum of first-order modes that carries Z_th carries g; its gains
-are not all positive, because g stands still below the shortest pulse and past dc, which no passive network does.
+What the curves allow for a pulse of width t_p is, turned over, how far the hottest cell has come after t_p on its way
+to what dc does to it: g(t_p) = I_dc/I(t_p), straight on log-log paper between the printed pulses, dc placed one decade
+above the longest, and constant below the shortest. The same sum of first-order modes that carries Z_th carries g; its
+gains are not all positive, because g stands still below the shortest pulse and past dc, which no passive network does.
 Source: our own derivation; it rests on superposition and on the curves alone.
 """
 
@@ -70,7 +70,7 @@ def fit(times: FloatArray, g: FloatArray) -> HotSpot:
     HotSpot
         The sum of modes nearest to g in relative least squares, equal to g at once and in the end.
 
-    Range: any number of cases and members in one call; the printed pulses are met to about 1 %, a bend between them to 4 %.
+    Range: any number of cases and members in one call; printed pulses are met to about 1 %, bends to 4 %.
     """
     first, last = times[0], times[-1]
     t = np.geomspace(first / 30, last * 30, round(np.log10(900 * last / first) * TIMES_PER_DECADE) + 1)
@@ -83,7 +83,10 @@ def fit(times: FloatArray, g: FloatArray) -> HotSpot:
     rows = -np.expm1(-t[:, None] / tau) * weight[..., None] * scale[..., None, :]
     seen = np.swapaxes(rows, -1, -2)
     normal = seen @ rows + SMOOTH * np.eye(count) + AT_END * scale[..., :, None] * scale[..., None, :]
-    right = seen @ ((target - offset[..., None]) * weight)[..., None] + AT_END * (scale * (1 - offset)[..., None])[..., None]
+    right = (
+        seen @ ((target - offset[..., None]) * weight)[..., None]
+        + AT_END * (scale * (1 - offset)[..., None])[..., None]
+    )
     gain = np.linalg.solve(normal, right)[..., 0] * scale
     spot = HotSpot(tau=tau, gain=gain, offset=offset, short=np.ones(offset.shape))
     reached = spot.step(times[:-1]) if len(times) > 1 else g

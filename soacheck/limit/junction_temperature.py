@@ -1,8 +1,8 @@
 """junction-temperature: the greatest junction temperature against the rating or the stage's own limit.
 
-Rule: T_j_peak <= the least of the rating, the stage's T_j_max and the rating less T_j_below_max. Utilisation counts both
-from T_ambient. Without Z_th_jc the ripple is not known: the bound T_case + R_th_jc * P_peak decides what is allowed, the
-mean junction temperature what exceeds, and between the two nothing is proven.
+Rule: T_j_peak <= the least of the rating, the stage's T_j_max and the rating less T_j_below_max. Utilisation counts
+both from T_ambient. Without Z_th_jc the ripple is not known: the bound T_case + R_th_jc * P_peak decides what is
+allowed, the mean junction temperature what exceeds, and between the two nothing is proven.
 Source: definition of the virtual junction temperature of IEC 60747-1; superposition of the thermal network's modes.
 Range: every duty; an ambient at or above the limit exceeds whatever the power.
 """
@@ -27,7 +27,7 @@ from soacheck.limit.judged import Judged
 from soacheck.locus import Use
 from soacheck.result import Finding, Status
 from soacheck.table import Missing
-from soacheck.trace import FloatArray, Traced, derived, found
+from soacheck.trace import BoolArray, FloatArray, Traced, derived, found
 
 NAME = "junction-temperature"
 Z_MISSING = Missing(key="thermal.Z_th_jc", where="transient thermal impedance, single pulse, junction to case")
@@ -64,25 +64,36 @@ def find(judged: Judged) -> tuple[Finding, ...]:
             *sharing(judged),
             *temperature_unknown(judged, np.broadcast_to(operating.T_j_bound, shape)),
             Note(text="The ambient is at the junction's limit or above it.", holds=span <= 0, best=Status.EXCEEDS),
-            Note(text="Without Z_th_jc the ripple of the junction is not known; the bound T_case + R_th_jc * P_peak is "
-                 "above the limit and the mean is below it.", holds=open_, best=Status.UNPROVEN, missing=(Z_MISSING,)),
+            Note(
+                text="Without Z_th_jc the ripple of the junction is not known; the bound T_case + R_th_jc * P_peak is "
+                "above the limit and the mean is below it.",
+                holds=open_,
+                best=Status.UNPROVEN,
+                missing=(Z_MISSING,),
+            ),
             Note(text="Z_th_jc is not stated: the bound T_case + R_th_jc * P_peak is judged.", holds=ripple),
             Note(text="Z_th_jc is not stated: the mean junction temperature alone is above the limit.", holds=by_mean),
             *typical(operating.R_th_jc, limit),
             *typical_named(_transient(judged)),
         ),
-    )  # fmt: skip
+    )
     value = np.where(known, operating.T_j_peak, np.where(by_mean, operating.T_j_mean, operating.T_j_bound))
     at = np.argmax(np.where(np.isnan(operating.T_j), -np.inf, operating.T_j), axis=2)
     p_at = np.argmax(np.broadcast_to(locus.p, locus.shape), axis=2)
     at = np.where(known, np.broadcast_to(at, shape), np.broadcast_to(p_at, shape))
     return (
         finding(
-            judged, decided, limit=NAME, basis=basis, unit="degC", point=point_at(judged, decided, at),
-            applied=_applied(judged, decided, value, known, by_mean), allowed=limit,
+            judged,
+            decided,
+            limit=NAME,
+            basis=basis,
+            unit="degC",
+            point=point_at(judged, decided, at),
+            applied=_applied(judged, decided, value, known, by_mean),
+            allowed=limit,
             trace=() if ambient is None else (ambient,),
         ),
-    )  # fmt: skip
+    )
 
 
 def limit_of(judged: Judged) -> Traced:
@@ -106,9 +117,7 @@ def _transient(judged: Judged) -> tuple[str, ...]:
     return ("Z_th_jc",) if used and judged.device.thermal.grade == "typical" else ()
 
 
-def _applied(
-    judged: Judged, decided: Verdict, value: FloatArray, known: FloatArray, by_mean: FloatArray
-) -> Traced:
+def _applied(judged: Judged, decided: Verdict, value: FloatArray, known: BoolArray, by_mean: BoolArray) -> Traced:
     """T_j as a formula where it is one in every case: held points, the bound, the mean."""
     operating = judged.operating
     locus, R = operating.locus, operating.R_th_jc
@@ -118,8 +127,12 @@ def _applied(
     if R is not None and locus is not None and locus.use is not Use.ONCE:
         case = found("T_case", decided.of(operating.T_case), "degC", "heat path of the duty")
         mean = held or bool(np.all(decided.of(by_mean)))
-        power = found("P_mean" if mean else "P_peak", decided.of(operating.P_mean if mean else operating.P_peak), "W",
-                      "exact mean of v * i" if mean else "greatest v * i")  # fmt: skip
+        power = found(
+            "P_mean" if mean else "P_peak",
+            decided.of(operating.P_mean if mean else operating.P_peak),
+            "W",
+            "exact mean of v * i" if mean else "greatest v * i",
+        )
         formula = derived("T_j_peak", f"T_case + R_th_jc * {power.symbol}", "degC", case, R.named("R_th_jc"), power)
         if bool(np.all(np.isclose(formula.value, T, rtol=1e-9, equal_nan=True))):
             return formula

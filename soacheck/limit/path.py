@@ -45,10 +45,11 @@ def path_of(judged: Judged, members: IntArray) -> Path:
     locus = judged.operating.locus
     if locus is None:
         raise ValueError("a duty without a locus has no path")
-    shape = (judged.cases, members.shape[1], locus.shape[2])
+    count, times = locus.shape[1:]
+    shape = (judged.cases, members.shape[1], times)
 
     def some(a: A) -> A:
-        if a.shape[1] == 1 and locus.shape[1] > 1:
+        if a.shape[1] == 1 and count > 1:
             return a
         if members.shape[0] == 1:
             return a[:, members[0]]
@@ -65,10 +66,16 @@ def path_of(judged: Judged, members: IntArray) -> Path:
         marked = np.broadcast_to(some(_three(locus.turn_off)), shape)
         off = _doubled(marked, marked[..., :-1] & (marked[..., 1:] | step))
     return Path(
-        t=_doubled(t, (t[..., :-1] + t[..., 1:]) / 2), v=v, i=i, region=region, turn_off=off, members=members, use=locus.use,
+        t=_doubled(t, (t[..., :-1] + t[..., 1:]) / 2),
+        v=v,
+        i=i,
+        region=region,
+        turn_off=off,
+        members=members,
+        use=locus.use,
         counted=(region != laws.SATURATION) & (v > 0) & (i > 0) & ~off,
         conducts=i > laws.leakage_level(judged.device),
-    )  # fmt: skip
+    )
 
 
 def _doubled(a: A, middle: A) -> A:

@@ -10,6 +10,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from soacheck.limit.body_diode import body_diode
 from soacheck.limit.duration import HAIR, longest_run
 from soacheck.limit.found import (
     Note,
@@ -31,7 +32,7 @@ NAME = "peak-current"
 
 
 def find(judged: Judged) -> tuple[Finding, ...]:
-    """One finding; a second one where a body diode conducts."""
+    """One finding: forward conduction, or the body diode where that uses more of its own rating."""
     ratings, locus = judged.device.max, judged.operating.locus
     peak_rating = ratings.I_peak
     symbol = ratings.I_max.symbol if peak_rating is None else peak_rating.symbol
@@ -43,13 +44,11 @@ def find(judged: Judged) -> tuple[Finding, ...]:
     if locus is None:
         return (without_locus(judged, limit=NAME, basis=basis, unit="A"),)
     i = np.broadcast_to(locus.i, (judged.cases, *locus.shape[1:]))
-    findings = [_forward(judged, np.maximum(i, 0.0), basis)]
-    if not judged.device.bipolar and bool(np.any(i < 0)):
-        findings.append(_body_diode(judged, np.maximum(-i, 0.0)))
-    return tuple(findings)
+    diode = np.maximum(-i, 0.0) if not judged.device.bipolar else None
+    return (_found(judged, np.maximum(i, 0.0), diode, basis),)
 
 
-def _forward(judged: Judged, i: FloatArray, basis: str) -> Finding:
+def _found(judged: Judged, i: FloatArray, diode: FloatArray | None, basis: str) -> Finding:
     ratings, locus = judged.device.max, judged.operating.locus
     if locus is None:
         raise ValueError("a duty without a locus has no current")
@@ -64,26 +63,42 @@ def _forward(judged: Judged, i: FloatArray, basis: str) -> Finding:
         over = run > 0
         if ratings.I_peak_pulse is None:
             key = f"max.{ratings.I_peak.symbol}_pulse"
-            text = f"The current goes above {ratings.I_max.symbol}, and {ratings.I_peak.symbol} is stated without the " \
-                   "pulse width it holds for."  # fmt: skip
+            text = (
+                f"The current goes above {ratings.I_max.symbol}, and {ratings.I_peak.symbol} is stated without the "
+                "pulse width it holds for."
+            )
             missing = (Missing(key=key, where="pulse width stated with the peak current rating"),)
             notes.append(Note(text=text, holds=over, best=Status.UNPROVEN, missing=missing))
             holds = np.ones_like(over)
         else:
             holds = run <= ratings.I_peak_pulse.value[:, None] * (1 + HAIR)
-            text = f"The current stays above k_I * {ratings.I_max.symbol} longer than {ratings.I_peak.symbol}_pulse, so " \
-                   "the continuous rating counts."  # fmt: skip
+            text = (
+                f"The current stays above k_I * {ratings.I_max.symbol} longer than {ratings.I_peak.symbol}_pulse, so "
+                "the continuous rating counts."
+            )
             notes.append(Note(text=text, holds=~holds))
         allowed = np.where(holds, np.maximum(short.value[:, None], lasting.value[:, None]), allowed)
         lasting = short
-    decided = verdict(judged, ratio(peak, allowed), (*notes, *typical(lasting, ratings.I_max)))
-    point = point_at(judged, decided, at)
-    limit = decided.of(allowed)
+    use = ratio(peak, allowed)
+    third = None if diode is None else body_diode(judged, diode.max(axis=2), use, allowed)
+    if diode is not None and third is not None:
+        use, notes = third.use, [*notes, *third.notes]
+        peak = np.where(third.governs, diode.max(axis=2), peak)
+        at = np.where(third.governs, diode.argmax(axis=2), at)
+        basis += "; body diode: i <= k_I * I_S at every instant"
+    decided = verdict(judged, use, (*notes, *typical(lasting, ratings.I_max)))
+    limit = _limit(judged, lasting, decided.of(allowed))
     return finding(
-        judged, decided, limit=NAME, basis=basis, unit="A", point=point,
+        judged,
+        decided,
+        limit=NAME,
+        basis=basis,
+        unit="A",
+        point=point_at(judged, decided, at),
         applied=found("I_peak", decided.of(peak), "A", "greatest current of the locus"),
-        allowed=_limit(judged, lasting, limit), trace=() if run is None else (_longest(decided.of(run)),),
-    )  # fmt: skip
+        allowed=limit if third is None else third.limit(judged, decided, limit),
+        trace=() if run is None else (_longest(decided.of(run)),),
+    )
 
 
 def _limit(judged: Judged, formula: Traced, value: FloatArray) -> Traced:
@@ -94,32 +109,15 @@ def _limit(judged: Judged, formula: Traced, value: FloatArray) -> Traced:
     inputs = [judged.rules.current.named("k_I"), ratings.I_max]
     if ratings.I_peak is not None:
         inputs.append(ratings.I_peak)
-    return found("I_allowed", value, "A", "k_I times the peak rating, or the continuous rating for excursions that last "
-                 "longer than it is stated for", *inputs)  # fmt: skip
+    return found(
+        "I_allowed",
+        value,
+        "A",
+        "k_I times the peak rating, or the continuous rating for excursions that last longer than it is stated for",
+        *inputs,
+    )
 
 
 def _longest(run: FloatArray) -> Traced:
     value = np.where(np.isinf(run), np.nan, run)
     return found("t_above", value, "s", "longest unbroken time above k_I times the continuous rating")
-
-
-def _body_diode(judged: Judged, i: FloatArray) -> Finding:
-    rating = judged.device.max.I_S
-    notes: list[Note] = [*sharing(judged)]
-    peak = i.max(axis=2)
-    allowed: Traced | None = None
-    if rating is None:
-        missing = Missing(key="max.I_S", where="source-drain (body) diode: continuous current")
-        notes.append(Note(text="Current flows through the body diode and its rating I_S is not stated.", holds=peak > 0,
-                          best=Status.UNPROVEN, missing=(missing,)))  # fmt: skip
-        use = np.where(peak > 0, np.nan, 0.0)
-    else:
-        allowed = derived("I_allowed", f"k_I * {rating.symbol}", "A", judged.rules.current.named("k_I"), rating)
-        use = ratio(peak, allowed.value[:, None])
-        notes += typical(allowed)
-    decided = verdict(judged, use, notes)
-    return finding(
-        judged, decided, limit=NAME, basis="body diode: i <= k_I * I_S at every instant", unit="A", allowed=allowed,
-        applied=found("I_diode_peak", decided.of(peak), "A", "greatest current through the body diode"),
-        point=point_at(judged, decided, i.argmax(axis=2)),
-    )  # fmt: skip

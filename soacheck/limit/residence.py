@@ -120,5 +120,9 @@ class Residence:
         if self.use is Use.REPEATED:
             again = t + (self.t[..., -1:] - self.t[..., :1])
             within |= (again >= run.start[..., None] - slack) & (again <= run.end[..., None] + slack)
-        off = np.where(within & (r > 0), np.abs(np.log(np.maximum(r, 1e-300)) - np.log(level)[..., None]), np.inf)
-        return np.argmin(off, axis=2)
+        off = np.where(
+            within & (r > 0),
+            np.abs(np.log(np.maximum(r, 1e-300)) - np.log(np.maximum(level, 1e-300))[..., None]),
+            np.inf,
+        )
+        return np.asarray(np.argmin(off, axis=2), dtype=np.int64)

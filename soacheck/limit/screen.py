@@ -39,9 +39,6 @@ class Screen:
     T_unknown: BoolArray
     turned_off: TurnOff | None
 
-    def T_unknown_of(self, pick: IntArray) -> BoolArray:
-        return np.take_along_axis(self.T_unknown, pick, axis=1)
-
 
 def screen(judged: Judged, lines: Lines) -> Screen:
     """The first look, in pieces of members of bounded size."""
@@ -50,8 +47,9 @@ def screen(judged: Judged, lines: Lines) -> Screen:
         raise ValueError("a duty without a locus has no members")
     cases, members, times = judged.cases, locus.shape[1], locus.shape[2]
     width = max(1, ELEMENTS // (cases * 2 * times))
-    pieces = [_piece(judged, lines, np.arange(start, min(start + width, members))[None])
-              for start in range(0, members, width)]  # fmt: skip
+    pieces = [
+        _piece(judged, lines, np.arange(start, min(start + width, members))[None]) for start in range(0, members, width)
+    ]
     if len(pieces) == 1:
         return pieces[0]
     joined = {
@@ -83,13 +81,21 @@ def _piece(judged: Judged, lines: Lines, members: IntArray) -> Screen:
     with np.errstate(divide="ignore", invalid="ignore"):
         crest = np.nan_to_num(pick(operating.P_mean) / pick(operating.P_peak))
     return Screen(
-        top=top, v_top=np.take_along_axis(path.v, at, axis=2)[..., 0], low=low * (1 - 1e-9),
+        top=top,
+        v_top=np.take_along_axis(path.v, at, axis=2)[..., 0],
+        low=low * (1 - 1e-9),
         duty_factor=np.maximum(time_above(path.t, one.r, 1.0, path.use), crest),
-        lasting=_lasting(lines, path), beyond=one.beyond & ~np.isnan(pick(measure.T)), zero=one.zero,
-        reversed=(path.v < -1e-9 * judged.device.max.V_max.value[:, None, None]).any(axis=2),
+        lasting=_lasting(lines, path),
+        beyond=one.beyond & ~np.isnan(pick(measure.T)),
+        zero=one.zero,
+        reversed=_any(path.v < -1e-9 * judged.device.max.V_max.value[:, None, None]),
         T_unknown=np.isnan(pick(measure.T)),
         turned_off=None if operating.locus is None or operating.locus.turn_off is None else turn_off(judged, path),
-    )  # fmt: skip
+    )
+
+
+def _any(mask: BoolArray) -> BoolArray:
+    return np.asarray(np.any(mask, axis=2), dtype=np.bool_)
 
 
 def _lasting(lines: Lines, path: Path) -> BoolArray:
@@ -110,9 +116,16 @@ def _joined(pieces: list[TurnOff | None]) -> TurnOff | None:
     if not whole:
         return None
     notes = tuple(
-        replace(one[0], holds=np.concatenate(
-            [np.broadcast_to(note.holds, piece.value.shape) for note, piece in zip(one, whole, strict=True)], axis=1))
+        replace(
+            one[0],
+            holds=np.concatenate(
+                [np.broadcast_to(note.holds, piece.value.shape) for note, piece in zip(one, whole, strict=True)], axis=1
+            ),
+        )
         for one in zip(*(piece.notes for piece in whole), strict=True)
-    )  # fmt: skip
-    return TurnOff(value=np.concatenate([piece.value for piece in whole], axis=1),
-                   at=np.concatenate([piece.at for piece in whole], axis=1), notes=notes)  # fmt: skip
+    )
+    return TurnOff(
+        value=np.concatenate([piece.value for piece in whole], axis=1),
+        at=np.concatenate([piece.at for piece in whole], axis=1),
+        notes=notes,
+    )

@@ -26,15 +26,27 @@ def picture(judged: Judged, case: int) -> SafeAreaPicture:
     if locus is not None and not judged.duty.listed:
         full = (max(judged.cases, locus.shape[0]), *locus.shape[1:])
         v, i = (np.array(np.broadcast_to(a, full)[case, hot]) for a in (locus.v, locus.i))
-    others = [(c.label, np.array(c.points), np.empty((0, 2))) for c in judged.device.soa
-              if c.bias == "forward" and all(c is not line.curve for line in shown)]  # fmt: skip
+    others = [
+        (c.label, np.array(c.points), np.empty((0, 2)))
+        for c in judged.device.soa
+        if c.bias == "forward" and all(c is not line.curve for line in shown)
+    ]
     return SafeAreaPicture(
-        half=judged.duty.half, duty=judged.duty.name, v=v, i=i, T=float(T[case, hot]),
+        half=judged.duty.half,
+        duty=judged.duty.name,
+        v=v,
+        i=i,
+        T=float(T[case, hot]),
         T_ref=measure.curve.T_ref if measure is not None else float("nan"),
-        curves=(*((line.label, np.array(line.curve.points), _scaled(judged, line, case, hot)) for line in shown), *others),
-        V_max=_at(ratings.V_max, case), I_max=_at(ratings.I_max, case), I_peak=_at(ratings.I_peak, case),
+        curves=(
+            *((line.label, np.array(line.curve.points), _scaled(judged, line, case, hot)) for line in shown),
+            *others,
+        ),
+        V_max=_at(ratings.V_max, case),
+        I_max=_at(ratings.I_max, case),
+        I_peak=_at(ratings.I_peak, case),
         factor=_at(judged.rules.safe_area, case),
-    )  # fmt: skip
+    )
 
 
 def _scaled(judged: Judged, line: Line, case: int, member: int) -> FloatArray:

@@ -1,9 +1,9 @@
 """Superposition: what a locus of any shape does to the hot spot, from the curves alone.
 
 With x(t) = i/I_dc(v) and g the hot spot's step response, the response of g to x, one shot from rest or in its periodic
-steady state, may not go above 1. It covers bursts, humps of any shape and a mean under the pulses, where residence alone
-errs. g is taken at the voltage of greatest x. No response goes above the greatest x: a locus inside the dc curve is
-inside. Without a dc curve the longest pulse stands in its place, for shots no longer than it.
+steady state, may not go above 1. It covers bursts, humps of any shape and a mean under the pulses, where residence
+alone errs. g is taken at the voltage of greatest x. No response goes above the greatest x: a locus inside the dc curve
+is inside. Without a dc curve the longest pulse stands in its place, for shots no longer than it.
 Source: our own derivation.
 """
 

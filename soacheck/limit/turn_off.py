@@ -37,32 +37,42 @@ class TurnOff:
 def turn_off(judged: Judged, path: Path) -> TurnOff:
     """The marked instants against the reverse-bias area."""
     marked = path.turn_off & path.conducts & (path.v > 0)
-    concerned = marked.any(axis=2)
+    concerned = np.asarray(marked.any(axis=2), dtype=np.bool_)
     curves = [curve for curve in judged.device.soa if curve.bias == "reverse"]
     zero = np.zeros(concerned.shape)
     if not curves:
-        note = Note(text="The device is turned off by a reverse drive and no reverse-bias safe area is stated.",
-                    holds=concerned, best=Status.UNPROVEN, missing=(MISSING,))  # fmt: skip
+        note = Note(
+            text="The device is turned off by a reverse drive and no reverse-bias safe area is stated.",
+            holds=concerned,
+            best=Status.UNPROVEN,
+            missing=(MISSING,),
+        )
         return TurnOff(value=np.where(concerned, np.nan, 0.0), at=zero.astype(np.int64), notes=(note,))
     each = [_one(judged, path, marked, curve) for curve in curves]
     # The first curve whose conditions hold counts, the widest if several do; where none does, the first one's reasons.
-    open_ = np.stack([np.logical_or.reduce([np.broadcast_to(note.holds & (note.best >= Status.UNPROVEN), concerned.shape)
-                                            for note in one.notes]) for one in each])  # fmt: skip
+    open_ = np.stack([_unproven(one, concerned) for one in each])
     rank = np.where(open_, np.inf, np.stack([one.value for one in each]))
     chosen = np.where(open_.all(axis=0), 0, rank.argmin(axis=0))
     notes = [replace(note, holds=note.holds & (chosen == k)) for k, one in enumerate(each) for note in one.notes]
 
-    def pick(arrays: list[FloatArray]) -> FloatArray:
-        return np.asarray(np.take_along_axis(np.stack(arrays), chosen[None], axis=0)[0])
-
+    value, at = np.stack([one.value for one in each]), np.stack([one.at for one in each])
     return TurnOff(
-        value=pick([one.value for one in each]), at=pick([one.at for one in each]).astype(np.int64), notes=tuple(notes)
+        value=np.take_along_axis(value, chosen[None], axis=0)[0],
+        at=np.take_along_axis(at, chosen[None], axis=0)[0],
+        notes=tuple(notes),
     )
+
+
+def _unproven(one: TurnOff, concerned: BoolArray) -> BoolArray:
+    answer = np.zeros(concerned.shape, dtype=np.bool_)
+    for note in one.notes:
+        answer |= note.holds & (note.best >= Status.UNPROVEN)
+    return answer
 
 
 def _one(judged: Judged, path: Path, marked: BoolArray, curve: SafeAreaCurve) -> TurnOff:
     """The marked instants against one reverse-bias curve."""
-    concerned = marked.any(axis=2)
+    concerned = np.asarray(marked.any(axis=2), dtype=np.bool_)
     with np.errstate(divide="ignore", invalid="ignore"):
         allowed = printed_current(curve, path.v) * judged.rules.safe_area.value[:, None, None]
         r = np.where(marked, path.i / allowed, 0.0)
@@ -70,11 +80,15 @@ def _one(judged: Judged, path: Path, marked: BoolArray, curve: SafeAreaCurve) ->
     r = np.where(beyond, 0.0, r)
     notes = (
         *_conditions(judged, curve, concerned),
-        Note(text=f"At turn-off current flows above {curve.points[-1, 0]:.4g} V, where the reverse-bias area ends.",
-             holds=beyond.any(axis=2), best=Status.UNPROVEN, missing=(MISSING,)),
+        Note(
+            text=f"At turn-off current flows above {curve.points[-1, 0]:.4g} V, where the reverse-bias area ends.",
+            holds=np.asarray(beyond.any(axis=2), dtype=np.bool_),
+            best=Status.UNPROVEN,
+            missing=(MISSING,),
+        ),
         _temperature(judged, curve, concerned),
         *typical_named((f"soa[{curve.label}]",) if curve.grade == "typical" else (), holds=concerned),
-    )  # fmt: skip
+    )
     return TurnOff(value=r.max(axis=2), at=r.argmax(axis=2), notes=notes)
 
 
@@ -86,17 +100,26 @@ def _temperature(judged: Judged, curve: SafeAreaCurve, concerned: BoolArray) -> 
     missing = (Missing(key="soa[reverse].T_j_valid", where="conditions of the reverse-bias safe-area chart"),)
     return Note(
         text=f"The junction is not shown to stay within the temperature that the reverse-bias area holds for ({said}).",
-        holds=concerned & ~cold, best=Status.UNPROVEN, missing=missing if valid is None else judged.operating.missing,
-    )  # fmt: skip
+        holds=concerned & ~cold,
+        best=Status.UNPROVEN,
+        missing=missing if valid is None else judged.operating.missing,
+    )
 
 
 def _conditions(judged: Judged, curve: SafeAreaCurve, concerned: BoolArray) -> list[Note]:
     """What keeps the drive conditions of a reverse-bias curve from being shown to hold."""
-    stated: tuple[tuple[str, Traced | None], ...] = (("V_BE_off", curve.V_BE_off), ("I_B2", curve.I_B2), ("R_G", curve.R_G))
-    if all(value is None for _, value in stated):
-        missing = Missing(key="soa[reverse].V_BE_off", where="conditions of the reverse-bias safe-area chart (or I_B2, R_G)")
-        return [Note(text="The reverse-bias area is stated without its drive conditions.", holds=concerned,
-                     best=Status.UNPROVEN, missing=(missing,))]  # fmt: skip
+    stated: dict[str, Traced | None] = {"V_BE_off": curve.V_BE_off, "I_B2": curve.I_B2, "R_G": curve.R_G}
+    if all(value is None for value in stated.values()):
+        where = "conditions of the reverse-bias safe-area chart (or I_B2, R_G)"
+        missing = Missing(key="soa[reverse].V_BE_off", where=where)
+        return [
+            Note(
+                text="The reverse-bias area is stated without its drive conditions.",
+                holds=concerned,
+                best=Status.UNPROVEN,
+                missing=(missing,),
+            )
+        ]
     drive = judged.duty.drive
     ours = {
         "V_BE_off": None if drive is None else drive.V_off,
@@ -104,7 +127,7 @@ def _conditions(judged: Judged, curve: SafeAreaCurve, concerned: BoolArray) -> l
         "R_G": None if drive is None else drive.R_G,
     }
     notes: list[Note] = []
-    for name, value in stated:
+    for name, value in stated.items():
         own = ours[name]
         if value is None:
             continue

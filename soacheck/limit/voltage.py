@@ -54,11 +54,16 @@ def find(judged: Judged) -> tuple[Finding, ...]:
     applied = found("V_peak", point.v, "V", "voltage at the instant nearest to its rating")
     if other is not None:
         limit = decided.of(np.take_along_axis(np.broadcast_to(allowed, v.shape), at[..., None], axis=2)[..., 0])
-        plain = found("V_allowed", limit, "V", f"k_V * {rating.symbol}, or k_V * {other.symbol} while only leakage "
-                      "flows", k, rating, other)  # fmt: skip
-    return (
-        finding(judged, decided, limit=NAME, basis=basis, unit="V", applied=applied, allowed=plain, point=point),
-    )
+        plain = found(
+            "V_allowed",
+            limit,
+            "V",
+            f"k_V * {rating.symbol}, or k_V * {other.symbol} while only leakage flows",
+            k,
+            rating,
+            other,
+        )
+    return (finding(judged, decided, limit=NAME, basis=basis, unit="V", applied=applied, allowed=plain, point=point),)
 
 
 def _while_off(judged: Judged) -> Traced | None:
@@ -82,4 +87,4 @@ def _opened(judged: Judged) -> BoolArray:
 def _reversed(judged: Judged, negative: BoolArray) -> tuple[Note, ...]:
     if not judged.device.bipolar:
         return ()
-    return (Note(text=REVERSED, holds=negative.any(axis=2), best=Status.UNPROVEN),)
+    return (Note(text=REVERSED, holds=np.asarray(np.any(negative, axis=2), dtype=np.bool_), best=Status.UNPROVEN),)

@@ -1,0 +1,129 @@
+"""The safe-area finding of the worst members: both tests in full, the point that touches, the hand calculation."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from soacheck.limit.allowance import Line, Lines, share
+from soacheck.limit.by_hand import hand_calculation
+from soacheck.limit.found import Point, Verdict
+from soacheck.limit.judged import Judged
+from soacheck.limit.path import path_of
+from soacheck.limit.screen import Screen
+from soacheck.limit.two_tests import Tests, Worked, tests_of
+from soacheck.locus import Use
+from soacheck.result import Reason
+from soacheck.trace import BoolArray, FloatArray, IntArray, Traced, found
+
+RESIDENCE, SUPERPOSITION, SHORTEST, TURN_OFF = range(4)
+FIT = 1e-3  # the share of the shortest curve is in the superposition, too: it governs only where it is larger by this
+LOW = 1e-4  # of the greatest share: below this a residence counts as none
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Governing:
+    """What the finding of the worst members is made of."""
+
+    point: Point
+    applied: Traced
+    allowed: Traced
+    trace: tuple[Traced, ...]
+    reasons: tuple[Reason, ...]
+
+
+def governing(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked: Worked, decided: Verdict) -> Governing:
+    """Both tests worked out in full for the worst member of each case."""
+    pick = decided.member[:, None]
+    path = path_of(judged, pick)
+    tests = tests_of(judged, lines, seen, path)
+    use = decided.of(worked.use)
+    top = np.maximum(np.take_along_axis(seen.top, pick, axis=1), np.maximum(tests.shortest, tests.superposition.value))
+    stay = np.where(tests.residence.fails(LOW * top), tests.residence.utilisation(LOW * top, top), 0.0)
+    stay_at, curve = tests.residence.touching(np.where(stay > 0, stay, top))
+    test, at = _largest(seen, tests, stay, stay_at, pick)
+
+    raw = share(measure, path).raw
+    unknown = path.active & np.isnan(raw)
+    blind = np.isnan(use) & np.any(unknown[:, 0], axis=1)
+    at = np.where(blind, unknown.argmax(axis=2)[:, 0], at)
+    T_unknown = np.take_along_axis(seen.T_unknown, pick, axis=1)[:, 0]
+    nothing = (np.isnan(use) & T_unknown) | (~(use > 0) & ~np.isnan(use))
+
+    def there(a: FloatArray) -> FloatArray:
+        full = np.broadcast_to(a, path.v.shape)
+        return np.where(nothing, np.nan, np.take_along_axis(full, at[:, None, None], axis=2)[:, 0, 0])
+
+    region = np.take_along_axis(path.region, at[:, None, None], axis=2)[:, 0, 0]
+    point = Point(t=there(path.t), v=there(path.v), i=there(path.i), region=np.where(nothing, -1, region))
+    trace = hand_calculation(judged, lines, decided, point.v, curve[:, 0], test == RESIDENCE)
+    applied = found("I", point.i, "A", "current at the point that touches")
+    zero = decided.of(seen.zero)
+    allowed = _allowed(path.use, lines, use, zero, applied, stay[:, 0], tests, trace)
+    held = path.use is Use.HELD
+    reasons = () if held else _reasons(lines, test, curve[:, 0], ~np.isnan(use) & (use > 0))
+    return Governing(point=point, applied=applied, allowed=allowed, trace=trace, reasons=reasons)
+
+
+def _largest(
+    seen: Screen, tests: Tests, stay: FloatArray, stay_at: IntArray, pick: IntArray
+) -> tuple[IntArray, IntArray]:
+    """Which test is the largest, and the sample that it touches at, (case,)."""
+    values = [stay, tests.superposition.value, tests.shortest * (1 - FIT)]
+    at = [stay_at, tests.superposition.at, tests.shortest_at]
+    if seen.turned_off is not None:
+        values.append(np.take_along_axis(seen.turned_off.value, pick, axis=1))
+        at.append(np.take_along_axis(seen.turned_off.at, pick, axis=1))
+    order = np.stack(values)[..., 0]
+    test = np.argmax(np.where(np.isnan(order), np.inf, order), axis=0)
+    return test, np.take_along_axis(np.stack(at)[..., 0], test[None], axis=0)[0]
+
+
+def _allowed(
+    use: Use,
+    lines: Lines,
+    utilisation: FloatArray,
+    zero: BoolArray,
+    applied: Traced,
+    stay: FloatArray,
+    tests: Tests,
+    trace: tuple[Traced, ...],
+) -> Traced:
+    with np.errstate(divide="ignore", invalid="ignore"):
+        limit = np.where(utilisation > 0, applied.value / utilisation, np.where(zero, 0.0, np.nan))
+    if use is Use.HELD and lines.dc is not None:
+        return found("I_allowed", limit, "A", "the dc curve scaled to the temperature reached", *trace[-1:])
+    how = "current at the point that touches over the utilisation, the largest of the tests"
+    residence = (
+        "factor by which all currents must be divided until no printed curve is exceeded for too long (bisection)"
+    )
+    response = "greatest response of the hot spot to x = i/I_dc(v), from its step response g = I_dc/I(t_p)"
+    return found(
+        "I_allowed",
+        limit,
+        "A",
+        how,
+        applied,
+        found("u_residence", stay, "1", residence),
+        found("u_superposition", tests.superposition.value[:, 0], "1", response, source="own derivation"),
+    )
+
+
+def _reasons(lines: Lines, test: IntArray, curve: IntArray, clear: BoolArray) -> tuple[Reason, ...]:
+    """Which test governs, said of the cases in which it does."""
+    labels = {line.pulse: line.label for line in lines.pulses}
+    names = [*(labels[width] for width in lines.widths), "dc"]
+    said = [
+        (f"Residence governs: the time spent above the {name} curve touches.", (test == RESIDENCE) & (curve == number))
+        for number, name in enumerate(names)
+    ]
+    said += [
+        (
+            "Superposition governs: the response of the hot spot to the whole locus touches (own derivation).",
+            test == SUPERPOSITION,
+        ),
+        ("The share of the shortest printed curve governs.", test == SHORTEST),
+        ("The reverse-bias area at turn-off governs.", test == TURN_OFF),
+    ]
+    return tuple(Reason(text=text, applies=holds & clear) for text, holds in said if bool(np.any(holds & clear)))

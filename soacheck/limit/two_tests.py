@@ -1,0 +1,114 @@
+"""Residence and superposition of every member that can be the worst of its case."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from soacheck.limit.allowance import Lines, share, shares
+from soacheck.limit.duration import exact_where_it_matters
+from soacheck.limit.judged import Judged
+from soacheck.limit.path import Path, path_of
+from soacheck.limit.residence import Residence
+from soacheck.limit.screen import ELEMENTS, Screen
+from soacheck.limit.superposition import Superposition, mean_of, spot_of, superpose
+from soacheck.locus import Use
+from soacheck.trace import BoolArray, FloatArray, IntArray
+
+TOGETHER = 8  # members worked out in full at a time
+MODES = 24  # of a hot spot, about
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Tests:
+    """Both tests of some members, (case, member).
+
+    shortest: greatest share of the shortest printed curve, for any time at all.
+    """
+
+    residence: Residence
+    superposition: Superposition
+    shortest: FloatArray
+    shortest_at: IntArray
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Worked:
+    """Utilisation per (case, member), NaN where it has no number, and what it rests on.
+
+    exceeds: a crossing that is proven. shorter: above the shortest printed curve, for less than its width, and no
+    crossing proven.
+    """
+
+    use: FloatArray
+    exceeds: BoolArray
+    shorter: BoolArray
+
+
+def tests_of(judged: Judged, lines: Lines, seen: Screen, path: Path) -> Tests:
+    """Both tests of the members of a path."""
+    dc = None if lines.dc is None else share(lines.dc, path)
+    members = np.broadcast_to(path.members, (judged.cases, path.members.shape[1]))
+
+    def of(array: FloatArray) -> FloatArray:
+        return np.take_along_axis(array, members, axis=1)
+
+    r = shares(lines, path, dc, of(seen.duty_factor))
+    x = dc.r if dc is not None else r[-1]
+    nearest = r[0] if r else x
+    if lines.widths and path.use is not Use.HELD:
+        response = superpose(path, x, spot_of(lines, of(seen.v_top), members))
+    else:
+        response = _without_pulses(path, x)
+    if lines.dc is None:
+        # The longest pulse stands for dc only while the shot is no longer than it.
+        lasting = np.take_along_axis(seen.lasting, members, axis=1)
+        value, proven = (np.where(lasting, 0.0, a) for a in (response.value, response.proven))
+        response = Superposition(value=value, proven=proven, at=response.at)
+    residence = Residence(
+        t=path.t,
+        use=path.use,
+        widths=lines.widths,
+        r=r,
+        dc=None if dc is None else dc.r,
+        between=judged.rules.pulse_between,
+    )
+    return Tests(
+        residence=residence, superposition=response, shortest=nearest.max(axis=2), shortest_at=nearest.argmax(axis=2)
+    )
+
+
+def _without_pulses(path: Path, x: FloatArray) -> Superposition:
+    """With the dc curve alone the hot spot may answer at once; no more than the mean of x is proven."""
+    top = x.max(axis=2)
+    if path.use is Use.HELD:
+        proven = top
+    elif path.use is Use.REPEATED:
+        proven = np.minimum(mean_of(path, x), top)
+    else:
+        proven = np.zeros_like(top)
+    return Superposition(value=top, proven=proven, at=x.argmax(axis=2))
+
+
+def work(judged: Judged, lines: Lines, seen: Screen) -> Worked:
+    """The larger utilisation of both tests, exact for every member that can be the worst."""
+    exceeds, one = np.zeros(seen.top.shape, dtype=np.bool_), np.ones(seen.top.shape)
+
+    def evaluate(pick: IntArray) -> FloatArray:
+        tests = tests_of(judged, lines, seen, path_of(judged, pick))
+        low = np.maximum(tests.superposition.value, tests.shortest)
+        high = np.maximum(np.take_along_axis(seen.top, pick, axis=1), low)
+        stays = tests.residence.fails(np.take_along_axis(one, pick, axis=1))
+        np.put_along_axis(exceeds, pick, stays | (tests.superposition.proven > 1), axis=1)
+        return tests.residence.utilisation(low, high)
+
+    width = max(1, min(TOGETHER, ELEMENTS // (judged.cases * judged.operating.T_j.shape[2] * MODES)))
+    use, exact = exact_where_it_matters(seen.low, seen.top, evaluate, below=1.0, width=width)
+    exceeds &= exact & (use > 1)
+    shorter = (use > 1) & ~exceeds & ~seen.lasting & ~seen.zero
+    no_number = seen.T_unknown | seen.zero | ((shorter | seen.beyond | seen.lasting) & ~exceeds)
+    use = np.where(no_number, np.nan, use)
+    if seen.turned_off is not None:
+        use = np.maximum(use, seen.turned_off.value)
+    return Worked(use=use, exceeds=exceeds, shorter=shorter)
