@@ -23,9 +23,7 @@ from soacheck.trace import Traced, derived, found, frozen, given
 HOSTILE = "[/red]$x_1$<script>alert(1)</script>\x1b[31mred\x1b]0;title\x07\u202e desrever\x9b1m\r\n{0}%s\\"
 
 
-def where(
-    v: float = np.nan, i: float = np.nan, t: float = np.nan, region: int = -1, member: float = np.nan
-) -> Where:
+def where(v: float = np.nan, i: float = np.nan, t: float = np.nan, region: int = -1, member: float = np.nan) -> Where:
     return Where(
         t=frozen([t]),
         v=frozen([v]),
@@ -46,9 +44,7 @@ def heat_chain(power: float = 22.34, ambient: float = 40.0) -> dict[str, Traced]
     load = given("R_load", [4.0], "ohm", "amp.toml: load.load")
     pairs = given("pairs", [2.0], "1", "amp.toml: load.pairs")
     if power == 22.34:
-        p = derived(
-            "P_mean", "V_rail**2 / (pi**2 * R_load * pairs)", "W", rail, load, pairs, source="class B, 2/pi"
-        )
+        p = derived("P_mean", "V_rail**2 / (pi**2 * R_load * pairs)", "W", rail, load, pairs, source="class B, 2/pi")
     else:
         p = found("P_mean", [power], "W", "mean of v times i over one period", rail, load)
     sink = derived("T_heatsink", "T_ambient + R_th_sa * n * P_mean", "degC", t_a, r_sa, n, p)

@@ -76,9 +76,7 @@ def test_what_has_no_number_is_null() -> None:
     duty = DutyResult(name="idle", half=None, P_mean=given("P_mean", [math.nan], "W", ""))
     content = read(as_json([result(item, duties=(duty,))]))
     found = content["findings"][0]
-    assert (found["applied"], found["allowed"], found["utilisation"], found["nominal_utilisation"]) == (
-        None,
-    ) * 4
+    assert (found["applied"], found["allowed"], found["utilisation"], found["nominal_utilisation"]) == (None,) * 4
     assert content["duties"][0]["P_mean"] is None
     assert content["duties"][0]["T_j_peak"] is None
 
@@ -117,9 +115,7 @@ def test_several_stages_are_a_list() -> None:
 
 
 def test_hostile_text_survives_exactly_and_the_document_is_ascii() -> None:
-    text = as_json(
-        [result(finding(), stage=StageFacts(title=HOSTILE, file="", sha256="", revision="\udcb0"))]
-    )
+    text = as_json([result(finding(), stage=StageFacts(title=HOSTILE, file="", sha256="", revision="\udcb0"))])
     assert text.isascii()
     assert read(text)["stage"]["title"] == HOSTILE
 

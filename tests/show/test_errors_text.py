@@ -33,9 +33,7 @@ def test_several_problems_are_counted() -> None:
 
 
 def test_hostile_values_cannot_fake_a_line_or_reach_the_terminal() -> None:
-    text = errors_text(
-        [Problem(problem=HOSTILE, remedy=HOSTILE, file=HOSTILE, key=HOSTILE, value=HOSTILE, line=1)]
-    )
+    text = errors_text([Problem(problem=HOSTILE, remedy=HOSTILE, file=HOSTILE, key=HOSTILE, value=HOSTILE, line=1)])
     assert text.count("\n") == 3
     assert "\x1b" not in text
     assert "\u202e" not in text
