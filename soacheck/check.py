@@ -190,6 +190,8 @@ def _decide(stage: Stage, plan: CasePlan, worst: list[Finding], cases: list[int]
         cautions += [Caution(id=r.id, text=r.text) for r in raised]
         decided += [_lowered(finding, raised) for finding in own]
     order = sorted(range(len(decided)), key=lambda k: _badness(decided[k]), reverse=True)
+    if order:
+        decided[order[0]] = _worked_out(decided[order[0]], sittings)
     verdict = Status(max((int(f.status[0]) for f in decided), default=int(Status.UNPROVEN)))
     return Result(
         stage=StageFacts(title=stage.title, file=stage.file, sha256=stage.sha256, revision=stage.revision),
@@ -215,6 +217,25 @@ def _lowered(finding: Finding, raised: list[Raised]) -> Finding:
         if finding.limit in guard.lowers and finding.status[0] < Status.UNPROVEN:
             reason = Reason(text=guard.text, applies=np.asarray([True]), missing=guard.missing)
             finding = replace(finding, status=np.asarray([int(Status.UNPROVEN)]), reasons=(*finding.reasons, reason))
+    return finding
+
+
+def _worked_out(finding: Finding, sittings: tuple[Sitting, ...]) -> Finding:
+    """The governing finding with the heat-flow chain of its duty, at the member that governs: what redoes it by hand."""
+    for sitting in sittings:
+        for judged in sitting.judged:
+            if (judged.duty.name, judged.duty.half) != (finding.duty, finding.half) or judged.operating.locus is None:
+                continue
+            members = np.broadcast_to(judged.duty.members.value, judged.operating.P_mean.shape)
+            wanted = finding.where.member[:, None]
+            member = None if bool(np.isnan(wanted).any()) else np.argmin(np.abs(members - wanted), axis=1)
+            steps = chain(judged.operating, sitting.place, member)
+            own = {value.symbol for value in finding.trace}
+            more = (
+                *judged.duty.facts, steps.P_mean, steps.P_peak, steps.T_heatsink, steps.T_case, steps.T_j_mean, steps.T_j_peak
+            )  # fmt: skip
+            chosen = tuple(value for value in more if value is not None and value.symbol not in own)
+            return replace(finding, trace=(*chosen, *finding.trace))
     return finding
 
 
@@ -273,7 +294,7 @@ def _assumptions(stage: Stage, plan: CasePlan, governing: int) -> tuple[str, ...
         if half.ladder is not None and half.ladder.how:
             said.append(f"{half.fitted.device.name}: {half.ladder.how}")
     path = stage.heat_path
-    if path.shared_by is None and path.sink == "resistance":
+    if path.shared_by is None and path.sink == "resistance" and stage.devices > 1:
         said.append(
             f"the sink is shared by every device of the stage, {stage.devices} (heat_path.shared_by not stated)"
         )

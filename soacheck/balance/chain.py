@@ -40,12 +40,12 @@ def hottest(operating: Operating) -> IntArray:
     return np.asarray(np.argmax(np.nan_to_num(by, nan=-np.inf), axis=1), dtype=np.int64)
 
 
-def chain(operating: Operating, place: Place) -> Chain:
-    """The chain of the member that heats the junction most; peaks are the greatest of all members."""
+def chain(operating: Operating, place: Place, member: IntArray | None = None) -> Chain:
+    """The chain of one member (case,), absent: the one that heats the junction most; peaks are those of all members."""
     locus, duty = operating.locus, operating.duty
     if locus is None:
         return Chain()
-    at = hottest(operating)
+    at = hottest(operating) if member is None else member
     cases = operating.P_mean.shape[0]
 
     def pick(a: FloatArray) -> FloatArray:

@@ -127,7 +127,9 @@ def place_of(device: Device, ladder: Ladder | None, path: HeatPath, devices: int
     """Put a device on its heat path; what the temperatures lack is collected in `missing`."""
     used, _ = R_th_jc_used(device)
     if used is not None and ladder is not None and bool(np.any(ladder.R.sum() > used.value * (1 + 1e-9))):
-        total = given("R_th_ladder", float(ladder.R.sum()), "K/W", f"{device.name}: sum of Z_th_jc", device.thermal.grade)
+        total = given(
+            "R_th_ladder", float(ladder.R.sum()), "K/W", f"{device.name}: sum of Z_th_jc", device.thermal.grade
+        )
         used = derived("R_th_jc", "max(R_th_jc_stated, R_th_ladder)", "K/W", used.named("R_th_jc_stated"), total)
     missing = list(path.missing)
     if path.sink == "none" and device.thermal.R_th_ja is None:
