@@ -57,7 +57,7 @@ def heat_chain(power: float = 22.34, ambient: float = 40.0) -> dict[str, Traced]
     }  # fmt: skip
 
 
-def finding(  # noqa: PLR0917  (a row of a table, read in its order)
+def finding(
     limit: str = "dissipation",
     duty: str = "worst-level",
     applied: float | Traced | None = 22.34,
