@@ -101,8 +101,8 @@ def duty_words(finding: Finding) -> str:
     return f"{finding.duty} ({finding.member_name} {words.amount(member, member_unit(finding.member_name))})"
 
 
-def why_unproven(finding: Finding) -> str:
-    """What an unproven finding lacks, in a sentence for the notes."""
+def why(finding: Finding) -> str:
+    """The reasons of a finding, or what it lacks, in words for the notes."""
     reasons = [reason.text for reason in finding.reasons if reason.applies[0]]
     return "; ".join(reasons) or "missing: " + (", ".join(finding.missing(0)) or "see the findings")
 
@@ -110,7 +110,7 @@ def why_unproven(finding: Finding) -> str:
 def unproven_notes(result: Result, limit: str, half: str | None) -> tuple[str, ...]:
     """One sentence for each duty for which a limit is unproven."""
     return tuple(
-        f"{limit}, {finding.duty}: unproven; {why_unproven(finding)}."
+        f"{limit}, {finding.duty}: unproven; {why(finding)}."
         for finding in findings(result, limit, half)
         if int(finding.status[0]) == Status.UNPROVEN
     )

@@ -188,10 +188,10 @@ def _hot_labels(axes: Axes, spot: Finding | None) -> list[Label]:
     u = float(spot.utilisation[0])
     if math.isfinite(u):
         margin = f"safe-area {percent(u)} of the allowance"
-    elif read.status_word(spot) == "exceeds":
+    elif spot.allowed is not None and spot.allowed.at(0) == 0:
         margin = "safe-area: nothing is allowed here"
     else:
-        margin = "safe-area: no figure"
+        margin = "safe-area: the margin has no figure"
     amounts = ""
     allowed = spot.allowed.at(0) if spot.allowed is not None and spot.unit == "A" else math.nan
     if math.isfinite(allowed) and allowed > 0:
@@ -212,6 +212,8 @@ def _notes(result: Result, picture: SafeAreaPicture, half: str | None, spot: Fin
         notes.append("No hot spot is marked: no safe-area finding has a place on this chart.")
     elif spot.where.v[0] <= 0 or spot.where.i[0] <= 0:
         notes.append(f"The hot spot ({read.place_words(spot)}) has no place on log paper.")
+    elif not math.isfinite(spot.utilisation[0]) and read.status_word(spot) == "exceeds":
+        notes.append(f"Hot spot: {read.why(spot)}")
     if any(d.points > page.ENVELOPE_FROM for d in read.drawn(result, half)):
         notes.append(page.ENVELOPE_NOTE)
     return [*notes, *read.unproven_notes(result, "safe-area", half)]

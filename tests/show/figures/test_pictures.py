@@ -13,7 +13,7 @@ from matplotlib.figure import Figure
 from matplotlib.text import Text
 
 from soacheck.errors import InputError, OutputError
-from soacheck.result import Result, Series
+from soacheck.result import Result, Series, Status
 from soacheck.show import figures
 from soacheck.show.figures import canvas, palette
 from tests.show.figures import build
@@ -158,6 +158,18 @@ def test_an_unproven_safe_area_says_why_below_the_picture() -> None:
     figure = figures.draw(build.one_shot(), "safe-area")
     assert any("longer than the longest printed pulse" in text for text in texts(figure, "note"))
     assert any("unproven" in text for text in texts(figure, "label"))
+
+
+@pytest.mark.parametrize(("allowed", "words"), [(0.0, "nothing is allowed here"), (build.NAN, "has no figure")])
+def test_an_exceeded_safe_area_without_a_figure_says_which_of_the_two_it_is(allowed: float, words: str) -> None:
+    because = build.reason("The case is at the limit of the junction.")
+    hot = build.finding(
+        "safe-area", "held-worst-point", build.NAN, allowed=allowed, unit="A", at=(build.NAN, 12.0, 0.59),
+        status=Status.EXCEEDS, reasons=(because,),
+    )  # fmt: skip
+    figure = figures.draw(replace(build.held_line(), findings=(hot,)), "safe-area")
+    assert any(words in text and "exceeds" in text for text in texts(figure, "label"))
+    assert "Hot spot: The case is at the limit of the junction." in texts(figure, "note")
 
 
 def test_a_straight_line_of_operation_is_a_curve_on_log_paper() -> None:
