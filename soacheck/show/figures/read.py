@@ -110,7 +110,7 @@ def why(finding: Finding) -> str:
 def unproven_notes(result: Result, limit: str, half: str | None) -> tuple[str, ...]:
     """One sentence for each duty for which a limit is unproven."""
     return tuple(
-        f"{limit}, {finding.duty}: unproven; {why(finding).rstrip(".")}."
+        f"{limit}, {finding.duty}: unproven; {why(finding).rstrip('.')}."
         for finding in findings(result, limit, half)
         if int(finding.status[0]) == Status.UNPROVEN
     )
