@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 from collections.abc import Iterable
 from dataclasses import dataclass, replace
 
@@ -18,6 +19,7 @@ from soacheck.guard import GUARDS, Raised, Seen
 from soacheck.limit import LIMITS
 from soacheck.limit.judged import Judged
 from soacheck.locus import Use
+from soacheck.quantity import write
 from soacheck.result import (
     Caution,
     DeviceFacts,
@@ -28,11 +30,11 @@ from soacheck.result import (
     StageFacts,
     Status,
 )
-from soacheck.stage import Stage
+from soacheck.stage import Stage, keys_of
 from soacheck.table import CasePlan, Missing
 from soacheck.trace import Traced, derived
 
-BLOCK = 8  # cases worked out together; fixed, so that the answer does not depend on anything else
+BLOCK = 9  # cases worked out together; fixed, so that the answer does not depend on anything else
 
 # Limits of the contract that this version does not decide.
 NOT_DECIDED = (
@@ -192,6 +194,7 @@ def _decide(stage: Stage, plan: CasePlan, worst: list[Finding], cases: list[int]
     order = sorted(range(len(decided)), key=lambda k: _badness(decided[k]), reverse=True)
     if order:
         decided[order[0]] = _worked_out(decided[order[0]], sittings)
+    findings = tuple(decided[k] for k in order)
     verdict = Status(max((int(f.status[0]) for f in decided), default=int(Status.UNPROVEN)))
     return Result(
         stage=StageFacts(title=stage.title, file=stage.file, sha256=stage.sha256, revision=stage.revision),
@@ -199,14 +202,14 @@ def _decide(stage: Stage, plan: CasePlan, worst: list[Finding], cases: list[int]
         complement=_facts(stage.halves[1].fitted.device) if len(stage.halves) > 1 else None,
         verdict=verdict,
         duties=tuple(_duty_result(s, j) for s in sittings for j in s.judged if j.duty.listed),
-        findings=tuple(decided[k] for k in order),
+        findings=findings,
         nominal=tuple(nominal[k] for k in order),
         spread=bool(stage.spreads),
         not_analysed=_not_analysed(stage),
         assumptions=_assumptions(stage, plan, governing),
         cautions=tuple(dict.fromkeys(cautions)),
         inputs=(*stage.document.stated(),),
-        safe_area=tuple(p for s in sittings for p in drawn.safe_areas(s.judged)),
+        safe_area=tuple(p for s in sittings for p in drawn.safe_areas(s.judged, findings)),
         characteristics=tuple(drawn.characteristics(s.judged) for s in sittings),
         sweeps=tuple(sweep for s in sittings for sweep in drawn.sweeps(s.judged)),
     )
@@ -221,7 +224,7 @@ def _lowered(finding: Finding, raised: list[Raised]) -> Finding:
 
 
 def _worked_out(finding: Finding, sittings: tuple[Sitting, ...]) -> Finding:
-    """The governing finding with the heat-flow chain of its duty, at the member that governs: what redoes it by hand."""
+    """The governing finding with the heat-flow chain of its duty, at the member that governs."""
     for sitting in sittings:
         for judged in sitting.judged:
             if (judged.duty.name, judged.duty.half) != (finding.duty, finding.half) or judged.operating.locus is None:
@@ -232,8 +235,9 @@ def _worked_out(finding: Finding, sittings: tuple[Sitting, ...]) -> Finding:
             steps = chain(judged.operating, sitting.place, member)
             own = {value.symbol for value in finding.trace}
             more = (
-                *judged.duty.facts, steps.P_mean, steps.P_peak, steps.T_heatsink, steps.T_case, steps.T_j_mean, steps.T_j_peak
-            )  # fmt: skip
+                *judged.duty.facts,
+                *(steps.P_mean, steps.P_peak, steps.T_heatsink, steps.T_case, steps.T_j_mean, steps.T_j_peak),
+            )
             chosen = tuple(value for value in more if value is not None and value.symbol not in own)
             return replace(finding, trace=(*chosen, *finding.trace))
     return finding
@@ -287,6 +291,18 @@ def _not_analysed(stage: Stage) -> tuple[str, ...]:
     return (*stage.kind.not_analysed(stage.load), *other, *NOT_DECIDED)
 
 
+def _corner(stage: Stage, plan: CasePlan, case: int) -> str:
+    """The values of one corner as the file would write them."""
+    dimensions = {key.path: key.dimension for key in keys_of(stage.kind)}
+    parts = []
+    for key, values in plan.values.items():
+        dimension = dimensions.get(re.sub(r"\[\d+\]", "", key), "")
+        parts.append(
+            f"{key} = {write(values[case], dimension) if dimension else format(values[case], '.6g') + ' (SI)'}"
+        )
+    return ", ".join(parts)
+
+
 def _assumptions(stage: Stage, plan: CasePlan, governing: int) -> tuple[str, ...]:
     said = list(stage.assumptions)
     for half in stage.halves:
@@ -304,6 +320,5 @@ def _assumptions(stage: Stage, plan: CasePlan, governing: int) -> tuple[str, ...
             "(common practice)"
         )
     if stage.spreads and governing > 0:
-        corner = ", ".join(f"{key} = {values[governing]:.6g}" for key, values in sorted(plan.values.items()))
-        said.append(f"duties are shown at the corner that governs: {corner} (SI units)")
+        said.append(f"duties are shown at the corner that governs: {_corner(stage, plan, governing)}")
     return tuple(dict.fromkeys(said))

@@ -5,6 +5,8 @@ Pictures compute nothing; every number they show is made here or in a finding.
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 
 from soacheck.balance.chain import hottest
@@ -12,7 +14,7 @@ from soacheck.device import laws
 from soacheck.limit import dissipation, safe_area
 from soacheck.limit.judged import Judged
 from soacheck.locus import Use
-from soacheck.result import Characteristics, SafeAreaPicture, Series, Sweep
+from soacheck.result import Characteristics, Finding, SafeAreaPicture, Series, Sweep
 from soacheck.trace import FloatArray
 
 
@@ -79,13 +81,24 @@ def sweeps(judged: tuple[Judged, ...]) -> tuple[Sweep, ...]:
     return tuple(drawn)
 
 
-def safe_areas(judged: tuple[Judged, ...]) -> tuple[SafeAreaPicture, ...]:
-    """The safe area of one half at its hottest duty."""
-    with_locus = [one for one in judged if one.operating.locus is not None and one.device.soa]
-    if not with_locus:
-        return ()
-    by = max(with_locus, key=lambda one: float(np.nan_to_num(np.max(one.operating.T_j_bound), nan=-1.0)))
-    return (safe_area.picture(by, 0),)
+def safe_areas(judged: tuple[Judged, ...], findings: tuple[Finding, ...]) -> tuple[SafeAreaPicture, ...]:
+    """The safe area of one half at the duty of its worst safe-area finding.
+
+    findings: worst first. The locus of the governing member goes with it where no row of the duties shows it.
+    """
+    for finding in findings:
+        one = next((j for j in judged if (j.duty.name, j.duty.half) == (finding.duty, finding.half)), None)
+        if finding.limit != "safe-area" or one is None or one.operating.locus is None or not one.device.soa:
+            continue
+        picture = safe_area.picture(one, 0)
+        if one.duty.listed:
+            return (picture,)
+        locus = one.operating.locus
+        values = np.broadcast_to(one.duty.members.value, locus.shape[:2])[0]
+        member = int(np.argmin(np.abs(values - finding.where.member[0])))
+        v, i = (np.array(np.broadcast_to(a, locus.shape)[0, member]) for a in (locus.v, locus.i))
+        return (replace(picture, v=v, i=i),)
+    return ()
 
 
 def characteristics(judged: tuple[Judged, ...]) -> Characteristics:

@@ -111,8 +111,9 @@ def no_dc_curve(seen: Seen) -> tuple[Raised, ...]:
             id="no-dc-curve",
             text=(
                 f"{seen.place.device.name} has no dc safe-area curve. A pulse curve or the dissipation line does not "
-                "show where lasting conduction in the active or linear region turns into hot spots: hot cells of a MOSFET "
-                "below its zero-temperature-coefficient current, and of a bipolar transistor, draw the current to themselves."
+                "show where lasting conduction in the active or linear region turns into hot spots: hot cells of a "
+                "MOSFET below its zero-temperature-coefficient current, and of a bipolar transistor, draw the "
+                "current to themselves."
             ),
         ),
     )
