@@ -58,15 +58,20 @@ class Sitting:
     findings: tuple[Finding, ...]
 
 
-def check(stage: Stage) -> Result:
-    """The answer to one stage, decided on the worst corner of the uncertainties that the stage file states."""
+def check(stage: Stage, *, pictures: bool = True) -> Result:
+    """The answer to one stage, decided on the worst corner of the uncertainties that the stage file states.
+
+    pictures: whether the result also holds what pictures draw (loci, curves, sweeps).
+    """
     plan = CasePlan.corners(stage.spreads) if stage.spreads else CasePlan()
     worst: list[Finding] = []
     cases: list[int] = []
     nominal: list[float] = []
+    sittings: tuple[Sitting, ...] = ()
     for start in range(0, plan.count, BLOCK):
         part = plan.block(start, min(start + BLOCK, plan.count))
-        findings = [f for sitting in evaluate(stage.over(part)) for f in sitting.findings]
+        sittings = evaluate(stage.over(part))
+        findings = [f for sitting in sittings for f in sitting.findings]
         if start == 0:
             nominal = [float(f.utilisation[0]) for f in findings]
         for k, finding in enumerate(findings):
@@ -77,7 +82,12 @@ def check(stage: Stage) -> Result:
                 cases.append(case)
             elif _badness(one) > _badness(worst[k]):
                 worst[k], cases[k] = one, start + case
-    return _decide(stage, plan, worst, cases, nominal)
+    first = max(range(len(worst)), key=lambda k: (*_badness(worst[k]), -k)) if worst else None
+    governing = cases[first] if first is not None else 0
+    if plan.count > 1:
+        sittings = evaluate(stage.over(plan.block(governing, governing + 1)))
+    result = _decide(stage, plan, governing, sittings, worst, nominal)
+    return _with_pictures(result, sittings) if pictures else result
 
 
 def evaluate(stage: Stage) -> tuple[Sitting, ...]:
@@ -169,11 +179,15 @@ def worst_case(finding: Finding, cases: int) -> int:
     return int(np.argmax(same))
 
 
-def _decide(stage: Stage, plan: CasePlan, worst: list[Finding], cases: list[int], nominal: list[float]) -> Result:
-    """Guards, order, verdict; duties and pictures at the case that governs."""
-    first = max(range(len(worst)), key=lambda k: (*_badness(worst[k]), -k)) if worst else None
-    governing = cases[first] if first is not None else 0
-    sittings = evaluate(stage.over(plan.block(governing, governing + 1)))
+def _decide(
+    stage: Stage,
+    plan: CasePlan,
+    governing: int,
+    sittings: tuple[Sitting, ...],
+    worst: list[Finding],
+    nominal: list[float],
+) -> Result:
+    """Guards, order, verdict; duties and pictures come from `sittings`, at the case that governs."""
     cautions: list[Caution] = [
         Caution(id=i, text=t) for half in stage.halves for i, t in half.fitted.device.cautions
     ] + [Caution(id=i, text=t) for i, t in stage.document.cautions]
@@ -209,7 +223,16 @@ def _decide(stage: Stage, plan: CasePlan, worst: list[Finding], cases: list[int]
         assumptions=_assumptions(stage, plan, governing),
         cautions=tuple(dict.fromkeys(cautions)),
         inputs=(*stage.document.stated(),),
-        safe_area=tuple(p for s in sittings for p in drawn.safe_areas(s.judged, findings)),
+    )
+
+
+def _with_pictures(result: Result, sittings: tuple[Sitting, ...]) -> Result:
+    """The result with the loci, curves and sweeps that its pictures draw."""
+    listed = [judged for sitting in sittings for judged in sitting.judged if judged.duty.listed]
+    return replace(
+        result,
+        duties=tuple(replace(d, series=drawn.series(j)) for d, j in zip(result.duties, listed, strict=True)),
+        safe_area=tuple(p for s in sittings for p in drawn.safe_areas(s.judged, result.findings)),
         characteristics=tuple(drawn.characteristics(s.judged) for s in sittings),
         sweeps=tuple(sweep for s in sittings for sweep in drawn.sweeps(s.judged)),
     )
@@ -272,7 +295,6 @@ def _duty_result(sitting: Sitting, judged: Judged) -> DutyResult:
         T_heatsink=figures.T_heatsink,
         R_th_total=figures.R_th_total,
         facts=duty.facts,
-        series=drawn.series(judged),
     )
 
 

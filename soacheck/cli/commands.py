@@ -81,7 +81,7 @@ def check(
     problems: list[Problem] = []
     for path in stages:
         try:
-            results.append(decide(read_stage(path, devices=devices or ())))
+            results.append(decide(read_stage(path, devices=devices or ()), pictures=False))
         except InputError as error:
             problems += error.problems
     return _rendered(results, problems, as_json, as_sheet)
