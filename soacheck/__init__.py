@@ -18,6 +18,9 @@ if TYPE_CHECKING:
     from soacheck.device.reader import read_device
     from soacheck.errors import InputError, OutputError, Problem, QuantityError, SoacheckError
     from soacheck.jobs.point import point as check_point
+    from soacheck.quantity import as_pint
+    from soacheck.quantity import read as read_quantity
+    from soacheck.quantity import write as write_quantity
     from soacheck.result import DutyResult, Finding, Result, Status
     from soacheck.show.as_json import as_json
     from soacheck.show.figures import write_figures
@@ -43,6 +46,9 @@ _HOMES = {
     "Stage": ("soacheck.stage", "Stage"),
     "Status": ("soacheck.result", "Status"),
     "Traced": ("soacheck.trace", "Traced"),
+    "as_pint": ("soacheck.quantity", "as_pint"),
+    "read_quantity": ("soacheck.quantity", "read"),
+    "write_quantity": ("soacheck.quantity", "write"),
     "as_json": ("soacheck.show.as_json", "as_json"),
     "check_point": ("soacheck.jobs.point", "point"),
     "check_stage": ("soacheck.check", "check"),
@@ -69,14 +75,17 @@ __all__ = [
     "Traced",
     "__version__",
     "as_json",
+    "as_pint",
     "check_point",
     "check_stage",
     "find_device",
     "read_device",
+    "read_quantity",
     "read_stage",
     "sheet",
     "terminal",
     "write_figures",
+    "write_quantity",
 ]
 
 

@@ -3,95 +3,95 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 from soacheck.check import check
 from soacheck.errors import InputError, Problem, QuantityError
-from soacheck.quantity import read
+from soacheck.quantity import read, write
 from soacheck.result import Result
 from soacheck.stage import stage_from_text
 
+EXACT = 17  # digits that keep a float
+HERE = "point"
 HELD = "1 s"  # length of the period that a held point is written as; it repeats for ever
 
 
 def point(
     device: str,
-    v: str,
-    i: str,
+    v: object,
+    i: object,
     *,
-    pulse: str | None = None,
-    heatsink: str | None = None,
-    interface: str | None = None,
-    ambient: str | None = None,
-    case: str | None = None,
+    pulse: object = None,
+    heatsink: object = None,
+    interface: object = None,
+    ambient: object = None,
+    case: object = None,
     devices: Sequence[Path] = (),
 ) -> Result:
     """Check one point.
 
-    device: name or rating file, as the device path finds it from the working folder. v, i: quantities, "30 V",
-    "1.5 A". pulse: width of a single pulse; absent: held for ever. heatsink, interface, ambient: the heat path; case:
-    a case temperature in its place. A pulse starts with the junction at the case's, else the ambient's temperature.
-    Raises InputError for an option that is no such quantity.
+    device: name or rating file, as the device path finds it from the working folder. v, i and the options are
+    quantities: text ("30 V") or pint quantities. pulse: width of a single pulse; absent: held for ever. heatsink,
+    interface, ambient: the heat path; case: a case temperature in its place. A pulse starts with the junction at the
+    case's, else the ambient's temperature. Raises InputError for a value that is no such quantity.
     """
-    given = {
-        "V": (v, "voltage"),
-        "I": (i, "current"),
-        "--pulse": (pulse, "time"),
-        "--interface": (interface, "thermal resistance"),
-        "--ambient": (ambient, "temperature"),
-        "--case": (case, "temperature"),
-    }
-    if heatsink not in ("ideal", "none"):
-        given["--heatsink"] = (heatsink, "thermal resistance")
-    problems = [
-        problem for option, (text, dimension) in given.items() if (problem := _problem(option, text, dimension))
-    ]
+    problems: list[Problem] = []
+
+    def as_text(option: str, value: object, dimension: str) -> str | None:
+        if value is None or (option == "--heatsink" and value in ("ideal", "none")):
+            return None if value is None else str(value)
+        try:
+            si = read(value, dimension).si
+        except QuantityError as error:
+            problems.append(Problem(key=option, value=f"'{value}'", problem=error.problem, remedy=error.remedy))
+            return None
+        return value if isinstance(value, str) else write(si, dimension, EXACT)
+
+    volts, amps = as_text("V", v, "voltage"), as_text("I", i, "current")
+    path = _Path(
+        heatsink=as_text("--heatsink", heatsink, "thermal resistance"),
+        interface=as_text("--interface", interface, "thermal resistance"),
+        ambient=as_text("--ambient", ambient, "temperature"),
+        case=as_text("--case", case, "temperature"),
+    )
+    width = as_text("--pulse", pulse, "time")
     if case is not None:
         problems += [
             Problem(
                 key=option,
-                value=text,
+                value=f"'{value}'",
                 problem="--case takes the place of what lies behind the case",
                 remedy=f"--case or {option}, not both",
             )
-            for option, text in (("--heatsink", heatsink), ("--interface", interface))
-            if text is not None
+            for option, value in (("--heatsink", heatsink), ("--interface", interface))
+            if value is not None
         ]
-    if problems:
+    if problems or volts is None or amps is None:
         raise InputError(*problems)
     name = str(Path(device).resolve()) if device.endswith(".toml") else device
-    return check(
-        stage_from_text(
-            _stage(name, v, i, pulse, heatsink, interface, ambient, case),
-            shown_as="point",
-            folder=Path(),
-            devices=devices,
-        )
-    )
-
-
-def _problem(option: str, text: str | None, dimension: str) -> Problem | None:
-    if text is None:
-        return None
+    text = _stage(name, volts, amps, width, path)
     try:
-        read(text, dimension)
-    except QuantityError as error:
-        return Problem(key=option, value=f"'{text}'", problem=error.problem, remedy=error.remedy)
-    return None
+        return check(stage_from_text(text, shown_as=HERE, folder=Path(), devices=devices))
+    except InputError as error:  # lines of a file that nobody sees are no help
+        raise InputError(
+            *(replace(one, file="", line=None) if one.file == HERE else one for one in error.problems)
+        ) from None
 
 
-def _stage(
-    device: str,
-    v: str,
-    i: str,
-    pulse: str | None,
-    heatsink: str | None,
-    interface: str | None,
-    ambient: str | None,
-    case: str | None,
-) -> str:
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Path:
+    """The heat path as texts."""
+
+    heatsink: str | None
+    interface: str | None
+    ambient: str | None
+    case: str | None
+
+
+def _stage(device: str, v: str, i: str, pulse: str | None, path: _Path) -> str:
     """The stage file that asks the same."""
-    start = case or ambient
+    start = path.case or path.ambient
     lines = [
         "[stage]",
         f"title = {_quoted(f'{v} and {i}, ' + ('held' if pulse is None else f'one pulse of {pulse}'))}",
@@ -104,13 +104,10 @@ def _stage(
     if pulse is not None and start is not None:
         lines.append(f"T_start = {_quoted(start)}")
     lines.append("[heat_path]")
-    lines += [
-        f"{key} = {_quoted(text)}"
-        for key, text in (("heatsink", heatsink), ("interface", interface), ("T_case", case))
-        if text is not None
-    ]
-    if ambient is not None:
-        lines += ["[surroundings]", f"T_ambient = {_quoted(ambient)}"]
+    stated = (("heatsink", path.heatsink), ("interface", path.interface), ("T_case", path.case))
+    lines += [f"{key} = {_quoted(text)}" for key, text in stated if text is not None]
+    if path.ambient is not None:
+        lines += ["[surroundings]", f"T_ambient = {_quoted(path.ambient)}"]
     return "\n".join(lines) + "\n"
 
 
