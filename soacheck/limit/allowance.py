@@ -175,7 +175,7 @@ def share(line: Line, path: Path) -> Share:
     may = allowed(line, path.v, path.members)
     current = may.current * line.factor[:, None, None]
     none = path.counted & (current <= 0)
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         raw = np.where(none, NOTHING, path.i / current)
     judged_here = path.counted & ~may.rating_limited
     unknown = path.active & np.isnan(raw)
@@ -187,16 +187,19 @@ def share(line: Line, path: Path) -> Share:
     )
 
 
-def shares(lines: Lines, path: Path, dc: Share | None, duty_factor: FloatArray) -> tuple[FloatArray, ...]:
+def shares(
+    lines: Lines, path: Path, dc: Share | None, duty_factor: FloatArray, only: list[int] | None = None
+) -> tuple[FloatArray, ...]:
     """r of every distinct pulse width, rising, (case, member, time).
 
     Two curves of one width: the lower counts. A curve for repeated pulses that the locus repeats too densely for is
     stood in for by the next longer one. Where the dc curve allows more, it counts.
-    duty_factor: of the locus, (case, member).
+    duty_factor: of the locus, (case, member). only: numbers of the widths that are wanted, all when absent.
     """
     longer = None if dc is None else dc.r
     made: list[FloatArray] = []
-    for width in reversed(lines.widths):
+    wanted = lines.widths if only is None else tuple(lines.widths[k] for k in only)
+    for width in reversed(wanted):
         here: FloatArray | None = None
         for line in lines.pulses:
             if line.pulse != width:

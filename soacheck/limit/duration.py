@@ -62,7 +62,7 @@ def longest_run(t: FloatArray, r: FloatArray, level: FloatArray, use: Use) -> Ru
         t = np.concatenate([t, t + period], axis=2)
         r, above = np.concatenate([r, r], axis=2), np.concatenate([above, above], axis=2)
     before, after = above[..., :-1], above[..., 1:]
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         part = (level[..., None] - r[..., :-1]) / np.diff(r, axis=2)
     cross = t[..., :-1] + np.diff(t, axis=2) * np.where(before == after, 0.0, part)
     begins = np.concatenate(
@@ -85,7 +85,7 @@ def time_above(t: FloatArray, r: FloatArray, level: float, use: Use) -> FloatArr
     if use is Use.HELD:
         return above[..., 0].astype(np.float64)
     a, b = r[..., :-1], r[..., 1:]
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         part = np.abs((np.maximum(a, b) - level) / (b - a))
     share = np.where(above[..., :-1] & above[..., 1:], 1.0, np.where(above[..., :-1] != above[..., 1:], part, 0.0))
     dt = np.diff(t, axis=2)

@@ -60,7 +60,7 @@ class Point:
 
 def ratio(applied: FloatArray, allowed: FloatArray) -> FloatArray:
     """applied/allowed; NaN where the allowance is 0 or less, or where either is unknown."""
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         return np.where(np.asarray(allowed) > 0, np.asarray(applied) / allowed, np.nan)
 
 

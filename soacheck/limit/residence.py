@@ -33,20 +33,24 @@ class Residence:
     between: Literal["next-longer", "log-log"]
 
     def curves(self) -> tuple[tuple[FloatArray, float], ...]:
-        """Share and longest time above, per printed curve: the shortest first, dc last."""
+        """Share and the time above that is too long, per printed curve: the shortest first, dc last.
+
+        A curve that may be exceeded for as long as the next shorter pulse has a hair more; one that may not be exceeded
+        for its own width, a hair less.
+        """
         made = []
         for k, r in enumerate(self.r):
-            shorter = self.widths[max(k - 1, 0)] if self.between == "next-longer" else self.widths[k]
-            made.append((r, shorter))
+            own = k == 0 or self.between == "log-log"
+            made.append((r, self.widths[k] * (1 - HAIR) if own else self.widths[k - 1] * (1 + HAIR)))
         if self.dc is not None and self.widths:
-            made.append((self.dc, self.widths[-1]))
+            made.append((self.dc, self.widths[-1] * (1 + HAIR)))
         return tuple(made)
 
     def fails(self, level: FloatArray) -> BoolArray:
         """Whether the locus stays too long above some curve once all its currents are divided by `level`."""
         bad = np.zeros(level.shape, dtype=np.bool_)
         for r, longest in self.curves():
-            bad |= longest_run(self.t, r, level, self.use).duration > longest * (1 + HAIR)
+            bad |= longest_run(self.t, r, level, self.use).duration > longest
         if self.between == "log-log" and len(self.r) > 1:
             bad |= self._between(level)[0]
         return bad
@@ -58,7 +62,7 @@ class Residence:
         at = np.clip(np.searchsorted(logs, log, side="left"), 1, len(logs) - 1)
         weight = (log - logs[at - 1]) / (logs[at] - logs[at - 1])
         low, high = (self._chosen(at + step) for step in (-1, 0))
-        with np.errstate(divide="ignore"):
+        with np.errstate(divide="ignore", invalid="ignore"):
             mixed = np.exp((1 - weight) * np.log(low) + weight * np.log(high))
         # A point left to the current limits on one curve is left to them between it and the next.
         return np.where((low > 0) & (high > 0), mixed, 0.0)

@@ -6,23 +6,25 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from soacheck.limit.allowance import Lines, share
+from soacheck.limit.allowance import Lines, Share, share, shares
 from soacheck.limit.duration import time_above
+from soacheck.limit.hot_spot import printed_response
 from soacheck.limit.judged import Judged
 from soacheck.limit.path import Path, path_of
-from soacheck.limit.superposition import mean_of
+from soacheck.limit.superposition import mean_of, printed
 from soacheck.limit.turn_off import TurnOff, turn_off
 from soacheck.locus import Use
 from soacheck.trace import BoolArray, FloatArray, IntArray
 
 ELEMENTS = 2_000_000  # of the largest array of one piece of work
+FIT = 1.1  # room for the fit of the hot spot's response
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Screen:
     """Per (case, member), measured by the dc curve or, without one, by the longest pulse.
 
-    top: greatest share, an upper bound of both tests; v_top: the voltage it stands at. low: a lower bound.
+    top: greatest share; v_top: the voltage it stands at. low, high: bounds of the utilisation.
     duty_factor: the larger of the share of time above the measure and P_mean/P_peak.
     lasting: without a dc curve, active conduction that lasts or repeats beyond the longest pulse.
     beyond, zero: conducts where nothing is known, where nothing is allowed. reversed: collector below emitter.
@@ -31,6 +33,7 @@ class Screen:
     top: FloatArray
     v_top: FloatArray
     low: FloatArray
+    high: FloatArray
     duty_factor: FloatArray
     lasting: BoolArray
     beyond: BoolArray
@@ -54,7 +57,7 @@ def screen(judged: Judged, lines: Lines) -> Screen:
         return pieces[0]
     joined = {
         name: np.concatenate([getattr(piece, name) for piece in pieces], axis=1)
-        for name in ("top", "v_top", "low", "duty_factor", "lasting", "beyond", "zero", "reversed", "T_unknown")
+        for name in ("top", "v_top", "low", "high", "duty_factor", "lasting", "beyond", "zero", "reversed", "T_unknown")
     }
     return Screen(**joined, turned_off=_joined([piece.turned_off for piece in pieces]))
 
@@ -65,12 +68,6 @@ def _piece(judged: Judged, lines: Lines, members: IntArray) -> Screen:
     if measure is None:
         raise ValueError("without curves there is nothing to screen")
     shape = path.v.shape[:2]
-    one = share(measure, path)
-    top, at = one.r.max(axis=2), one.r.argmax(axis=2)[..., None]
-    if lines.dc is not None and path.use is Use.REPEATED:
-        low = np.minimum(mean_of(path, one.r), top)
-    else:
-        low = np.where(path.use is Use.HELD, top, np.zeros(shape))
 
     def pick(a: FloatArray) -> FloatArray:
         full = np.broadcast_to(a, (judged.cases, a.shape[1]))
@@ -78,13 +75,25 @@ def _piece(judged: Judged, lines: Lines, members: IntArray) -> Screen:
             return np.broadcast_to(full, shape)
         return np.take_along_axis(full, np.broadcast_to(members, shape), axis=1)
 
+    one = share(measure, path)
+    top, at = one.r.max(axis=2), one.r.argmax(axis=2)[..., None]
+    v_top = np.take_along_axis(path.v, at, axis=2)[..., 0]
     with np.errstate(divide="ignore", invalid="ignore"):
         crest = np.nan_to_num(pick(operating.P_mean) / pick(operating.P_peak))
+    density = np.maximum(time_above(path.t, one.r, 1.0, path.use), crest)
+    mean = np.minimum(mean_of(path, one.r), top) if path.use is Use.REPEATED else np.zeros(shape)
+    if path.use is Use.HELD:
+        low = high = top
+    else:
+        low = mean if lines.dc is not None else np.zeros(shape)
+        high = _high(lines, path, one, density, top, v_top, mean)
+
     return Screen(
         top=top,
-        v_top=np.take_along_axis(path.v, at, axis=2)[..., 0],
+        v_top=v_top,
         low=low * (1 - 1e-9),
-        duty_factor=np.maximum(time_above(path.t, one.r, 1.0, path.use), crest),
+        high=high,
+        duty_factor=density,
         lasting=_lasting(lines, path),
         beyond=one.beyond & ~np.isnan(pick(measure.T)),
         zero=one.zero,
@@ -92,6 +101,37 @@ def _piece(judged: Judged, lines: Lines, members: IntArray) -> Screen:
         T_unknown=np.isnan(pick(measure.T)),
         turned_off=None if operating.locus is None or operating.locus.turn_off is None else turn_off(judged, path),
     )
+
+
+def _high(
+    lines: Lines,
+    path: Path,
+    one: Share,
+    density: FloatArray,
+    top: FloatArray,
+    v_top: FloatArray,
+    mean: FloatArray,
+) -> FloatArray:
+    """Upper bound of the utilisation, from the curves that a locus of this length can stay above for too long.
+
+    Of the superposition: what happened within the last period answers with g(period) at most, what happened before with
+    the mean (g grows no faster than time).
+    """
+    if lines.dc is None or not lines.widths:
+        return top
+    length = path.t[..., -1] - path.t[..., 0]
+    widths, longest = np.asarray(lines.widths), float(np.max(length))
+    if longest > widths[-1]:
+        return top
+    number = max(int(np.searchsorted(widths, longest)), 0)  # the longest curve whose next shorter width is less
+    none = np.zeros((1, 1))
+    r = shares(lines, path, one, density, only=sorted({0, number}))
+    times, g = printed(lines, v_top, path.members)
+    grown = printed_response(times, g, np.asarray([longest]))[..., 0]
+    slow = np.all(np.diff(np.log(g), axis=-1) <= np.diff(np.log(times)) * (1 + 1e-9), axis=-1)
+    response = np.where(slow, FIT * grown * top + (mean if path.use is Use.REPEATED else none), top)
+    stays = np.maximum(np.maximum.reduce([each.max(axis=2) for each in r]), mean)
+    return np.minimum(np.maximum(response, stays), top)
 
 
 def _any(mask: BoolArray) -> BoolArray:

@@ -17,6 +17,7 @@ from soacheck.locus import Use
 from soacheck.trace import BoolArray, FloatArray, IntArray
 
 TOGETHER = 8  # members worked out in full at a time
+TOUCH = 1e-12  # a share of 1 within rounding touches, and does not cross
 MODES = 24  # of a hot spot, about
 
 
@@ -104,7 +105,8 @@ def work(judged: Judged, lines: Lines, seen: Screen) -> Worked:
         return tests.residence.utilisation(low, high)
 
     width = max(1, min(TOGETHER, ELEMENTS // (judged.cases * judged.operating.T_j.shape[2] * MODES)))
-    use, exact = exact_where_it_matters(seen.low, seen.top, evaluate, below=1.0, width=width)
+    use, exact = exact_where_it_matters(seen.low, seen.high, evaluate, below=1.0, width=width)
+    use = np.where(np.abs(use - 1) < TOUCH, 1.0, use)
     exceeds &= exact & (use > 1)
     shorter = (use > 1) & ~exceeds & ~seen.lasting & ~seen.zero
     no_number = seen.T_unknown | seen.zero | ((shorter | seen.beyond | seen.lasting) & ~exceeds)
