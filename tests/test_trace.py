@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from soacheck.trace import derived, found, given
+from soacheck.trace import derived, distinct, found, given
 
 
 def test_a_formula_is_evaluated_from_its_own_text() -> None:
@@ -54,3 +54,9 @@ def test_walk_gives_each_input_once_and_before_what_is_made_of_it() -> None:
     b = derived("b", "a * 2", "1", a)
     c = derived("c", "a + b", "1", a, b)
     assert [node.symbol for node in c.walk()] == ["a", "b", "c"]
+
+
+def test_distinct_values_rise_and_stand_once() -> None:
+    values = np.array([[3.0, 1.0], [np.inf, 3.0]])
+    assert distinct(values).tolist() == [1.0, 3.0, np.inf]
+    assert distinct([]).size == 0

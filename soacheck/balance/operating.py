@@ -131,7 +131,7 @@ def before_of(candidates: Sequence[Operating]) -> Before | None:
     shared = first.state is not None and all(
         one.state is not None and first.modes is not None and _same(first.modes, one.modes) for one in picked
     )
-    names = {picked[k].name for k in np.unique(winner)}
+    names = {picked[k].name for k in winner.ravel().tolist()}
     return Before(
         name=" / ".join(sorted(names)),
         T_air=choose([one.T_air for one in picked]),

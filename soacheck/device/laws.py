@@ -12,7 +12,7 @@ from typing import NamedTuple
 import numpy as np
 
 from soacheck.device.ratings import DARLINGTON, MOSFET, Device, Triple
-from soacheck.trace import FloatArray, IntArray, Traced, derived, given
+from soacheck.trace import FloatArray, IntArray, Traced, derived, distinct, given
 
 CUTOFF = 0
 ACTIVE = 1
@@ -192,7 +192,7 @@ def current_gain(device: Device, current: FloatArray, T: float = T_25) -> FloatA
     if points is None:
         stated = device.typical.h_FE.middle if device.typical.h_FE is not None else None
         return None if stated is None else np.broadcast_to(_over(stated.value, current.ndim), current.shape)
-    temperatures = np.unique(points[:, 1])
+    temperatures = distinct(points[:, 1])
     at_each = [_gain_at(points[points[:, 1] == temperature], current) for temperature in temperatures]
     above = int(np.clip(np.searchsorted(temperatures, T), 1, max(len(temperatures) - 1, 1)))
     if len(temperatures) == 1:

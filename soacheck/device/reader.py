@@ -242,7 +242,7 @@ def _gain_points(cells: Cells) -> FloatArray | None:
         said = "currents and gains are positive, and at least one point is needed"
         cells.refuse("h_FE_points", said, _GAIN_LINE)
         return None
-    if len(np.unique(points[:, :2], axis=0)) < len(points):
+    if len({tuple(row) for row in points[:, :2].tolist()}) < len(points):
         cells.refuse("h_FE_points", "two points stand at one current and temperature", "leave one out")
         return None
     return frozen(points)

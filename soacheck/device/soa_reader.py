@@ -15,7 +15,7 @@ from soacheck.device.ratings import SafeAreaCurve, SafeAreaDerating
 from soacheck.device.soa import curve_current, effective_points
 from soacheck.quantity import write
 from soacheck.table import Cells, Document
-from soacheck.trace import FloatArray, Traced, frozen
+from soacheck.trace import FloatArray, Traced, distinct, frozen
 
 _LINE = 'points = [["10 V", "15 A"], ["50 V", "3 A"], ["160 V", "0.2 A"]]'
 _SMALLEST, _LARGEST = 1e-6, 2e4  # [V] and [A]
@@ -194,7 +194,7 @@ def _refuse_crossed(cells: Cells, first: SafeAreaCurve, second: SafeAreaCurve) -
         return
     longer, shorter = sorted((first, second), key=lambda curve: -curve.pulse)
     upper, lower = effective_points(shorter), effective_points(longer)
-    v = np.union1d(upper[:, 0], lower[:, 0])
+    v = distinct(np.concatenate([upper[:, 0], lower[:, 0]]))
     above = curve_current(lower, v) / curve_current(upper, v)
     worst = int(np.nanargmax(above))
     if above[worst] > _ABOVE:

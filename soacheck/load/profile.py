@@ -12,7 +12,7 @@ from soacheck.load.parts import turn_off_drive
 from soacheck.load.parts.turn_off_drive import TurnOffDrive
 from soacheck.locus import Locus, Use
 from soacheck.table import Cells, Key
-from soacheck.trace import BoolArray, FloatArray, Traced, found, frozen, given
+from soacheck.trace import BoolArray, FloatArray, Traced, distinct, found, frozen, given
 
 KEYS: tuple[Key, ...] = (
     Key(
@@ -212,7 +212,7 @@ def _marked(
     Between two intervals one unmarked sample is wanted, else what lies between two marked samples would count
     as marked; the same before the first and after the last interval of a period.
     """
-    edges = np.unique(np.concatenate([[t[0]], spans.ravel(), [t[-1]]]))
+    edges = distinct(np.concatenate([[t[0]], spans.ravel(), [t[-1]]]))
     wanted = np.concatenate([edges, (edges[1:] + edges[:-1]) / 2])
     new = np.setdiff1d(wanted, t)
     at = np.searchsorted(t, new)  # no step at a new time: plain interpolation is exact

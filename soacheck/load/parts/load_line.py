@@ -6,7 +6,7 @@ import numpy as np
 
 from soacheck.device.ratings import Device
 from soacheck.locus import Locus, Use
-from soacheck.trace import FloatArray
+from soacheck.trace import FloatArray, distinct
 
 HELD_POINTS = 257  # along the line, even in voltage: the top of the parabola is exact, an SOA slope of 5 within 1e-4
 SEGMENTS = 256  # of one period of a sine: the mean of its square is met within 1e-4
@@ -29,7 +29,7 @@ def held_voltages(supply: FloatArray, v_on: FloatArray, device: Device) -> Float
     """
     supply, v_on = np.broadcast_arrays(supply, np.minimum(v_on, supply))
     even = v_on[:, None] + (supply - v_on)[:, None] * np.linspace(0.0, 1.0, HELD_POINTS)
-    corners = np.unique(np.concatenate([curve.points[:, 0] for curve in device.soa] or [np.zeros(0)]))
+    corners = distinct(np.concatenate([curve.points[:, 0] for curve in device.soa] or [np.zeros(0)]))
     own = np.concatenate([supply[:, None] / 2, np.broadcast_to(corners, (supply.size, corners.size))], axis=1)
     return np.sort(np.concatenate([even, np.clip(own, v_on[:, None], supply[:, None])], axis=1), axis=1)
 
@@ -85,7 +85,7 @@ def slow_swing(
     one_line: all quiescent points stand on the line of the swing; the members then run along it, v rising.
     """
     several = i_Q.shape[1] > 1
-    chosen = np.unique(np.linspace(0, i_Q.shape[1] - 1, 9).round().astype(int)) if several else np.array([0])
+    chosen = distinct(np.linspace(0, i_Q.shape[1] - 1, 9).round()).astype(int) if several else np.array([0])
     s = np.linspace(-1.0, 1.0, 65 if several else HELD_POINTS)
     wave = np.broadcast_to(amplitude, i_Q.shape)[:, chosen, None] * s
     v = np.broadcast_to(v_Q, i_Q.shape)[:, chosen, None] - ohms[:, None, None] * wave
