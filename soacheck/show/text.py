@@ -58,6 +58,8 @@ def clean(text: str) -> str:
 
 def cells(text: str) -> int:
     """How many columns of a terminal the text takes."""
+    if text.isascii():
+        return len(text)
     wide = sum(unicodedata.east_asian_width(sign) in "WF" for sign in text)
     return len(text) + wide - sum(unicodedata.combining(sign) > 0 for sign in text)
 
