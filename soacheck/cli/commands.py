@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import difflib
 import json
 import os
 import sys
@@ -15,6 +14,7 @@ import typer
 
 from soacheck import __version__
 from soacheck.cli.answer import Answer, ExitStatus, worst
+from soacheck.cli.plain_arguments import Command, Group
 from soacheck.cli.process import refused
 from soacheck.errors import InputError, Problem
 from soacheck.show.text import clean, wants_colour
@@ -23,13 +23,14 @@ if TYPE_CHECKING:
     from soacheck.result import Result
 
 app = typer.Typer(
+    cls=Group,
     name="soacheck",
     help="Check a power transistor stage: dissipation, temperatures, safe area. Every figure traceable.",
     epilog="Exit status of check, point: 0 within, 1 exceeds, 2 the input is wrong, 3 unproven, 4 marginal.",
     rich_markup_mode=None,
     pretty_exceptions_enable=False,
 )
-device_app = typer.Typer(help="Read a rating file back, or start one.", rich_markup_mode=None)
+device_app = typer.Typer(cls=Group, help="Read a rating file back, or start one.", rich_markup_mode=None)
 app.add_typer(device_app, name="device")
 
 
@@ -66,7 +67,7 @@ def soacheck(
     """Options of soacheck itself."""
 
 
-@app.command()
+@app.command(cls=Command)
 def check(
     stages: Annotated[list[Path], typer.Argument(metavar="STAGE", help="Stage files (TOML).")],
     as_json: JsonFlag = False,
@@ -87,7 +88,7 @@ def check(
     return _rendered(results, problems, as_json, as_sheet)
 
 
-@app.command()
+@app.command(cls=Command)
 def point(
     device: Annotated[str, typer.Argument(metavar="DEVICE", help="A device's name or its rating file.")],
     voltage: Annotated[str, typer.Argument(metavar="V", help='Voltage across the device: "30 V".')],
@@ -119,7 +120,7 @@ def point(
     return _rendered([result], [], as_json, as_sheet)
 
 
-@app.command()
+@app.command(cls=Command)
 def plot(
     stage: Annotated[Path, typer.Argument(metavar="STAGE", help="A stage file (TOML).")],
     name: Annotated[str | None, typer.Argument(metavar="NAME", help="One picture; absent: all.")] = None,
@@ -141,7 +142,7 @@ def plot(
     return Answer(text=_lines(written.paths), notes=left_out, status=drawn)
 
 
-@app.command()
+@app.command(cls=Command)
 def demo(
     folder: Annotated[Path, typer.Argument(metavar="DIR", help="Where the files go.")],
     force: Force = False,
@@ -158,7 +159,7 @@ def demo(
     return Answer(text=_lines(files) + f"try: soacheck check {next(iter(files))}\n")
 
 
-@device_app.command("show")
+@device_app.command("show", cls=Command)
 def show(
     device: Annotated[str, typer.Argument(metavar="DEVICE", help="A device's name or its rating file.")],
     devices: Devices = None,
@@ -172,7 +173,7 @@ def show(
     return Answer(text=shown(read_device(file, shown_as=str(file))))
 
 
-@device_app.command("new")
+@device_app.command("new", cls=Command)
 def new(
     kind: Annotated[str, typer.Argument(metavar="KIND", help=_KINDS)],
     name: Annotated[str | None, typer.Argument(metavar="NAME", help="The device's name.")] = None,
@@ -223,7 +224,9 @@ def _rendered(results: Sequence[Result], problems: Sequence[Problem], as_json: b
 
 
 def _unknown(what: str, name: str, known: Sequence[str]) -> Problem:
-    near = difflib.get_close_matches(name, known, n=1)
+    from difflib import get_close_matches
+
+    near = get_close_matches(name, known, n=1)
     remedy = f"did you mean {near[0]}?" if near else f"one of: {', '.join(known)}"
     return Problem(value=name, problem=f"there is no {what} of this name", remedy=remedy)
 
