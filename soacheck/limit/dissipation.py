@@ -84,7 +84,7 @@ def allowed_power(judged: Judged) -> FloatArray:
         return np.full(shape, np.nan)
     T_j, R_jc = ratings.T_j.value[:, None], R.value[:, None]
     cap = (T_j - ratings.T_case.value[:, None]) / R_jc if ratings.P_tot is None else ratings.P_tot.value[:, None]
-    line = (T_j - operating.T_case) / R_jc
+    line = np.maximum(T_j - operating.T_case, 0.0) / R_jc
     return np.broadcast_to(judged.rules.power.value[:, None] * np.minimum(line, cap), shape)
 
 
@@ -97,11 +97,18 @@ def _traced(judged: Judged, decided: Verdict) -> Traced | None:
     if ratings.P_tot is None:
         T_ref = ratings.T_case.named("T_ref")
         return derived(
-            "P_allowed", "k_P * (T_j_max - max(T_case, T_ref)) / R_th_jc", "W", k, T_j, T, T_ref, R.named("R_th_jc")
+            "P_allowed",
+            "k_P * max(T_j_max - max(T_case, T_ref), 0) / R_th_jc",
+            "W",
+            k,
+            T_j,
+            T,
+            T_ref,
+            R.named("R_th_jc"),
         )
     return derived(
         "P_allowed",
-        "k_P * min(P_tot, (T_j_max - T_case) / R_th_jc)",
+        "k_P * min(P_tot, max(T_j_max - T_case, 0) / R_th_jc)",
         "W",
         k,
         ratings.P_tot.named("P_tot"),

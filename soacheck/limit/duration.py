@@ -127,7 +127,7 @@ def exact_where_it_matters(
         best = np.minimum(value.max(axis=1, keepdims=True), below)
         rest = np.where(~done & (upper > best * (1 + 1e-12)), upper, -np.inf)
         if not bool(np.any(rest > -np.inf)):
-            return value, done
+            return np.where(np.isnan(upper), np.nan, value), done
         pick = np.argpartition(-rest, width - 1, axis=1)[:, :width]
         np.put_along_axis(value, pick, evaluate(pick), axis=1)
         np.put_along_axis(done, pick, True, axis=1)

@@ -14,6 +14,7 @@ import numpy as np
 
 from soacheck.device.laws import regions
 from soacheck.limit.judged import Judged
+from soacheck.locus import Use
 from soacheck.result import Finding, Reason, Status, Where, status_of
 from soacheck.table import Missing
 from soacheck.trace import BoolArray, FloatArray, IntArray, Traced
@@ -76,8 +77,11 @@ def verdict(
     for note in kept:
         status = np.where(note.holds, np.maximum(status, int(note.best)), status)
     worst = status.max(axis=1, keepdims=True)
-    rank = np.where(status == worst, np.where(np.isnan(used), np.inf, used), -np.inf)
-    return Verdict(status=status, utilisation=used, member=np.argmax(rank, axis=1), notes=kept)
+    # what has no number comes first; among those the member that heats the device most
+    heat = np.broadcast_to(np.nan_to_num(judged.operating.P_mean, nan=0.0), shape)
+    last = np.where(status == worst, np.where(np.isnan(used), np.inf, used), -np.inf)
+    member = np.argmax(np.where(last == last.max(axis=1, keepdims=True), heat, -np.inf), axis=1)
+    return Verdict(status=status, utilisation=used, member=np.asarray(member, dtype=np.int64), notes=kept)
 
 
 def nowhere(cases: int) -> Point:
@@ -101,7 +105,8 @@ def point_at(judged: Judged, decided: Verdict, time: IntArray) -> Point:
 
     v, i = pick(locus.v), pick(locus.i)
     region = regions(judged.device, v, i) if locus.region is None else pick(locus.region)
-    return Point(t=pick(locus.t), v=v, i=i, region=region)
+    t = np.full(judged.cases, np.nan) if locus.use is Use.HELD else pick(locus.t)  # a held point has no time
+    return Point(t=t, v=v, i=i, region=region)
 
 
 def finding(
@@ -120,8 +125,7 @@ def finding(
     """The finding of the worst member of each case. more: reasons that are known of the worst members alone."""
     members = judged.duty.members
     point = nowhere(judged.cases) if point is None else point
-    known = ~np.isnan(point.v) if members.name else np.zeros(judged.cases, dtype=np.bool_)
-    value = np.where(known, _member_value(judged, decided), np.nan) if members.name else np.full(judged.cases, np.nan)
+    value = _member_value(judged, decided) if members.name else np.full(judged.cases, np.nan)
     reasons = []
     for note in decided.notes:
         applies = decided.of(note.holds)
@@ -176,7 +180,7 @@ def temperature_unknown(judged: Judged, T: FloatArray) -> tuple[Note, ...]:
     """The finding needs a temperature that is not known."""
     unknown = np.isnan(T)
     keys = ", ".join(missing.key for missing in judged.operating.missing)
-    because = f": {keys} is not stated" if keys else ""
+    because = f": {keys} not stated" if keys else ""
     return (
         Note(
             text=f"The temperatures are not known{because}.",

@@ -27,7 +27,8 @@ class Screen:
     top: greatest share; v_top: the voltage it stands at. low, high: bounds of the utilisation.
     duty_factor: the larger of the share of time above the measure and P_mean/P_peak.
     lasting: without a dc curve, active conduction that lasts or repeats beyond the longest pulse.
-    beyond, zero: conducts where nothing is known, where nothing is allowed. reversed: collector below emitter.
+    beyond, zero: conducts where nothing is known, where nothing is allowed. reversed: collector below emitter. hole: a
+    point of the locus is not a number.
     """
 
     top: FloatArray
@@ -40,6 +41,7 @@ class Screen:
     zero: BoolArray
     reversed: BoolArray
     T_unknown: BoolArray
+    hole: BoolArray
     turned_off: TurnOff | None
 
 
@@ -57,7 +59,19 @@ def screen(judged: Judged, lines: Lines) -> Screen:
         return pieces[0]
     joined = {
         name: np.concatenate([getattr(piece, name) for piece in pieces], axis=1)
-        for name in ("top", "v_top", "low", "high", "duty_factor", "lasting", "beyond", "zero", "reversed", "T_unknown")
+        for name in (
+            "top",
+            "v_top",
+            "low",
+            "high",
+            "duty_factor",
+            "lasting",
+            "beyond",
+            "zero",
+            "reversed",
+            "T_unknown",
+            "hole",
+        )
     }
     return Screen(**joined, turned_off=_joined([piece.turned_off for piece in pieces]))
 
@@ -99,6 +113,7 @@ def _piece(judged: Judged, lines: Lines, members: IntArray) -> Screen:
         zero=one.zero,
         reversed=_any(path.v < -1e-9 * judged.device.max.V_max.value[:, None, None]),
         T_unknown=np.isnan(pick(measure.T)),
+        hole=_any(np.isnan(path.v + path.i)),
         turned_off=None if operating.locus is None or operating.locus.turn_off is None else turn_off(judged, path),
     )
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from soacheck.limit import junction_temperature, peak_current, voltage
+from soacheck.limit import voltage
 from soacheck.limit.allowance import Line, Lines
 from soacheck.limit.found import ALWAYS, Note, sharing, temperature_unknown, typical, typical_named
 from soacheck.limit.judged import Judged
@@ -31,7 +31,13 @@ def notes_of(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked: 
     notes = [
         *sharing(judged),
         *temperature_unknown(judged, np.where(seen.T_unknown, np.nan, 0.0)),
+        Note(text="The locus has points that are not numbers.", holds=seen.hole, best=Status.UNPROVEN),
         Note(text="At the temperature reached the safe area allows no current.", holds=seen.zero, best=Status.EXCEEDS),
+        Note(
+            text="Where the curves are known, the locus is outside them.",
+            holds=worked.exceeds & np.isnan(worked.use),
+            best=Status.EXCEEDS,
+        ),
         Note(text=beyond, holds=seen.beyond, best=Status.UNPROVEN, missing=(more,)),
         Note(text=NO_DC, holds=seen.lasting, best=Status.UNPROVEN, missing=(DC_MISSING,)),
         *_shorter(judged, lines, worked),
@@ -51,22 +57,20 @@ def _shorter(judged: Judged, lines: Lines, worked: Worked) -> tuple[Note, ...]:
     """Above the shortest printed curve for less than its width: unproven, if the other ratings hold."""
     if not bool(np.any(worked.shorter)):
         return ()
-    others = [f for limit in (peak_current.find, voltage.find, junction_temperature.find) for f in limit(judged)]
-    crossed = np.logical_or.reduce([f.status == Status.EXCEEDS for f in others])[:, None]
     label = lines.pulses[0].label if lines.pulses else "dc"
-    shortest = f"Above the {label} curve, the shortest printed one, for less than its width"
+    above = f"Above the {label} curve, the shortest printed one, for less than its width"
+    answer = (
+        f"The response of the hot spot touches only because nothing is known below {label}, the shortest printed curve"
+    )
+    needed, crossed = (
+        "a curve for a shorter pulse is needed.",
+        "peak current, voltage or junction temperature is exceeded.",
+    )
+    open_ = worked.shorter & ~worked.crossed
     return (
-        Note(
-            text=f"{shortest}: a curve for a shorter pulse is needed.",
-            holds=worked.shorter & ~crossed,
-            best=Status.UNPROVEN,
-            missing=(SHORTER_MISSING,),
-        ),
-        Note(
-            text=f"{shortest}, and peak current, voltage or junction temperature is exceeded.",
-            holds=worked.shorter & crossed,
-            best=Status.EXCEEDS,
-        ),
+        Note(text=f"{above}: {needed}", holds=open_ & worked.above, best=Status.UNPROVEN, missing=(SHORTER_MISSING,)),
+        Note(text=f"{answer}: {needed}", holds=open_ & ~worked.above, best=Status.UNPROVEN, missing=(SHORTER_MISSING,)),
+        Note(text=f"{above}, and {crossed}", holds=worked.shorter & worked.crossed, best=Status.EXCEEDS),
     )
 
 

@@ -12,15 +12,16 @@ from soacheck.trace import FloatArray, Traced
 POINTS = 160  # of a scaled curve, evenly on the logarithm
 
 
-def picture(judged: Judged, case: int) -> SafeAreaPicture:
-    """Printed and scaled curves of one duty at its hottest member, for one case."""
+def picture(judged: Judged, case: int, member: int | None = None) -> SafeAreaPicture:
+    """Printed and scaled curves of one duty at one member, absent: its hottest, for one case."""
     lines = lines_of(judged)
     shown = [*lines.pulses, *([] if lines.dc is None else [lines.dc])]
     T = np.broadcast_to(judged.operating.T_case_peak, (judged.cases, judged.operating.T_case_peak.shape[1]))
     measure = lines.longest
     if measure is not None:
         T = np.broadcast_to(measure.T, (judged.cases, measure.T.shape[1]))
-    hot = int(np.argmax(np.where(np.isnan(T[case]), -np.inf, T[case])))
+    hottest = int(np.argmax(np.where(np.isnan(T[case]), -np.inf, T[case])))
+    hot = hottest if member is None else member
     ratings, locus = judged.device.max, judged.operating.locus
     v = i = np.empty(0)
     if locus is not None and not judged.duty.listed:

@@ -9,6 +9,7 @@ import numpy as np
 from soacheck.limit.allowance import Lines, share, shares
 from soacheck.limit.duration import exact_where_it_matters
 from soacheck.limit.judged import Judged
+from soacheck.limit.junction_temperature import limit_of
 from soacheck.limit.path import Path, path_of
 from soacheck.limit.residence import Residence
 from soacheck.limit.screen import ELEMENTS, Screen
@@ -38,13 +39,16 @@ class Tests:
 class Worked:
     """Utilisation per (case, member), NaN where it has no number, and what it rests on.
 
-    exceeds: a crossing that is proven. shorter: above the shortest printed curve, for less than its width, and no
-    crossing proven.
+    exceeds: a crossing that is proven. shorter: beyond what is known of pulses shorter than the shortest printed curve,
+    and no crossing proven; above: because the locus goes above that curve; crossed: while peak current, voltage or
+    junction temperature of the same member is exceeded.
     """
 
     use: FloatArray
     exceeds: BoolArray
     shorter: BoolArray
+    above: BoolArray
+    crossed: BoolArray
 
 
 def tests_of(judged: Judged, lines: Lines, seen: Screen, path: Path) -> Tests:
@@ -95,6 +99,7 @@ def _without_pulses(path: Path, x: FloatArray) -> Superposition:
 def work(judged: Judged, lines: Lines, seen: Screen) -> Worked:
     """The larger utilisation of both tests, exact for every member that can be the worst."""
     exceeds, one = np.zeros(seen.top.shape, dtype=np.bool_), np.ones(seen.top.shape)
+    above = np.zeros(seen.top.shape, dtype=np.bool_)
 
     def evaluate(pick: IntArray) -> FloatArray:
         tests = tests_of(judged, lines, seen, path_of(judged, pick))
@@ -102,15 +107,31 @@ def work(judged: Judged, lines: Lines, seen: Screen) -> Worked:
         high = np.maximum(np.take_along_axis(seen.top, pick, axis=1), low)
         stays = tests.residence.fails(np.take_along_axis(one, pick, axis=1))
         np.put_along_axis(exceeds, pick, stays | (tests.superposition.proven > 1), axis=1)
+        np.put_along_axis(above, pick, tests.shortest > 1, axis=1)
         return tests.residence.utilisation(low, high)
 
     width = max(1, min(TOGETHER, ELEMENTS // (judged.cases * judged.operating.T_j.shape[2] * MODES)))
     use, exact = exact_where_it_matters(seen.low, seen.high, evaluate, below=1.0, width=width)
     use = np.where(np.abs(use - 1) < TOUCH, 1.0, use)
-    exceeds &= exact & (use > 1)
+    exceeds &= exact & (use > 1) & ~seen.T_unknown
     shorter = (use > 1) & ~exceeds & ~seen.lasting & ~seen.zero
-    no_number = seen.T_unknown | seen.zero | ((shorter | seen.beyond | seen.lasting) & ~exceeds)
+    crossed = shorter & _others_crossed(judged)
+    no_number = seen.T_unknown | seen.hole | seen.zero | seen.beyond | ((shorter | seen.lasting) & ~exceeds & ~crossed)
     use = np.where(no_number, np.nan, use)
     if seen.turned_off is not None:
         use = np.maximum(use, seen.turned_off.value)
-    return Worked(use=use, exceeds=exceeds, shorter=shorter)
+    return Worked(use=use, exceeds=exceeds, shorter=shorter, above=above, crossed=crossed)
+
+
+def _others_crossed(judged: Judged) -> BoolArray:
+    """Whether a member exceeds its peak current, its voltage or its junction temperature, (case, member)."""
+    locus, ratings, rules = judged.operating.locus, judged.device.max, judged.rules
+    if locus is None:
+        raise ValueError("a duty without a locus has no members")
+    peak = ratings.I_max if ratings.I_peak is None else ratings.I_peak
+    return np.asarray(
+        (judged.operating.T_j_bound > limit_of(judged).value[:, None])
+        | (locus.v_peak > (rules.voltage.value * ratings.V_max.value)[:, None])
+        | (locus.i_peak > (rules.current.value * np.maximum(peak.value, ratings.I_max.value))[:, None]),
+        dtype=np.bool_,
+    )

@@ -67,9 +67,7 @@ def device(kind: Kind = "npn", soa: Sequence[SafeAreaCurve] = (*PULSES, DC), **m
     }
     for name, what in more.items():
         (sections if name in sections else ratings)[name] = what
-    return Device(
-        name="TEST", kind=kind, soa=tuple(soa), max=MaxRatings(**ratings), ratings_from="a test", **sections
-    )
+    return Device(name="TEST", kind=kind, soa=tuple(soa), max=MaxRatings(**ratings), ratings_from="a test", **sections)
 
 
 def rules(**more: Any) -> Rules:
@@ -184,9 +182,7 @@ def judged(
         sink=sink,
         missing=missing,
     )
-    fitted = Fitted(
-        device=dev, share=value("share", 1.0), count=2 if share_missing else 1, share_missing=share_missing
-    )
+    fitted = Fitted(device=dev, share=value("share", 1.0), count=2 if share_missing else 1, share_missing=share_missing)
     return Judged(
         device=dev,
         fitted=fitted,

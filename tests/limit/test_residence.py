@@ -12,7 +12,7 @@ from soacheck.limit.residence import Residence
 from soacheck.locus import Locus, Use
 from soacheck.result import Finding, Status
 from soacheck.trace import FloatArray
-from tests.limit.build import DC, PULSES, device, judged, once, only, pulse, repeated, rules, said, status, three
+from tests.limit.build import DC, device, judged, once, only, pulse, repeated, rules, said, status, three
 
 WIDTHS = (1e-3, 1e-2, 1e-1)
 
@@ -154,6 +154,3 @@ def test_log_log_is_never_stricter_than_next_longer() -> None:
         next_longer = only(safe_area.find(judged(shot)))
         log_log = only(safe_area.find(judged(shot, rule=rules(pulse_between="log-log"))))
         assert u_residence(log_log) <= u_residence(next_longer) * (1 + 1e-9)
-
-
-assert PULSES

@@ -8,13 +8,27 @@ import pytest
 from soacheck.device.ratings import SafeAreaDerating, ThermalData
 from soacheck.limit import safe_area
 from soacheck.result import Status
-from tests.limit.build import PULSES, ZERO_C, curve, device, held, judged, once, only, pulse, repeated, rules, said
-from tests.limit.build import status, value
+from tests.limit.build import (
+    PULSES,
+    ZERO_C,
+    curve,
+    device,
+    held,
+    judged,
+    once,
+    only,
+    pulse,
+    repeated,
+    rules,
+    said,
+    status,
+    value,
+)
 
-# A hypothetical part: I_C 20 A, R_th_jc 0.7 K/W, T_j 200 degC, V_CEO 140 V, second breakdown 5 A at 50 V and 1 A at 100 V
-# (slope -2.32193), second-breakdown derating 0.4 %/K. Two derating lines, the lower counts: application notes on power
-# transistor safe areas of the 1970s; the figures are our own arithmetic.
-BREAKDOWN = curve("dc", np.inf, (1, 20), (12.5, 20), (50, 5), (100, 1), (140, 1.4 ** -2.321928))
+# A hypothetical part: I_C 20 A, R_th_jc 0.7 K/W, T_j 200 degC, V_CEO 140 V, second breakdown 5 A at 50 V and 1 A at
+# 100 V (slope -2.32193), second-breakdown derating 0.4 %/K. Two derating lines, the lower counts: application notes on
+# power transistor safe areas of the 1970s; the figures are our own arithmetic.
+BREAKDOWN = curve("dc", np.inf, (1, 20), (12.5, 20), (50, 5), (100, 1), (140, 1.4**-2.321928))
 PART = device(
     soa=(BREAKDOWN,),
     V_max=value("V_CEO", 140, "V"),

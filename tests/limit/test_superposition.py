@@ -90,8 +90,8 @@ def test_humps_on_a_square_root_body_have_their_factors(shape: str) -> None:
 
 @pytest.mark.parametrize(("shape", "generous"), [("half sine", 0.31), ("triangle", 0.41)])
 def test_residence_alone_is_too_generous_with_humps(shape: str, generous: float) -> None:
-    # Analytic: with interpolated curves of a square-root body residence lets a half sine through that is 31 % higher than
-    # superposition does, a triangle 41 %.
+    # Analytic: with interpolated curves of a square-root body residence lets a half sine through that is 31 % higher
+    # than superposition does, a triangle 41 %.
     finding = only(safe_area.find(judged(hump(shape, 15.0, 1e-3), ROOT, rule=rules(pulse_between="log-log"))))
     more = part_of(finding, "u_superposition") / part_of(finding, "u_residence") - 1
     assert more == pytest.approx(generous, abs=0.025)
