@@ -18,7 +18,7 @@ from soacheck.duty import Duty, Fitted
 from soacheck.guard import GUARDS, Raised, Seen
 from soacheck.limit import LIMITS
 from soacheck.limit.judged import Judged
-from soacheck.locus import Use
+from soacheck.locus import Locus, Use
 from soacheck.quantity import write
 from soacheck.result import (
     Caution,
@@ -43,6 +43,8 @@ NOT_DECIDED = (
     "touch-temperature",
     "insulation",
 )
+DELIVERED = 1e-9  # of the peak power: more than rounding
+SIGN = Missing(key="load.points", where="the measurement or the drawing: the signs of v and i")
 SINK_CAPACITY = Missing(
     key="heat_path.heatsink.C_th", where="mass of the sink times its specific heat; a long shot warms it"
 )
@@ -118,7 +120,7 @@ def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
         if lower is not None:
             again = [f for limit in LIMITS for f in limit(replace(asked, operating=lower))]
             of_duty = [_either(upper, low) for upper, low in zip(of_duty, again, strict=True)]
-        findings += of_duty
+        findings += _signed(of_duty, operating.locus, cases)
     return Sitting(fitted=fitted, place=place, judged=tuple(judged), findings=tuple(findings))
 
 
@@ -146,6 +148,34 @@ def _settle_all(duties: Iterable[Duty], place: Place, cases: int) -> dict[int, t
     return settled
 
 
+def _signed(findings: list[Finding], locus: Locus | None, cases: int) -> list[Finding]:
+    """Findings of a locus along which the device would deliver power: none of them is better than unproven.
+
+    A transistor turns power into heat. v and i of opposite signs are a reversed probe, a channel skew, or a P-type part
+    whose values were not written as magnitudes.
+    """
+    if locus is None:
+        return findings
+    p = np.broadcast_to(locus.p, locus.shape)
+    wrong = np.any(p < -DELIVERED * np.abs(p).max(axis=2, keepdims=True), axis=(1, 2))
+    if not bool(np.any(wrong)):
+        return findings
+    reason = Reason(
+        text="Voltage and current have opposite signs: the device would deliver power. Check the sign of both; values of "
+        "P-type devices are magnitudes.",
+        applies=np.broadcast_to(wrong, (cases,)),
+        missing=(SIGN,),
+    )
+    return [
+        replace(
+            f,
+            status=np.where(wrong, np.maximum(f.status, int(Status.UNPROVEN)), f.status),
+            reasons=(*f.reasons, reason),
+        )
+        for f in findings
+    ]
+
+
 def _either(upper: Finding, lower: Finding) -> Finding:
     """A finding between two bounds: the upper one decides `within`, `exceeds` needs the lower one too."""
     open_ = (upper.status == Status.EXCEEDS) & (lower.status != Status.EXCEEDS)
@@ -166,6 +196,12 @@ def _badness(finding: Finding) -> tuple[int, float]:
     if math.isnan(u):
         return status, math.inf if status == Status.EXCEEDS else -math.inf
     return status, u
+
+
+def _rank(finding: Finding) -> tuple[int, float]:
+    """The same, with what differs by rounding alone taken as equal."""
+    status, u = _badness(finding)
+    return status, float(f"{u:.9g}")
 
 
 def worst_case(finding: Finding, cases: int) -> int:
@@ -205,7 +241,7 @@ def _decide(
         raised = [r for guard in GUARDS for r in guard(seen)]
         cautions += [Caution(id=r.id, text=r.text) for r in raised]
         decided += [_lowered(finding, raised) for finding in own]
-    order = sorted(range(len(decided)), key=lambda k: _badness(decided[k]), reverse=True)
+    order = sorted(range(len(decided)), key=lambda k: _rank(decided[k]), reverse=True)  # equal ones stay in order
     if order:
         decided[order[0]] = _worked_out(decided[order[0]], sittings)
     findings = tuple(decided[k] for k in order)

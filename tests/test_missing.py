@@ -138,3 +138,12 @@ def test_ten_spreads_are_worked_out_and_eleven_are_refused(tmp_path: Path) -> No
                                          'current = { value = "80 %", tol = "1 %" }\n')  # fmt: skip
     with pytest.raises(InputError, match="uncertainties"):
         check(read_stage(tmp_path / "stage.toml"))
+
+
+@pytest.mark.parametrize("points", ['[["0 s", "40 V", "-1 A"], ["1 s", "40 V", "-1 A"]]',
+                                    '[["0 s", "40 V", "1 A"], ["1 s", "40 V", "1 A"], ["1 s", "40 V", "-1 A"], ["2 s", "40 V", "-1 A"]]',
+                                    '[["0 s", "-40 V", "1 A"], ["1 s", "-40 V", "1 A"]]'])  # fmt: skip
+def test_a_device_that_would_deliver_power_is_unproven(points: str, tmp_path: Path) -> None:
+    result = result_of(tmp_path, put(PROFILE, points=points))
+    assert result.verdict is Status.UNPROVEN
+    assert all(f.status[0] != Status.WITHIN for f in result.findings)
