@@ -161,8 +161,8 @@ def _signed(findings: list[Finding], locus: Locus | None, cases: int) -> list[Fi
     if not bool(np.any(wrong)):
         return findings
     reason = Reason(
-        text="Voltage and current have opposite signs: the device would deliver power. Check the sign of both; values of "
-        "P-type devices are magnitudes.",
+        text="Voltage and current have opposite signs: the device would deliver power. Check the sign of both; values "
+        "of P-type devices are magnitudes.",
         applies=np.broadcast_to(wrong, (cases,)),
         missing=(SIGN,),
     )

@@ -78,7 +78,8 @@ def verdict(
         status = np.where(note.holds, np.maximum(status, int(note.best)), status)
     worst = status.max(axis=1, keepdims=True)
     # what has no number comes first; among those the member that heats the device most
-    heat = np.broadcast_to(np.nan_to_num(judged.operating.P_mean, nan=0.0), shape)
+    heat = np.nan_to_num(judged.operating.P_mean, nan=0.0)
+    heat = np.broadcast_to(heat if heat.shape[1] == shape[1] else np.zeros((1, 1)), shape)
     last = np.where(status == worst, np.where(np.isnan(used), np.inf, used), -np.inf)
     member = np.argmax(np.where(last == last.max(axis=1, keepdims=True), heat, -np.inf), axis=1)
     return Verdict(status=status, utilisation=used, member=np.asarray(member, dtype=np.int64), notes=kept)

@@ -80,5 +80,5 @@ def _no_curves(judged: Judged, lines: Lines) -> Finding:
     text = "No safe-area curve is stated; the dissipation line never stands in for one."
     notes = [Note(text=text, holds=ALWAYS, best=Status.UNPROVEN, missing=(DC_MISSING,)), *sharing(judged)]
     notes += [Note(text=left, holds=ALWAYS) for left in lines.left_out]
-    decided = verdict(judged, np.full((judged.cases, 1), np.nan), notes)
+    decided = verdict(judged, np.full(judged.operating.P_mean.shape, np.nan), notes)
     return finding(judged, decided, limit=NAME, basis=BASIS, unit="A", applied=None, allowed=None)
