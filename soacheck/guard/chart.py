@@ -7,10 +7,12 @@ from dataclasses import replace
 import numpy as np
 
 from soacheck.device.ratings import SafeAreaCurve
-from soacheck.guard.seen import Raised, Seen
+from soacheck.guard.seen import Raised, Seen, duty_name
 from soacheck.limit import safe_area
 from soacheck.limit.judged import Judged
 from soacheck.locus import Use
+from soacheck.quantity import write
+from soacheck.quantity.units import ZERO_CELSIUS
 from soacheck.result import Finding, Status
 
 
@@ -45,8 +47,8 @@ def chart_cold(seen: Seen) -> tuple[Raised, ...]:
             Raised(
                 id="chart-cold",
                 text=(
-                    f"{judged.duty.name}: inside the safe-area chart as printed for {T_ref - 273.15:.0f} degC, outside "
-                    f"it at {T - 273.15:.0f} degC. The scaled curve counts; the picture shows both."
+                    f"{duty_name(judged)}: inside the safe-area chart as printed for {T_ref - ZERO_CELSIUS:.0f} degC, outside "
+                    f"it at {T - ZERO_CELSIUS:.0f} degC. The scaled curve counts; the picture shows both."
                 ),
             ),
         )
@@ -71,29 +73,26 @@ def chart_node(seen: Seen) -> tuple[Raised, ...]:
 def pulse_between(seen: Seen) -> tuple[Raised, ...]:
     """pulse-between: a pulse time that stands between two printed curves."""
     pulses = sorted(curve.pulse for curve in _forward(seen))
-    timed = [
-        judged
-        for judged in seen.judged
-        if judged.operating.locus is not None and judged.operating.locus.use is not Use.HELD
-    ]
-    if len(pulses) < 2 or not timed:
+    if len(pulses) < 2:
         return ()
-    how = timed[0].rules.pulse_between
-    for judged in timed:
+    for judged in seen.judged:
+        locus = judged.operating.locus
+        if locus is None or locus.use is Use.HELD or not judged.duty.listed:
+            continue
         above = safe_area.longest_above_dc(judged)
         between = (above > 0) & (above < pulses[-1]) & ~np.isclose(above[..., None], pulses).any(axis=-1)
         if not bool(np.any(between)):
             continue
         rule = (
             "the next longer printed curve counts"
-            if how == "next-longer"
+            if judged.rules.pulse_between == "next-longer"
             else "the curves are interpolated log-log between printed pulses, as the stage asks"
         )
+        time = write(float(np.max(above[between])), "time", 3)
         return (
             Raised(
                 id="pulse-between",
-                text=f"{judged.duty.name}: {float(np.max(above[between])):.3g} s above the dc curve stands between "
-                f"printed pulses; {rule}.",
+                text=f"{duty_name(judged)}: {time} above the dc curve stands between printed pulses; {rule}.",
             ),
         )
     return ()

@@ -19,6 +19,11 @@ class Seen:
     findings: tuple[Finding, ...]
 
 
+def duty_name(judged: Judged) -> str:
+    """A duty as findings name it: with its half, where there are two."""
+    return judged.duty.name + (f" ({judged.duty.half})" if judged.duty.half else "")
+
+
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Raised:
     """A guard that went off.
