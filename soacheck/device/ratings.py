@@ -188,7 +188,7 @@ class Device:
     typical: Typical
     mechanical: Mechanical
     assumptions: tuple[str, ...] = ()
-    cautions: tuple[tuple[str, str], ...] = ()  # (id, text): readings through pint, missing ratings_from
+    cautions: tuple[tuple[str, str], ...] = ()  # (id, text): readings through pint, other kinds' keys, no ratings_from
 
     @property
     def bipolar(self) -> bool:
@@ -202,8 +202,3 @@ class Device:
     @property
     def igbt(self) -> bool:
         return self.kind in IGBT
-
-    @property
-    def p_channel(self) -> bool:
-        """PNP or P-channel: values are magnitudes all the same."""
-        return self.kind.startswith("p")

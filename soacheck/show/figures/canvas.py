@@ -190,10 +190,3 @@ def sample_line(stroke: palette.Stroke) -> Line2D:
     from matplotlib.lines import Line2D
 
     return Line2D([], [], **_line_style(stroke))
-
-
-def sample_spot(spot: palette.Spot) -> Line2D:
-    """A point that belongs to no axes, for the key below a picture."""
-    from matplotlib.lines import Line2D
-
-    return Line2D([], [], linestyle="none", **_spot_style(spot))
