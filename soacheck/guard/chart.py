@@ -47,8 +47,9 @@ def chart_cold(seen: Seen) -> tuple[Raised, ...]:
             Raised(
                 id="chart-cold",
                 text=(
-                    f"{duty_name(judged)}: inside the safe-area chart as printed for {T_ref - ZERO_CELSIUS:.0f} degC, outside "
-                    f"it at {T - ZERO_CELSIUS:.0f} degC. The scaled curve counts; the picture shows both."
+                    f"{duty_name(judged)}: inside the safe-area chart as printed for "
+                    f"{T_ref - ZERO_CELSIUS:.0f} degC, outside it at {T - ZERO_CELSIUS:.0f} degC. The scaled "
+                    "curve counts; the picture shows both."
                 ),
             ),
         )
