@@ -36,12 +36,11 @@ from soacheck.trace import Traced, derived
 
 BLOCK = 9  # cases worked out together; fixed, so that the answer does not depend on anything else
 
-# Limits of the contract that this version does not decide.
+# Limits of the file format's list that this version does not decide.
 NOT_DECIDED = (
     "runaway (dissipation that grows with temperature; figures are at the stated characteristics)",
     "avalanche",
     "touch-temperature",
-    "insulation",
 )
 DELIVERED = 1e-9  # of the peak power: more than rounding
 SIGN = Missing(key="load.points", where="the measurement or the drawing: the signs of v and i")
@@ -76,6 +75,8 @@ def check(stage: Stage, *, pictures: bool = True) -> Result:
         findings = [f for sitting in sittings for f in sitting.findings]
         if start == 0:
             nominal = [float(f.utilisation[0]) for f in findings]
+        if start and [_name(f) for f in findings] != [_name(f) for f in worst]:
+            raise RuntimeError("two blocks of cases of one stage gave different findings")
         for k, finding in enumerate(findings):
             case = worst_case(finding, part.count)
             one = finding.at(case)
@@ -190,6 +191,10 @@ def _either(upper: Finding, lower: Finding) -> Finding:
     return replace(upper, status=np.where(open_, int(Status.UNPROVEN), upper.status), reasons=(*upper.reasons, reason))
 
 
+def _name(finding: Finding) -> tuple[str, str, str | None]:
+    return finding.limit, finding.duty, finding.half
+
+
 def _badness(finding: Finding) -> tuple[int, float]:
     """Order of findings: by status, then utilisation; an excess without a number comes first."""
     status, u = int(finding.status[0]), float(finding.utilisation[0])
@@ -292,9 +297,12 @@ def _worked_out(finding: Finding, sittings: tuple[Sitting, ...]) -> Finding:
             wanted = finding.where.member[:, None]
             member = None if bool(np.isnan(wanted).any()) else np.argmin(np.abs(members - wanted), axis=1)
             steps = chain(judged.operating, sitting.place, member)
+            facts = judged.duty.facts
+            if judged.duty.facts_at is not None and member is not None:
+                facts = judged.duty.facts_at(member)
             own = {value.symbol for value in finding.trace}
             more = (
-                *judged.duty.facts,
+                *facts,
                 *(steps.P_mean, steps.P_peak, steps.T_heatsink, steps.T_case, steps.T_j_mean, steps.T_j_peak),
             )
             chosen = tuple(value for value in more if value is not None and value.symbol not in own)
@@ -346,7 +354,13 @@ def _base_current(judged: Judged, I_peak: Traced | None) -> Traced | None:
 
 def _not_analysed(stage: Stage) -> tuple[str, ...]:
     other = ("the other half of the stage (stage.complement not stated)",) if stage.half_open else ()
-    return (*stage.kind.not_analysed(stage.load), *other, *NOT_DECIDED)
+    voltage = stage.heat_path.working_voltage
+    insulation = (
+        "insulation"
+        if voltage is None
+        else f"insulation (heat_path.working_voltage = {write(voltage.at(0), 'voltage')})"
+    )
+    return (*stage.kind.not_analysed(stage.load), *other, *NOT_DECIDED, insulation)
 
 
 def _corner(stage: Stage, plan: CasePlan, case: int) -> str:

@@ -277,6 +277,12 @@ def _build(
 
 
 def _check_sink(cells: Cells, path: HeatPath, devices: int) -> None:
+    if path.separate_sinks and (path.shared_by is None or path.shared_by >= devices):
+        cells.refuse(
+            "separate_sinks",
+            f"the stage has {devices} devices, and nothing says how many of them this sink carries",
+            "shared_by = 1 beside it, or leave it out",
+        )
     if path.shared_by is not None and path.shared_by < devices and not path.separate_sinks:
         cells.refuse(
             "shared_by",

@@ -90,6 +90,34 @@ def test_written_chain_gives_the_temperatures_that_were_computed(tmp_path: Path)
     assert steps.T_j_mean.at(0) == pytest.approx(op.T_j_mean[0, 0], rel=1e-12)
 
 
+SINKS = {
+    "resistance": 'heatsink = "1.2 K/W"\ninterface = "0.4 K/W"\nextra_heat = "7 W"',
+    "with capacity": 'heatsink = { R_th = "1.2 K/W", C_th = "100 J/K" }\ninterface = "0.4 K/W"\nshared_by = 3',
+    "ideal": 'heatsink = "ideal"\ninterface = "0.4 K/W"',
+    "none": 'heatsink = "none"',
+    "held case": 'T_case = "70 degC"',
+}
+BOXES = {"room": "", "box": 'R_th_enclosure = "0.3 K/W"\nextra_box_heat = "11 W"',
+         "sink outside": 'R_th_enclosure = "0.3 K/W"\nsink_outside = true'}  # fmt: skip
+
+
+@pytest.mark.parametrize("box", sorted(BOXES))
+@pytest.mark.parametrize("sink", sorted(SINKS))
+def test_the_sheet_writes_the_temperatures_that_were_judged(sink: str, box: str, tmp_path: Path) -> None:
+    if sink == "held case" and box != "room":
+        return  # refused: nothing behind the case counts
+    head = PROFILE[: PROFILE.index("[heat_path]")]
+    text = f'{head}[heat_path]\n{SINKS[sink]}\n[surroundings]\nT_ambient = "40 degC"\n{BOXES[box]}\n'
+    sitting = evaluate(stage_of(tmp_path, text, put(CAUER, R_th_jc='"0.833 K/W"\nR_th_ja = "35 K/W"')))[0]
+    op, steps = sitting.judged[0].operating, chain(sitting.judged[0].operating, sitting.place)
+    for written, judged in (
+        (steps.T_heatsink, op.T_heatsink),
+        (steps.T_case, op.T_case),
+        (steps.T_j_mean, op.T_j_mean),
+    ):
+        assert np.isnan(judged[0, 0]) if written is None else written.at(0) == pytest.approx(judged[0, 0], rel=1e-12)
+
+
 def test_long_shot_on_a_sink_of_unknown_capacity_is_not_within(tmp_path: Path) -> None:
     # 60 W for 100 s: held at 60 degC the junction would do, with the sink following it would not: nobody knows.
     rows = 'points = [["0 s", "30 V", "2 A"], ["100 s", "30 V", "2 A"]]'
