@@ -31,8 +31,13 @@ def hand_calculation(
     return tuple(part for line in used for part in _one(judged, line, decided, v))
 
 
+def plain_name(label: str) -> str:
+    """A curve's label as part of a symbol."""
+    return re.sub(r"\W", "", label) or "curve"
+
+
 def _one(judged: Judged, line: Line, decided: Verdict, v: FloatArray) -> tuple[Traced, ...]:
-    name = re.sub(r"\W", "", line.label) or "curve"
+    name = plain_name(line.label)
     member = decided.member[:, None]
     value = (allowed(line, v[:, None, None], member).current * line.factor[:, None, None])[:, 0, 0]
     T = found(f"T_{name}", decided.of(line.T), "degC", "temperature that the curve is scaled to")
@@ -104,15 +109,7 @@ def _printed(line: Line, at: Traced, name: str) -> Traced:
         for n in (1, 2)
         for column, what, unit in ((0, "V", "V"), (1, "I", "A"))
     ]
-    if bool(np.all((v > corner[0]) | np.isnan(v))):
-        formula = f"I_1 * ({at.symbol} / V_1) ** (ln(I_2 / I_1) / ln(V_2 / V_1))"
-        return derived(symbol, formula, "A", at, *ends, source="straight on log-log paper", grade=line.curve.grade)
-    value = np.exp(np.interp(np.log(np.maximum(v, 1e-12)), np.log(points[:, 0]), np.log(points[:, 1])))
-    return found(
-        symbol,
-        value,
-        "A",
-        "straight on log-log paper between printed points, flat left of the corner",
-        at,
-        source=source,
-    )
+    # Left of the corner the curve is flat; where some case stands there, the formula says so.
+    volts = at.symbol if bool(np.all((v > corner[0]) | np.isnan(v))) else f"max({at.symbol}, V_1)"
+    formula = f"I_1 * ({volts} / V_1) ** (ln(I_2 / I_1) / ln(V_2 / V_1))"
+    return derived(symbol, formula, "A", at, *ends, source="straight on log-log paper", grade=line.curve.grade)

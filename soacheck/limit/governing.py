@@ -7,11 +7,12 @@ from dataclasses import dataclass
 import numpy as np
 
 from soacheck.limit.allowance import Line, Lines, share
-from soacheck.limit.by_hand import hand_calculation
+from soacheck.limit.by_hand import hand_calculation, plain_name
 from soacheck.limit.found import Point, Verdict
 from soacheck.limit.judged import Judged
 from soacheck.limit.path import path_of
 from soacheck.limit.screen import Screen
+from soacheck.limit.superposition import printed
 from soacheck.limit.two_tests import Tests, Worked, tests_of
 from soacheck.locus import Use
 from soacheck.result import Reason
@@ -60,7 +61,8 @@ def governing(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked:
     trace = hand_calculation(judged, lines, decided, point.v, curve[:, 0], test == RESIDENCE)
     applied = found("I", point.i, "A", "current at the point that touches")
     zero = decided.of(seen.zero)
-    allowed = _allowed(path.use, lines, use, zero, applied, stay[:, 0], tests, trace)
+    shape = _response(lines, seen, pick) if lines.widths and path.use is not Use.HELD else ()
+    allowed = _allowed(path.use, lines, use, zero, applied, stay[:, 0], tests, trace, shape)
     held = path.use is Use.HELD
     reasons = () if held else _reasons(lines, test, curve[:, 0], ~np.isnan(use) & (use > 0))
     return Governing(point=point, applied=applied, allowed=allowed, trace=trace, reasons=reasons)
@@ -80,6 +82,22 @@ def _largest(
     return test, np.take_along_axis(np.stack(at)[..., 0], test[None], axis=0)[0]
 
 
+def _response(lines: Lines, seen: Screen, pick: IntArray) -> tuple[Traced, ...]:
+    """The hot spot's step response as it was read from the curves, and the greatest x."""
+    v = np.take_along_axis(seen.v_top, pick, axis=1)
+    _, g = printed(lines, v, pick)
+    labels = {line.pulse: line.label for line in lines.pulses}
+    V = found("V_g", v[:, 0], "V", "voltage of the greatest x")
+    return (
+        V,
+        found("x_max", np.take_along_axis(seen.top, pick, axis=1)[:, 0], "1", "greatest x = i/I_dc(v)", V),
+        *(
+            found(f"g_{plain_name(labels[width])}", g[:, 0, k], "1", "I_dc/I(t_p) at V_g, both scaled", V)
+            for k, width in enumerate(lines.widths)
+        ),
+    )
+
+
 def _allowed(
     use: Use,
     lines: Lines,
@@ -89,6 +107,7 @@ def _allowed(
     stay: FloatArray,
     tests: Tests,
     trace: tuple[Traced, ...],
+    shape: tuple[Traced, ...],
 ) -> Traced:
     with np.errstate(divide="ignore", invalid="ignore"):
         limit = np.where(utilisation > 0, applied.value / utilisation, np.where(zero, 0.0, np.nan))
@@ -106,7 +125,7 @@ def _allowed(
         how,
         applied,
         found("u_residence", stay, "1", residence),
-        found("u_superposition", tests.superposition.value[:, 0], "1", response, source="own derivation"),
+        found("u_superposition", tests.superposition.value[:, 0], "1", response, *shape, source="own derivation"),
     )
 
 

@@ -66,11 +66,6 @@ def tests_of(judged: Judged, lines: Lines, seen: Screen, path: Path) -> Tests:
         response = superpose(path, x, spot_of(lines, of(seen.v_top), members))
     else:
         response = _without_pulses(path, x)
-    if lines.dc is None:
-        # The longest pulse stands for dc only while the shot is no longer than it.
-        lasting = np.take_along_axis(seen.lasting, members, axis=1)
-        value, proven = (np.where(lasting, 0.0, a) for a in (response.value, response.proven))
-        response = Superposition(value=value, proven=proven, at=response.at)
     residence = Residence(
         t=path.t,
         use=path.use,

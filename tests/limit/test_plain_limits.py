@@ -73,6 +73,7 @@ def test_a_mosfet_current_falls_with_the_root_of_the_temperature_left(T_case: fl
     finding = only(current.find(judged(held(1.0, 10.0), SWITCH, T_case=T_case)))
     assert finding.allowed is not None
     assert finding.allowed.at(0) == pytest.approx(allowed, rel=2e-6)
+    assert finding.utilisation[0] == pytest.approx(10 / allowed, rel=2e-6)
 
 
 def test_the_rms_value_of_a_period_is_exact() -> None:
