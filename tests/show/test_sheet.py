@@ -172,3 +172,67 @@ def test_the_point_and_the_nominal_utilisation_stand_in_the_finding() -> None:
 
 def test_several_stages_give_several_sheets() -> None:
     assert sheets([amplifier(), result(finding(where=where(1.0, 1.0)))]).count("CALCULATION SHEET") == 2
+
+
+def lines_of(text: str, symbol: str) -> list[str]:
+    return [line for line in text.splitlines() if re.match(rf"\[\d+\] +{symbol} +=", line)]
+
+
+def test_one_figure_found_on_two_roads_is_one_line_of_its_duty() -> None:
+    chain = heat_chain()
+    again = found("P_mean", chain["P_mean"].value, "W", "exact mean of v * i")
+    t_j_max = given("T_j_max", [423.15], "degC", "npn160.toml: max.T_j")
+    here = (chain["T_j_mean"], again)
+    item = finding("junction-temperature", "worst-level", chain["T_j_mean"], t_j_max, "degC", 0.615, trace=here)
+    text = sheet(result(item, finding("dissipation", "worst-level", again, 75.0)))
+    assert len(lines_of(text, "P_mean")) == 1
+    assert "Above P_mean = " in flat(text.split("Finding: dissipation")[1])
+
+
+def test_equal_figures_of_two_duties_keep_their_own_lines() -> None:
+    one, two = (found("P_mean", [5.0], "W", f"mean over {name}") for name in ("idle", "full"))
+    text = sheet(result(finding(duty="idle", applied=one), finding(duty="full", applied=two)))
+    assert len(lines_of(text, "P_mean")) == 2
+
+
+def test_the_last_division_is_written_out() -> None:
+    current = finding(
+        "current", applied=given("I_rms", [3.0], "A", ""), allowed=given("I_C", [15.0], "A", ""), unit="A",
+        utilisation=0.2,
+    )  # fmt: skip
+    assert "utilisation = I_rms / I_C = 3 A / 15 A = 0.2" in flat(sheet(result(current)))
+
+
+def test_the_last_division_of_temperatures_counts_from_the_ambient() -> None:
+    ambient = given("T_ambient", [313.15], "degC", "amp.toml")
+    item = finding(
+        "junction-temperature", applied=given("T_j_peak", [368.15], "degC", ""), unit="degC", utilisation=0.5,
+        allowed=given("T_j_limit", [423.15], "degC", ""), trace=(ambient,),
+    )  # fmt: skip
+    assert (
+        "utilisation = (T_j_peak - T_ambient) / (T_j_limit - T_ambient) = (95 degC - 40 degC) / (150 degC - 40 degC) "
+        "= 0.5"
+    ) in flat(sheet(result(item)))
+
+
+def test_a_utilisation_that_is_no_division_is_not_written_as_one() -> None:
+    assert "utilisation =" not in sheet(result(finding(applied=3.0, allowed=15.0, utilisation=0.9)))
+
+
+def test_an_input_that_the_corner_takes_otherwise_is_called_nominal() -> None:
+    high, nominal = (given("V_CC", [volts], "V", "vent.toml: load.V_CC") for volts in (27.0, 24.0))
+    power = derived("P_mean", "V_CC**2 / 8", "W", high)
+    text = flat(sheet(result(finding(applied=power), inputs=(nominal, given("f", [50.0], "Hz", "vent.toml: load.f")))))
+    assert "V_CC = 24 V nominal, vent.toml: load.V_CC" in text
+    assert "f = 50 Hz vent.toml: load.f" in text
+
+
+def test_an_input_stands_once_though_the_formula_has_another_symbol_for_it() -> None:
+    sink = given("R_th_sa", [0.45], "K/W", "amp.toml: heat_path.heatsink")
+    text = sheet(result(finding(applied=derived("T", "R_th_sa * 2", "K/W", sink)), inputs=(sink.named("heatsink"),)))
+    assert "Other inputs" not in text
+
+
+@pytest.mark.parametrize("width", [40, 60])
+def test_a_narrow_page_is_kept(width: int) -> None:
+    assert all(cells(line) <= width for line in sheet(amplifier(spread=True), width).splitlines())
