@@ -17,7 +17,7 @@ from soacheck.cli.answer import Answer, ExitStatus, worst
 from soacheck.cli.plain_arguments import Command, Group
 from soacheck.cli.process import refused
 from soacheck.errors import InputError, Problem
-from soacheck.show.text import clean, wants_colour
+from soacheck.show.text import clean, page_width, wants_colour
 
 if TYPE_CHECKING:
     from soacheck.result import Result
@@ -134,7 +134,7 @@ def plot(
     from soacheck.stage import read_stage
 
     if name is not None and name not in NAMES:
-        raise InputError(_unknown("picture", name, NAMES))
+        raise InputError(_unknown("NAME", "picture", name, NAMES))
     result = decide(read_stage(stage, devices=devices or ()))
     written = write_figures(result, folder, which=name, fmt=form.value)
     left_out = "".join(f"left out: {clean(what)}: {clean(why)}\n" for what, why in written.left_out)
@@ -189,7 +189,7 @@ def new(
     from soacheck.show.files import write_atomic
 
     if kind not in KINDS:
-        raise InputError(_unknown("kind of device", kind, KINDS))
+        raise InputError(_unknown("KIND", "kind of device", kind, KINDS))
     text = template(kind) if name is None else _named(template(kind), name)
     if output is None:
         return Answer(text=text)
@@ -199,7 +199,10 @@ def new(
 
 
 def _rendered(results: Sequence[Result], problems: Sequence[Problem], as_json: bool, as_sheet: bool) -> Answer:
-    """Results as JSON, as the calculation sheet or as text for the terminal; input errors outrank them."""
+    """Results as JSON, as the calculation sheet or as text for the terminal; input errors outrank them.
+
+    Colour and width are asked of `sys.__stdout__`: sys.stdout is ours while the parser prints (see process).
+    """
     if as_json and as_sheet:
         raise typer.BadParameter("--json and --sheet exclude each other")
     errors = refused(problems, as_json) if problems else None
@@ -212,23 +215,22 @@ def _rendered(results: Sequence[Result], problems: Sequence[Problem], as_json: b
     elif as_sheet:
         from soacheck.show.sheet import sheets
 
-        text = sheets(results)
+        text = sheets(results, page_width(sys.__stdout__))
     else:
         from soacheck.show.terminal import terminal_blocks
 
-        # sys.stdout is ours only for help and completion: see process
-        text = terminal_blocks(results, wants_colour(sys.__stdout__))
+        text = terminal_blocks(results, wants_colour(sys.__stdout__), page_width(sys.__stdout__))
     if errors is not None:
         return Answer(text=text, notes=errors.notes, status=ExitStatus.INPUT)
     return Answer(text=text, status=worst(tuple(result.verdict.word for result in results)))
 
 
-def _unknown(what: str, name: str, known: Sequence[str]) -> Problem:
+def _unknown(argument: str, what: str, name: str, known: Sequence[str]) -> Problem:
     from difflib import get_close_matches
 
-    near = get_close_matches(name, known, n=1)
+    near = get_close_matches(name.lower(), known, n=1)
     remedy = f"did you mean {near[0]}?" if near else f"one of: {', '.join(known)}"
-    return Problem(value=name, problem=f"there is no {what} of this name", remedy=remedy)
+    return Problem(key=argument, value=f"'{name}'", problem=f"there is no {what} of this name", remedy=remedy)
 
 
 def _named(text: str, name: str) -> str:

@@ -1,4 +1,7 @@
-"""The result for the terminal: the verdict first, then what it rests on. 80 columns, every verdict a word."""
+"""The result for the terminal: the verdict first, then what it rests on. Every verdict is a word.
+
+80 columns; on a narrower page what does not fit beside the numbers stands below them.
+"""
 
 from __future__ import annotations
 
@@ -8,7 +11,7 @@ from collections.abc import Hashable, Iterable, Sequence
 from dataclasses import dataclass
 
 from soacheck.result import DutyResult, Finding, Result, Status
-from soacheck.show.text import WIDTH, cells, clean, number, pad, percent, shown, wrapped
+from soacheck.show.text import GLUE, WIDTH, cells, clean, number, pad, percent, settled, shown, wrapped
 from soacheck.show.words import (
     FROM_AMBIENT,
     REMINDER,
@@ -32,7 +35,7 @@ _COLUMNS = (
     ("T_case", "degC", "T_case"),
     ("T_sink", "degC", "T_heatsink"),
 )
-_COLUMN = 8
+_COLUMN = 8  # one of them the space before it
 _UNKNOWN = "-"
 BOTH = "both"  # halves
 _COLOURS = {Status.WITHIN: "32", Status.MARGINAL: "33", Status.UNPROVEN: "35", Status.EXCEEDS: "1;31"}
@@ -41,39 +44,39 @@ _ROW = " "  # before a finding: one column less lets the longest usual names sta
 _UNDER = "        "
 
 
-def terminal(result: Result, colour: bool = False) -> str:
-    """The whole result as lines of text, ending in a line feed."""
+def terminal(result: Result, colour: bool = False, width: int = WIDTH) -> str:
+    """The whole result as lines of text of at most `width` columns, ending in a line feed."""
     lines = [
-        *_verdict(result, colour),
+        *_verdict(result, colour, width),
         "",
-        *wrapped(stage_words(result), "Stage   "),
-        *wrapped(device_words(result.device), "Device  "),
+        *wrapped(stage_words(result), "Stage   ", width=width),
+        *wrapped(device_words(result.device), "Device  ", width=width),
     ]
     if result.complement is not None:
-        lines += wrapped(device_words(result.complement), "Lower   ")
-    lines += ["", *_duties(result.duties), "", *_findings(result, colour)]
-    lines += _listed("Not analysed", result.not_analysed, "- ")
-    lines += _listed("Assumptions", result.assumptions)
-    lines += _listed("Cautions", [f"{caution.id}: {caution.text}" for caution in result.cautions], "- ")
-    lines += ["", *wrapped(REMINDER)]
+        lines += wrapped(device_words(result.complement), "Lower   ", width=width)
+    lines += ["", *_duties(result.duties, width), "", *_findings(result, colour, width)]
+    lines += _listed("Not analysed", result.not_analysed, width, "- ")
+    lines += _listed("Assumptions", result.assumptions, width)
+    lines += _listed("Cautions", [f"{caution.id}: {caution.text}" for caution in result.cautions], width, "- ")
+    lines += ["", *wrapped(REMINDER, width=width)]
     return "\n".join(lines) + "\n"
 
 
-def terminal_blocks(results: Sequence[Result], colour: bool = False) -> str:
+def terminal_blocks(results: Sequence[Result], colour: bool = False, width: int = WIDTH) -> str:
     """Several stages, one block each, and the worst of them in the last line."""
-    blocks = [terminal(result, colour) for result in results]
+    blocks = [terminal(result, colour, width) for result in results]
     if len(results) > 1:
         worst = max(results, key=lambda result: result.verdict)
         word = worst.verdict.word.upper()
-        closing = wrapped(f"{word}: worst of {len(results)} stages, {stage_words(worst)}")
+        closing = wrapped(f"{word}: worst of {len(results)} stages, {stage_words(worst)}", width=width)
         blocks.append("\n".join(_with_colour(closing, word, worst.verdict, colour)) + "\n")
-    return ("\n" + "-" * WIDTH + "\n\n").join(blocks)
+    return ("\n" + "-" * width + "\n\n").join(blocks)
 
 
-def _verdict(result: Result, colour: bool) -> list[str]:
+def _verdict(result: Result, colour: bool, width: int) -> list[str]:
     word = result.verdict.word.upper()
-    lines = _with_colour(wrapped(f"{word}: {verdict_sentence(result)}", "", "  "), word, result.verdict, colour)
-    return [*lines, *wrapped(counts(result.findings), "  ")]
+    sentence = wrapped(f"{word}: {verdict_sentence(result)}", "", "  ", width)
+    return [*_with_colour(sentence, word, result.verdict, colour), *wrapped(counts(result.findings), "  ", width=width)]
 
 
 def _with_colour(lines: list[str], word: str, status: Status, colour: bool) -> list[str]:
@@ -102,27 +105,50 @@ def _merged(rows: Iterable[tuple[str | None, Hashable]]) -> list[tuple[str | Non
     return [(halves[key], index) for key, index in first.items()]
 
 
-def _duties(duties: Sequence[DutyResult]) -> list[str]:
+def _duties(duties: Sequence[DutyResult], width: int) -> list[str]:
     if not duties:
         return ["Duties: none"]
-    first = WIDTH - _COLUMN * len(_COLUMNS)
-    head = pad("Duties, per device", first) + _across(title for title, _, _ in _COLUMNS)
-    lines = [head, " " * first + _across(unit for _, unit, _ in _COLUMNS)]
     figures = [_figures(duty) for duty in duties]
     contents = [(duty.half, (duty.name, row)) for duty, row in zip(duties, figures, strict=True)]
-    for half, index in _merged(contents):
-        label = _INDENT + clean(duty_words(duties[index].name, half))
-        if cells(label) >= first:  # a long name gets a line of its own
-            lines.append(label)
-            label = ""
-        lines.append(pad(label, first) + _across(figures[index]))
+    rows = [(_INDENT + clean(duty_words(duties[k].name, half)), figures[k]) for half, k in _merged(contents)]
+    lines = _duty_table(rows) if width >= WIDTH else _duty_list(rows, width)
     if any(_UNKNOWN in row for row in figures):
         lines.append(f"{_INDENT}{_UNKNOWN} not known")
     return lines
 
 
+def _duty_table(rows: Iterable[tuple[str, tuple[str, ...]]]) -> list[str]:
+    first = WIDTH - _COLUMN * len(_COLUMNS)
+    head = pad("Duties, per device", first) + _across(title for title, _, _ in _COLUMNS)
+    lines = [head, " " * first + _across(unit for _, unit, _ in _COLUMNS)]
+    for label, figures in rows:
+        beside = label
+        if cells(label) >= first:  # a long name gets a line of its own
+            lines.append(label)
+            beside = ""
+        lines.append(pad(beside, first) + _across(figures))
+    return lines
+
+
+def _duty_list(rows: Iterable[tuple[str, tuple[str, ...]]], width: int) -> list[str]:
+    """Each duty with its figures in a sentence, where the table has no room."""
+    lines = ["Duties, per device"]
+    for label, figures in rows:
+        known = [
+            f"{title} {text} {unit}" if text != _UNKNOWN else f"{title} {text}"
+            for (title, unit, _), text in zip(_COLUMNS, figures, strict=True)
+        ]
+        lines += [*wrapped(label.lstrip(), _INDENT, width=width), *wrapped(_kept(known), _INDENT * 2, width=width)]
+    return lines
+
+
+def _kept(parts: Iterable[str]) -> str:
+    """Parts of a sentence; a line may end after one but not inside."""
+    return ", ".join(part.replace(" ", GLUE) for part in parts)
+
+
 def _across(texts: Iterable[str]) -> str:
-    return "".join(pad(text, _COLUMN, right=True) for text in texts)
+    return "".join(" " + pad(text, _COLUMN - 1, right=True) for text in texts)
 
 
 def _figures(duty: DutyResult) -> tuple[str, ...]:
@@ -130,10 +156,17 @@ def _figures(duty: DutyResult) -> tuple[str, ...]:
 
 
 def _figure(traced: Traced | None) -> str:
+    """Three digits, fewer or with an exponent where the column has no room for them."""
     if traced is None or math.isnan(traced.at(0)):
         return _UNKNOWN
     value = shown(traced.at(0), traced.unit)
-    return f"{value:.1f}" if traced.unit == "degC" else number(value, 3, strip=False)
+    if traced.unit == "degC":
+        return f"{value:.1f}"
+    for digits in (3, 2):
+        text = number(settled(value, traced.unit), digits, strip=False)
+        if len(text) < _COLUMN:
+            return text
+    return f"{value:.1e}" if value > 0 else f"{value:.0e}"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -144,18 +177,22 @@ class _Row:
     duty: str
 
 
-def _findings(result: Result, colour: bool) -> list[str]:
+def _findings(result: Result, colour: bool, width: int) -> list[str]:
     """Every finding, worst first; what is not `within` with its reasons.
 
     The place stands on a line below: for all when the duty has no room beside the numbers, else for those
-    that are not `within` and for the one that governs.
+    that are not `within` and for the one that governs. On a narrow page the amounts go there too.
     """
     rows = _rows(result)
     if not rows:
         return ["Findings: none"]
     titles = ("used", "nominal" if result.spread else "", "status", "limit", "applied of allowed")
     widths = [max(map(cells, column)) for column in zip(titles, *(row.words for row in rows), strict=True)]
-    beside = len(_ROW) + cells(_columns(titles, widths)) + max(cells(row.duty) for row in rows) <= WIDTH
+    full = len(_ROW) + cells(_columns(titles, widths))
+    beside = full + max(cells(row.duty) for row in rows) <= width
+    narrow = full - 2 > width  # two spaces end the columns
+    if narrow:
+        widths[1] = widths[4] = 0
     title = _columns(titles, widths) + ("duty" if beside else "")
     lines = ["Findings, worst first", (_ROW + title).rstrip()]
     seen: dict[tuple[str, ...], str] = {}
@@ -164,13 +201,14 @@ def _findings(result: Result, colour: bool) -> list[str]:
         lines.append(_coloured_row(text.rstrip(), row.status, colour))
         detailed = row.status is not Status.WITHIN or row is rows[0] or not beside
         place = where_words(result, row.finding) if detailed else ""
-        under = ", ".join(part for part in ("" if beside else row.duty, place) if part)
+        moved = (row.words[4], f"nominal {row.words[1]}" if row.words[1] else "") if narrow else ()
+        under = ", ".join(part for part in (*moved, "" if beside else row.duty, place) if part)
         if under:
-            lines += wrapped(under, _UNDER)
+            lines += wrapped(under, _UNDER, width=width)
         if row.status is not Status.WITHIN:
-            lines += _reasons(row, seen)
+            lines += _reasons(row, seen, width)
     if any(finding.unit == "degC" for finding in result.findings):
-        lines += wrapped(FROM_AMBIENT, _INDENT)
+        lines += wrapped(FROM_AMBIENT, _INDENT, width=width)
     return lines
 
 
@@ -225,26 +263,29 @@ def _coloured_row(line: str, status: Status, colour: bool) -> str:
     return line.replace(status.word, _coloured(status.word, status, colour), 1)
 
 
-def _reasons(row: _Row, seen: dict[tuple[str, ...], str]) -> list[str]:
+def _reasons(row: _Row, seen: dict[tuple[str, ...], str], width: int) -> list[str]:
     """Why a finding is not `within`, and what it lacks; once in full, then by reference to where it stood."""
     told = _told(row.finding)
     if not told:
         return []
     if told in seen:
         missing = ", ".join(row.finding.missing(0))
-        return wrapped(f"as for {seen[told]}" + (f"; missing: {missing}" if missing else ""), _UNDER)
+        return wrapped(f"as for {seen[told]}" + (f"; missing: {missing}" if missing else ""), _UNDER, width=width)
     seen[told] = f"{row.finding.limit} in {row.duty}"
     reasons = [reason for reason in row.finding.reasons if bool(reason.applies[0])]
-    lines = [line for reason in reasons for line in wrapped(reason.text, _UNDER)]
+    lines = [line for reason in reasons for line in wrapped(reason.text, _UNDER, width=width)]
     stated = {item.key: item.where for reason in reasons for item in reason.missing}
     for path, where in stated.items():
-        lines += wrapped(f"{path} ({where})" if where else path, _UNDER + "missing: ", _UNDER + "         ")
+        words = f"{path} ({where})" if where else path
+        lines += wrapped(words, _UNDER + "missing: ", _UNDER + "         ", width)
     return lines
 
 
-def _listed(title: str, items: Iterable[str], mark: str = "") -> list[str]:
+def _listed(title: str, items: Iterable[str], width: int, mark: str = "") -> list[str]:
     """A titled list, empty when there is nothing to list; numbered unless a mark is given."""
     lines = [
-        line for index, item in enumerate(items, start=1) for line in wrapped(item, _INDENT + (mark or f"{index}. "))
+        line
+        for index, item in enumerate(items, start=1)
+        for line in wrapped(item, _INDENT + (mark or f"{index}. "), width=width)
     ]
     return ["", title, *lines] if lines else []

@@ -13,6 +13,7 @@ import unicodedata
 from collections.abc import Iterable
 
 WIDTH = 80
+NARROWEST = 40
 ZERO_CELSIUS = 273.15  # [K]
 
 _PREFIXES = (
@@ -32,6 +33,9 @@ _PLAIN_FROM_TO = {
     "Hz": (0.1, 1e3),
 }  # fmt: skip
 _TEMPERATURE_DECIMALS = 1
+# Smaller is the rounding of a calculation, not a value: what a junction passes when it passes nothing.
+_NOTHING = {"V": 1e-15, "A": 1e-15, "W": 1e-15}
+_BESIDE = 1e-12  # of the allowance beside it: the same
 _MOST_DIGITS = 12
 # what stands for a sign that the output's encoding lacks; the rest is written as an escape by the stream
 _FALLBACK = {
@@ -140,6 +144,11 @@ def _scaled(value: float, unit: str) -> tuple[float, str]:
     return factor, prefix + unit
 
 
+def settled(value: float, unit: str) -> float:
+    """The value, or 0 where it is too small to be more than a rounding."""
+    return 0.0 if abs(value) < _NOTHING.get(unit, 0.0) else value
+
+
 def _celsius(value: float, decimals: int = _TEMPERATURE_DECIMALS) -> str:
     if not math.isfinite(value):
         return number(value)
@@ -153,6 +162,7 @@ def quantity(value: float, unit: str, digits: int = 4) -> str:
         return "unknown"
     if unit == "degC":
         return f"{_celsius(value)} degC"
+    value = settled(value, unit)
     factor, scaled_unit = _scaled(value, unit)
     text = number(value / factor, digits)
     return text if unit == "1" else f"{text} {scaled_unit}"
@@ -164,7 +174,7 @@ def plain(value: float, unit: str, digits: int = 5) -> str:
         return "unknown"
     if unit == "degC":
         return f"{number(value - ZERO_CELSIUS, max(digits, 5))} degC"
-    text = number(value, digits)
+    text = number(settled(value, unit), digits)
     return text if unit == "1" else f"{text} {unit}"
 
 
@@ -176,6 +186,8 @@ def pair(applied: float, allowed: float, unit: str) -> str:
             return "unknown"
         text = quantity(known, unit)
         return f"{text} of unknown" if math.isnan(allowed) else f"unknown of {text}"
+    if unit != "degC" and abs(applied) < _BESIDE * abs(allowed):
+        applied = 0.0
     factor, scaled_unit = _scaled(max(abs(applied), abs(allowed)) if allowed == 0 else allowed, unit)
     for extra in range(_MOST_DIGITS - 4):
         if unit == "degC":
@@ -188,14 +200,33 @@ def pair(applied: float, allowed: float, unit: str) -> str:
 
 
 def percent(utilisation: float) -> str:
-    """A utilisation as a percentage; one that is not exactly 1 is never printed as 100 %."""
-    if not math.isfinite(utilisation):
+    """A utilisation as a percentage; one that is not exactly 1 is never printed as 100 %.
+
+    A negative one is no share of an allowance: it has no figure.
+    """
+    if not math.isfinite(utilisation) or utilisation < 0:
         return "-"
     value = 100 * utilisation
     decimals = 0 if abs(value) >= 10 else 1
     while decimals < _MOST_DIGITS and utilisation != 1 and float(f"{value:.{decimals}f}") == 100:
         decimals += 1
     return f"{value:.{decimals}f} %" if abs(value) < 1e6 else f"{value:.2g} %"
+
+
+def page_width(stream: object) -> int:
+    """Columns for a stream: a narrow terminal's or those that COLUMNS asks for, from 40 to our 80.
+
+    A file or a pipe gets 80 unless COLUMNS is set, so that what is kept does not depend on a window.
+    """
+    asked = os.environ.get("COLUMNS", "")
+    columns = int(asked) if asked.isascii() and asked.isdigit() else 0
+    if columns == 0:
+        fileno = getattr(stream, "fileno", None)
+        try:
+            columns = os.get_terminal_size(fileno()).columns if fileno is not None else 0
+        except (OSError, ValueError):  # no terminal; a stream that was closed or has no file
+            columns = 0
+    return min(max(columns, NARROWEST), WIDTH) if columns > 0 else WIDTH
 
 
 def wants_colour(stream: object) -> bool:

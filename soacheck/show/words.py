@@ -9,7 +9,7 @@ from pathlib import PurePath
 
 from soacheck.device.laws import region_word
 from soacheck.result import DeviceFacts, Finding, Result, Status
-from soacheck.show.text import pair, percent, quantity
+from soacheck.show.text import GLUE, pair, percent, quantity
 
 REMINDER = (
     "Arithmetic on the values supplied; it replaces no test. The maker's ratings, the local "
@@ -49,7 +49,7 @@ def where_words(result: Result, finding: Finding) -> str:
     if finding.member_name and math.isfinite(member) and member != v:
         words.append(f"{finding.member_name} {quantity(member, member_unit(finding.member_name))}")
     if math.isfinite(t):
-        words.append(f"t = {quantity(t, 's')}")
+        words.append(f"t{GLUE}={GLUE}{quantity(t, 's')}")
     region = region_of(finding, kind_of(result, finding))
     if words and region is not None:
         words.append(region)
@@ -108,7 +108,6 @@ def device_words(facts: DeviceFacts) -> str:
 def stage_words(result: Result) -> str:
     """The stage on one line: title, file, revision."""
     stage = result.stage
-    details = [PurePath(stage.file).name] if stage.file else []
-    if stage.revision:
-        details.append(f"revision {stage.revision}")
-    return stage.title + (f" ({', '.join(details)})" if details else "")
+    names = [name for name in (stage.title, PurePath(stage.file).name) if name]
+    details = [*names[1:], *([f"revision {stage.revision}"] if stage.revision else [])]
+    return (names[0] if names else "without a title") + (f" ({', '.join(details)})" if details else "")

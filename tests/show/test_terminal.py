@@ -183,3 +183,45 @@ def test_the_lower_half_is_described_by_the_complement() -> None:
     text = terminal(replace(result(item), complement=lower))
     assert "Lower   EXAMPLE-P-MOS (p.toml), ratings: their source is not stated" in text
     assert "at 40 V, 1 A, on (nominal values only)" in text
+
+
+@pytest.mark.parametrize("width", [40, 55, 79])
+@pytest.mark.parametrize("spread", [False, True])
+def test_a_narrow_page_is_kept_and_loses_nothing(width: int, spread: bool) -> None:
+    text = terminal(amplifier(spread), width=width)
+    assert all(cells(line) <= width for line in text.splitlines())
+    words = " ".join(text.split())
+    assert "P mean 22.3 W" in words
+    assert "134 of 160 V" in words
+    assert ("nominal 131 %" in words or "131 %" in words) == spread
+
+
+def test_columns_of_a_duty_never_touch() -> None:
+    # 0.5 mA with three digits is as wide as its column
+    duty = DutyResult(
+        name="switched", half=None, V_peak=given("V_peak", [24.0], "V", ""), I_peak=given("I_peak", [5e-4], "A", "")
+    )
+    assert "24.0 0.00050 " in terminal(result(finding(), duties=(duty,)))
+
+
+@pytest.mark.parametrize("amps", [1.234e-4, 1.234e-7, 1234567.0, 1.019e-30, 0.0])
+def test_the_table_of_duties_fits_whatever_the_figures(amps: float) -> None:
+    duty = DutyResult(name="switched", half=None, I_peak=given("I_peak", [amps], "A", ""))
+    row = next(line for line in terminal(result(finding(), duties=(duty,))).splitlines() if "switched" in line)
+    assert cells(row) <= 80
+    assert float(row.split()[4]) == pytest.approx(amps, rel=0.05, abs=1e-15)
+
+
+def test_a_stage_without_a_title_goes_by_its_file() -> None:
+    item = replace(result(finding()), stage=StageFacts(title="", file="x/t7.toml", sha256="", revision=""))
+    assert "Stage   t7.toml\n" in terminal(item)
+
+
+def test_a_line_does_not_end_inside_a_time() -> None:
+    item = finding(where=where(40.0, 1.0, t=0.0032))
+    assert all("t =" not in terminal(result(item), width=width).replace("t = 3.2 ms", "") for width in range(40, 81))
+
+
+def test_a_negative_share_is_no_figure() -> None:
+    item = finding("voltage", applied=-40.0, allowed=100.0, unit="V", utilisation=-0.4, status=Status.UNPROVEN)
+    assert "-40 %" not in terminal(result(item))

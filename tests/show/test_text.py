@@ -3,7 +3,11 @@
 from __future__ import annotations
 
 import math
+import os
+import pty
+import termios
 import unicodedata
+from pathlib import Path
 
 import pytest
 from hypothesis import given
@@ -14,6 +18,7 @@ from soacheck.show.text import (
     clean,
     encodable,
     number,
+    page_width,
     pair,
     percent,
     plain,
@@ -161,3 +166,41 @@ def test_colour_needs_a_terminal_that_nobody_asked_to_keep_plain(monkeypatch: py
     monkeypatch.delenv("NO_COLOR")
     monkeypatch.setenv("TERM", "dumb")
     assert not wants_colour(Terminal())
+
+
+@pytest.mark.parametrize(
+    ("value", "unit", "text"), [(1.019e-30, "A", "0 A"), (-2e-18, "V", "0 V"), (3e-18, "s", "3.000e-06 ps")]
+)
+def test_what_is_only_rounding_is_nothing(value: float, unit: str, text: str) -> None:
+    assert quantity(value, unit) == text
+
+
+def test_beside_an_allowance_a_rounding_is_nothing() -> None:
+    assert pair(1.019e-30, 15.0, "A") == "0 of 15 A"
+    assert plain(1.019e-30, "A") == "0 A"
+
+
+@pytest.mark.parametrize(("asked", "width"), [("60", 60), ("20", 40), ("200", 80), ("wide", 80), ("", 80), ("0", 80)])
+def test_a_page_is_as_wide_as_columns_asks_within_our_bounds(
+    asked: str, width: int, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setenv("COLUMNS", asked)
+    assert page_width(None) == width
+
+
+def test_a_page_is_as_wide_as_a_narrow_terminal(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.delenv("COLUMNS", raising=False)
+    ours, theirs = pty.openpty()
+    try:
+        termios.tcsetwinsize(theirs, (24, 60))
+        with os.fdopen(theirs, "w", closefd=False) as stream:
+            assert page_width(stream) == 60
+    finally:
+        os.close(ours)
+        os.close(theirs)
+
+
+def test_a_file_gets_a_full_page(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.delenv("COLUMNS", raising=False)
+    with (tmp_path / "kept.txt").open("w") as stream:
+        assert page_width(stream) == 80
