@@ -34,10 +34,10 @@ def result_object(result: Result) -> Json:
         "verdict": result.verdict.word,
         "spread": result.spread,
         "stage": {
-            "title": result.stage.title,
-            "file": PurePath(result.stage.file).name,
-            "sha256": result.stage.sha256,
-            "revision": result.stage.revision,
+            "title": result.stage.title or None,
+            "file": PurePath(result.stage.file).name or None,
+            "sha256": result.stage.sha256 or None,
+            "revision": result.stage.revision or None,
         },
         "device": _device(result.device),
         "complement": complement,
@@ -68,10 +68,10 @@ def _traced(traced: Traced | None) -> float | None:
 def _device(facts: DeviceFacts) -> Json:
     return {
         "name": facts.name,
-        "kind": facts.kind,
-        "file": PurePath(facts.file).name,
-        "sha256": facts.sha256,
-        "ratings_from": facts.ratings_from,
+        "kind": facts.kind or None,
+        "file": PurePath(facts.file).name or None,
+        "sha256": facts.sha256 or None,
+        "ratings_from": facts.ratings_from or None,
     }
 
 

@@ -21,7 +21,7 @@ def document(content: object) -> str:
 
 
 def errors_as_json(problems: Sequence[Problem]) -> str:
-    """What is wrong with the input."""
+    """What is wrong with the input; null for what an error does not have."""
     names = ("file", "line", "key", "value", "problem", "remedy")
-    errors = [{name: getattr(problem, name) for name in names} for problem in problems]
+    errors = [{name: getattr(problem, name) or None for name in names} for problem in problems]
     return document({"format": FORMAT, "errors": errors})

@@ -154,3 +154,18 @@ def test_two_processes_with_other_hash_seeds_write_the_same_bytes() -> None:
         for seed in ("1", "2")
     }  # fmt: skip
     assert len(outputs) == 1
+
+
+def test_an_empty_text_is_null() -> None:
+    bare = result(
+        finding(), stage=StageFacts(title="", file="", sha256="", revision=""),
+        device=DeviceFacts(name="X", file="", sha256="", ratings_from=""),
+    )  # fmt: skip
+    content = read(as_json([bare]))
+    assert set(content["stage"].values()) == {None}
+    assert [content["device"][key] for key in ("file", "sha256", "ratings_from", "kind")] == [None] * 4
+
+
+def test_an_error_without_a_place_has_null_there() -> None:
+    (error,) = read(errors_as_json([Problem(problem="p", remedy="r")]))["errors"]
+    assert error == {"file": None, "line": None, "key": None, "value": None, "problem": "p", "remedy": "r"}
