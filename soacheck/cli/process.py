@@ -5,6 +5,7 @@ from __future__ import annotations
 import contextlib
 import io
 import os
+import re
 import sys
 from collections.abc import Sequence
 from typing import TextIO
@@ -16,6 +17,7 @@ from soacheck.show.errors_text import errors_text
 from soacheck.show.text import clean, encodable
 
 _THREADS = ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS")
+_NEGATIVE = re.compile(r"No such option: -[\d.]")
 _COMPLETION = "_SOACHECK_COMPLETE"  # set by the shell's completion script, which gives no arguments
 
 
@@ -98,7 +100,12 @@ def _usage(error: Exception) -> Problem | None:
     path = getattr(context, "command_path", "soacheck")
     commands = sorted(getattr(getattr(context, "command", None), "commands", ()))
     offered = f" (commands: {', '.join(commands)})" if commands else ""
-    return Problem(problem=str(message()).rstrip("."), remedy=f"{path} --help{offered}")
+    said, remedy = str(message()).rstrip("."), f"{path} --help{offered}"
+    if _NEGATIVE.search(said):
+        remedy = (
+            "values are magnitudes, for PNP and P-channel devices too; a minus that is meant needs -- before DEVICE"
+        )
+    return Problem(problem=said, remedy=remedy)
 
 
 def _fault() -> str:

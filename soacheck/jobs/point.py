@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
@@ -9,11 +10,21 @@ from pathlib import Path
 from soacheck.check import check
 from soacheck.errors import InputError, Problem, QuantityError
 from soacheck.quantity import read, write
-from soacheck.result import Result
+from soacheck.result import Reason, Result
 from soacheck.stage import stage_from_text
 
 EXACT = 17  # digits that keep a float
 HERE = "point"
+# what asks for the keys that are written here
+_ASKED = {
+    "stage.device": "DEVICE",
+    "load.points": "V, I",
+    "load.T_start": "--case or --ambient",
+    "heat_path.heatsink": "--heatsink",
+    "heat_path.interface": "--interface",
+    "heat_path.T_case": "--case",
+    "surroundings.T_ambient": "--ambient",
+}
 HELD = "1 s"  # length of the period that a held point is written as; it repeats for ever
 
 
@@ -72,11 +83,35 @@ def point(
     name = str(Path(device).resolve()) if device.endswith(".toml") else device
     text = _stage(name, volts, amps, width, path)
     try:
-        return check(stage_from_text(text, shown_as=HERE, folder=Path(), devices=devices))
-    except InputError as error:  # lines of a file that nobody sees are no help
-        raise InputError(
-            *(replace(one, file="", line=None) if one.file == HERE else one for one in error.problems)
-        ) from None
+        return _in_options(check(stage_from_text(text, shown_as=HERE, folder=Path(), devices=devices)))
+    except InputError as error:  # lines and keys of a file that nobody sees are no help
+        raise InputError(*(_of_option(one) if one.file == HERE else one for one in error.problems)) from None
+
+
+def _of_option(problem: Problem) -> Problem:
+    said, remedy = _worded(problem.problem), _worded(problem.remedy)
+    return replace(problem, file="", line=None, key=_ASKED.get(problem.key, problem.key), problem=said, remedy=remedy)
+
+
+def _in_options(result: Result) -> Result:
+    """The result with the options of the command in place of the keys of a stage file that nobody wrote."""
+
+    def said(reason: Reason) -> Reason:
+        missing = tuple(replace(item, key=_ASKED.get(item.key, item.key)) for item in reason.missing)
+        return replace(reason, text=_worded(reason.text), missing=missing)
+
+    return replace(
+        result,
+        findings=tuple(replace(found, reasons=tuple(map(said, found.reasons))) for found in result.findings),
+        cautions=tuple(replace(caution, text=_worded(caution.text)) for caution in result.cautions),
+        assumptions=tuple(map(_worded, result.assumptions)),
+    )
+
+
+def _worded(text: str) -> str:
+    for key, option in _ASKED.items():
+        text = re.sub(rf"\b{re.escape(key)}\b(?![.\w])", option, text)
+    return text
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -189,3 +189,27 @@ def test_a_stage_that_is_no_file_is_answered_at_once(folder: Path, capfd: pytest
     for name in (".", "pipe.toml", "/dev/zero"):
         assert run(["check", name]) == ExitStatus.INPUT
         assert "Traceback" not in capfd.readouterr().err
+
+
+def test_a_negative_value_is_told_that_magnitudes_are_wanted(capfd: pytest.CaptureFixture[str]) -> None:
+    assert run(["point", "EXAMPLE-PNP-160", "40 V", "-1 A"]) == ExitStatus.INPUT
+    assert "values are magnitudes" in capfd.readouterr().err
+
+
+@pytest.mark.parametrize(
+    ("arguments", "head"), [(("plot", "x.toml", "foo"), "NAME = 'foo'"), (("device", "new", "foo"), "KIND = 'foo'")]
+)
+def test_a_name_that_is_none_is_said_with_its_argument(
+    arguments: tuple[str, ...], head: str, capfd: pytest.CaptureFixture[str]
+) -> None:
+    assert run(arguments) == ExitStatus.INPUT
+    assert capfd.readouterr().err.startswith(head)
+
+
+def test_a_narrow_page_is_honoured(
+    folder: Path, monkeypatch: pytest.MonkeyPatch, capfd: pytest.CaptureFixture[str]
+) -> None:
+    monkeypatch.setenv("COLUMNS", "48")
+    for more in ((), ("--sheet",)):
+        run(["check", str(folder / "held.toml"), *more])
+        assert max(map(len, capfd.readouterr().out.splitlines())) <= 48

@@ -49,3 +49,25 @@ def test_every_wrong_option_is_named_at_once() -> None:
     with pytest.raises(InputError) as caught:
         point(NPN, "40", "2 mm", case="80 C", heatsink="1 K/W")
     assert [problem.key for problem in caught.value.problems] == ["V", "I", "--case", "--heatsink"]
+
+
+def test_what_a_point_lacks_is_named_as_the_option_that_states_it() -> None:
+    result = point(NPN, "40 V", "0.5 A", ambient="40 degC", heatsink="1 K/W")
+    missing = {key for found in result.findings for key in found.missing(0)}
+    assert missing == {"--interface"}
+    assert not any("heat_path" in reason.text for found in result.findings for reason in found.reasons)
+
+
+@pytest.mark.parametrize(
+    ("device", "more", "key"),
+    [
+        ("NO-SUCH-DEVICE", {}, "DEVICE"),
+        (NPN, {"heatsink": "1e9 K/W"}, "--heatsink"),
+        (NPN, {"interface": "1e9 K/W"}, "--interface"),
+        (NPN, {"ambient": "500 degC"}, "--ambient"),
+    ],
+)
+def test_a_value_that_cannot_be_is_named_as_it_was_given(device: str, more: dict[str, str], key: str) -> None:
+    with pytest.raises(InputError) as caught:
+        point(device, "40 V", "0.5 A", **more)
+    assert [(one.key, one.file, one.line) for one in caught.value.problems] == [(key, "", None)]
