@@ -11,6 +11,7 @@ from soacheck.device.ratings import SafeAreaDerating
 from soacheck.limit import safe_area
 from soacheck.limit.allowance import lines_of, share, shares
 from soacheck.limit.path import path_of
+from soacheck.limit.screen import screen
 from soacheck.locus import Locus, Use
 from soacheck.result import Status
 from tests.limit.build import DC, PULSES, ZERO_C, curve, device, held, judged, once, only, pulse, repeated, said, status
@@ -94,3 +95,21 @@ def test_of_many_members_the_worst_is_found() -> None:
     assert together.utilisation[0] == pytest.approx(
         np.nanmax([one.utilisation[0] for one in alone if status(one) is worst]), rel=1e-9
     )
+
+
+@pytest.mark.parametrize("length", [0.3e-3, 8e-3, 60e-3, 0.5])
+@pytest.mark.parametrize("use", [Use.ONCE, Use.REPEATED])
+def test_the_first_look_bounds_what_is_found(length: float, use: Use) -> None:
+    random = np.random.default_rng(5)
+    t = (np.linspace(0, 1, 25) * length)[None, None]
+    v = np.broadcast_to(random.uniform(40, 120, (1, 20, 1)), (1, 20, 25))
+    i = random.uniform(0, 1, (1, 20, 25)) ** random.uniform(0, 6, (1, 20, 1))
+    i[0, :3] = 1.0
+    whole = judged(Locus(t=t, v=v, i=i, use=use))
+    seen = screen(whole, lines_of(whole))
+    for m in range(20):
+        part = slice(m, m + 1)
+        finding = only(safe_area.find(judged(Locus(t=t, v=v[:, part], i=i[:, part], use=use))))
+        use_of = finding.utilisation[0]
+        if not np.isnan(use_of):
+            assert seen.low[0, m] * (1 - 1e-9) <= use_of <= seen.high[0, m] * (1 + 1e-9)
