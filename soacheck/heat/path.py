@@ -18,6 +18,7 @@ _GEOMETRY = (
 )  # fmt: skip
 
 
+_UNPROVEN = "leave the line out when it is not known; the findings that need it become unproven"
 _MAKER = "the heat sink's data sheet, or a measurement"
 _DRAWING = "the mechanical drawing"
 _SPECIFICATION = "the equipment's specification"
@@ -51,7 +52,7 @@ KEYS: tuple[Key, ...] = (
     _kelvin_per_watt(
         "heat_path.interface", "Thermal resistance between case and heat sink.",
         "the pad's or grease's data sheet, for the mounting force used; mounting drawing",
-        0.0, 100.0, sign="non-negative", inside=True,
+        0.0, 100.0, sign="non-negative", inside=True, when_unknown=_UNPROVEN,
     ),
     *(
         _not_built(f"heat_path.interface.{name}", "Interface worked out from its material.", _INTERFACE_BUILT)
@@ -60,7 +61,7 @@ KEYS: tuple[Key, ...] = (
     _kelvin_per_watt(
         "heat_path.heatsink",
         'Heat sink to air: resistance, { R_th, C_th }, "ideal" (at the temperature of the air) or "none".',
-        _MAKER, 1e-3, 500.0, choices=("ideal", "none"), inside=True,
+        _MAKER, 1e-3, 500.0, choices=("ideal", "none"), inside=True, when_unknown=_UNPROVEN,
     ),
     _kelvin_per_watt("heat_path.heatsink.R_th", "Heat sink to air.", _MAKER, 1e-3, 500.0),
     _key(
@@ -96,11 +97,12 @@ KEYS: tuple[Key, ...] = (
     ),
     _key(
         "surroundings.T_ambient", "Room air; without an enclosure the air at the sink.", _SPECIFICATION,
-        dimension="temperature", band=(198.15, 498.15),
+        dimension="temperature", band=(198.15, 498.15), when_unknown=_UNPROVEN,
     ),
     _key(
         "surroundings.altitude", "Height above sea level.", _SPECIFICATION,
         dimension="length", band=(-500.0, 20e3), sign="any", default="0 m",
+        when_unknown="leave the line out; the figures then hold at sea level, and the report says so",
         assumption="the equipment stands at sea level, 0 m (surroundings.altitude not stated)",
     ),
     _kelvin_per_watt(
@@ -119,15 +121,6 @@ KEYS: tuple[Key, ...] = (
         "not built yet: touch temperatures are not checked",
     ),
 )  # fmt: skip
-
-
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class Cutout:
-    """A thermal cut-out on a node."""
-
-    node: str
-    T: Traced
-    delay: Traced
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -249,7 +242,11 @@ def _sink(
 def _refuse_unbuilt(surroundings: Cells) -> None:
     altitude = surroundings.quantity("altitude")
     if altitude is not None and bool((altitude.value != 0).any()):
-        surroundings.refuse("altitude", "not built yet: air density is that of sea level", 'altitude = "0 m"')
+        surroundings.refuse(
+            "altitude",
+            "not built yet: thinner air cools less, and by how much is not worked out here",
+            "state the sink's R_th at that altitude yourself in heatsink, and leave altitude out",
+        )
     if surroundings.flag("touchable"):
         surroundings.refuse(
             "touchable",

@@ -8,7 +8,8 @@ from __future__ import annotations
 
 from soacheck.quantity.pint_gate import as_pint
 from soacheck.quantity.reading import Reading, read
+from soacheck.quantity.refusal import a
 from soacheck.quantity.units import DIMENSIONS, UNITS, Unit
 from soacheck.quantity.writing import write
 
-__all__ = ["DIMENSIONS", "UNITS", "Reading", "Unit", "as_pint", "read", "write"]
+__all__ = ["DIMENSIONS", "UNITS", "Reading", "Unit", "a", "as_pint", "read", "write"]

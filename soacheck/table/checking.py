@@ -9,7 +9,7 @@ from soacheck.errors import plain
 from soacheck.quantity import DIMENSIONS
 from soacheck.table.cells import Sheet, is_inline_quantity
 from soacheck.table.declare import Key
-from soacheck.table.ledger import joined
+from soacheck.table.ledger import Ledger, joined
 from soacheck.table.values import Stated, Value, spread_of, value_of
 
 
@@ -17,6 +17,7 @@ def check_table(sheet: Sheet, path: str, table: str, data: Mapping[str, Any]) ->
     """Check one table and all below it. `path` is as in the file, `table` as declared."""
     declared, ledger = sheet.declared, sheet.ledger
     own = declared.own(table)
+    _refuse_unbuilt(sheet, path, [own[name] for name in data if name in own and own[name].not_built])
     offered: set[str] = set()
     for name, raw in data.items():
         if ledger.full:
@@ -26,17 +27,18 @@ def check_table(sheet: Sheet, path: str, table: str, data: Mapping[str, Any]) ->
         key = own.get(name)
         if key is not None:
             _check_key(sheet, key, dotted, raw)
+        elif (idle := declared.idle_characteristic(table, name)) is not None:
+            _check_key(sheet, idle, dotted, raw)
+            kinds = ", ".join(sorted(idle.belongs_to or ()))
+            said = f"{ledger.source.base_name}: {dotted} = {plain(str(raw))} is a characteristic of {kinds}"
+            ledger.caution("other-kind", f"{said}; of this {declared.device_kind} it decides nothing")
         elif inner in declared.tables and not declared.is_foreign(table, name):
             if isinstance(raw, dict):
                 check_table(sheet, dotted, inner, raw)
             else:
                 ledger.refuse(dotted, f"{name} is a table", f"write its keys under [{inner}]")
         else:
-            problem, remedy, near = declared.unknown(table, name, data)
-            if near and near not in data and isinstance(raw, str):  # the line that would be right
-                remedy += f' {near} = "{plain(raw)}"'
-            ledger.refuse(dotted, problem, remedy)
-            offered.add(near)
+            offered.add(_refuse_unknown(sheet, table, dotted, name, data))
     for name, key in own.items():
         if key.required and name not in data and name not in offered and not key.not_built:
             ledger.refuse(joined(path, name), "this key is wanted and absent", _how_to_state(key, "[" in path))
@@ -59,10 +61,45 @@ def _how_to_state(key: Key, of_array: bool) -> str:
     return text + (f" ({key.where})" if key.where else "")
 
 
+def _refuse_unknown(sheet: Sheet, table: str, dotted: str, name: str, data: Mapping[str, Any]) -> str:
+    """Refuse a name that is not declared; the name that was offered instead, "" for none.
+
+    What is wrong with its value comes in the same report, so that the line offered is right as a whole.
+    """
+    declared, ledger, raw = sheet.declared, sheet.ledger, data[name]
+    problem, remedy, near = declared.unknown(table, name, data)
+    meant = declared.own(table).get(near)
+    if meant is None or near in data:
+        ledger.refuse(dotted, problem, remedy)
+        return near
+    trial = Ledger(ledger.source)
+    if meant.form not in ("table", "tables", "tree") and not (meant.inside and isinstance(raw, dict)):
+        value_of(meant, dotted, raw, trial)
+    first, *others = trial.problems() or (None,)
+    if first is None:
+        line = f'"{plain(raw)}"' if isinstance(raw, str) else f"{raw}" if type(raw) in (int, float) else ""
+        ledger.refuse(dotted, problem, f"{remedy} {near} = {line}" if line else remedy)
+    else:
+        ledger.refuse(dotted, f"{problem}; besides, {first.problem}", f"{remedy} {first.remedy}")
+    for other in others:
+        if other is not None:
+            ledger.refuse(other.key, other.problem, other.remedy)
+    return near
+
+
+def _refuse_unbuilt(sheet: Sheet, path: str, stated: list[Key]) -> None:
+    """Keys that wait for a later version: those with the same reason are refused together, at the first of them."""
+    for reason in dict.fromkeys(key.not_built for key in stated):
+        names = [key.name for key in stated if key.not_built == reason]
+        *most, last = names
+        listed = f"{', '.join(most)} and {last}" if most else last
+        sheet.ledger.refuse(joined(path, names[0]), reason, f"leave {listed} out")
+
+
 def _check_key(sheet: Sheet, key: Key, dotted: str, raw: object) -> None:
-    if key.not_built:
-        sheet.ledger.refuse(dotted, key.not_built, f"leave {key.name} out")
-    elif key.form == "table":
+    if key.not_built:  # refused already, with all of its kind
+        return
+    if key.form == "table":
         _check_inner(sheet, key, dotted, raw)
     elif key.form == "tables":
         _check_array(sheet, key, dotted, raw)

@@ -54,6 +54,7 @@ class Key:
     grade: str = "guaranteed"  # grade of a stated value that states none; "" where grades mean nothing
     meaning: str = ""  # one sentence
     where: str = ""  # where a data sheet or drawing states it
+    when_unknown: str = "leave the line out: nothing is guessed in its place"  # remedy for "unknown", "?", "tbd"
     not_built: str = ""  # refuse the key by name: "not built yet: ..."
 
     @property

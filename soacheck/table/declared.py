@@ -41,6 +41,22 @@ class Declared:
         """Whether only other kinds of device have this key."""
         return (table, name) in self._foreign and name not in self.own(table)
 
+    def idle_characteristic(self, table: str, name: str) -> Key | None:
+        """The declaration of a characteristic that only other kinds have, and that has no counterpart here.
+
+        Data sheets print tables for several kinds, and such a line can mislead nobody: it is kept, with a caution.
+        A rating of another kind, or what stands under another name here, is an error.
+        """
+        foreign = self._foreign.get((table, name)) if self.is_foreign(table, name) else None
+        if foreign is None or table != _CHARACTERISTICS or self._twin(foreign):
+            return None
+        return foreign
+
+    def _twin(self, foreign: Key) -> str:
+        """What this kind of device calls the same thing, "" for nothing."""
+        own = self.own(foreign.table).values()
+        return next((key.name for key in own if foreign.role and key.role == foreign.role), "")
+
     def top_tables(self) -> set[str]:
         """Tables at the top of the file, arrays of tables and keys of the root left out."""
         return {path for path in self.tables if path and "." not in path} - self.own("").keys()
@@ -92,10 +108,7 @@ class Declared:
     def _of_another_kind(self, foreign: Key, stated: set[str]) -> tuple[str, str, str]:
         kinds = " ".join(sorted(foreign.belongs_to or ()))
         problem = f"{foreign.name} belongs to {kinds}; the device here is {self.device_kind}"
-        twin = next(
-            (key.name for key in self.own(foreign.table).values() if foreign.role and key.role == foreign.role),
-            "",
-        )
+        twin = self._twin(foreign)
         if twin in stated:
             return problem, f"leave it out: {twin} stands here already", ""
         return problem, f"here it is {twin}:" if twin else "leave it out", twin

@@ -42,7 +42,7 @@ class Document:
 
     @property
     def cautions(self) -> tuple[tuple[str, str], ...]:
-        """(id, text): units that were read through pint."""
+        """(id, text): units that were read through pint, characteristics of another kind of device."""
         return tuple(self.sheet.ledger.cautions)
 
     @property

@@ -59,7 +59,8 @@ def parse_source(text: str, *, shown_as: str, sha256: str = "") -> Source:
     if not sha256:
         sha256 = hashlib.sha256(text.encode("utf-8", "surrogatepass")).hexdigest()
     if not text.strip():
-        raise InputError(Problem(file=shown_as, problem="the file is empty", remedy="`soacheck device new` starts one"))
+        remedy = "`soacheck device new` starts a rating file, `soacheck demo` writes stages to start from"
+        raise InputError(Problem(file=shown_as, problem="the file is empty", remedy=remedy))
     _guard(text, shown_as)
     try:
         data = tomllib.loads(text)

@@ -3,17 +3,22 @@
 from __future__ import annotations
 
 import math
+import re
 import tomllib
 from collections.abc import Callable
 from dataclasses import dataclass, replace
 
 from soacheck.errors import QuantityError, plain
-from soacheck.quantity import DIMENSIONS, read
+from soacheck.quantity import DIMENSIONS, a, read
 from soacheck.table.declare import GRADES, Key, Spread
 from soacheck.table.ledger import Ledger, joined
 from soacheck.table.nearest import nearest
 from soacheck.trace import FloatArray, frozen
 
+_UNKNOWN = frozenset(
+    ("", "unknown", "notknown", "notyetknown", "unspecified", "notspecified", "notstated", "notgiven", "na", "tbd",
+     "tba", "todo")
+)  # fmt: skip
 INLINE = ("value", "min", "max", "tol", "source", "grade")  # keys of a quantity written as an inline table
 
 
@@ -53,8 +58,20 @@ def default_value(key: Key) -> object:
     return text
 
 
+def unfilled(raw: object) -> bool:
+    """Whether a value, or one inside it, still has the dots of a template: "...", "... V"."""
+    if isinstance(raw, dict):
+        return any(unfilled(inner) for inner in raw.values())
+    if isinstance(raw, list):
+        return any(unfilled(inner) for inner in raw)
+    return isinstance(raw, str) and raw.lstrip().startswith(("...", "\u2026"))
+
+
 def value_of(key: Key, dotted: str, raw: object, ledger: Ledger) -> Value | None:
     """The value of a key of any form but table, tables and tree; None when it is wrong, and noted."""
+    if unfilled(raw):
+        ledger.refuse(dotted, "not filled in", "fill it in" if key.required else "fill it in, or delete the line")
+        return None
     return _READERS[key.form](key, dotted, raw, ledger)
 
 
@@ -93,7 +110,7 @@ def _quantity(key: Key, dotted: str, raw: object, ledger: Ledger) -> Stated | Wo
         return _inline(key, dotted, raw, ledger)
     if isinstance(raw, list):
         return _list(key, dotted, raw, ledger)
-    if isinstance(raw, str) and key.choices and not any(ch.isdigit() for ch in raw):
+    if isinstance(raw, str) and not any(ch.isdigit() for ch in raw) and (key.choices or _says_unknown(raw)):
         _refuse_word(key, dotted, raw, ledger)
         return None
     si = single(key, dotted, key.name, raw, ledger)
@@ -102,9 +119,18 @@ def _quantity(key: Key, dotted: str, raw: object, ledger: Ledger) -> Stated | Wo
 
 def _refuse_word(key: Key, dotted: str, raw: object, ledger: Ledger) -> None:
     known = ", ".join(f'"{word}"' for word in key.choices)
-    near = (nearest(raw, key.choices) if isinstance(raw, str) else None) or key.choices[0]
-    wanted = "one of" if key.form == "choice" else "a quantity or one of"
-    ledger.refuse(dotted, f"{wanted} {known} is wanted here", f'{key.name} = "{near}"')
+    near = nearest(raw, key.choices) if isinstance(raw, str) and not _says_unknown(raw) else None
+    alone = a(key.dimension or "bare number")
+    wanted = "one of" if key.form == "choice" else "a quantity or one of" if known else alone
+    remedy = f'{key.name} = "{near or key.choices[0]}"' if near or key.form == "choice" else key.when_unknown
+    if key.required and not key.choices:
+        remedy = key.where or "look it up: no decision is made without it"
+    ledger.refuse(dotted, f"{wanted} {known}".strip() + " is wanted here", remedy)
+
+
+def _says_unknown(text: str) -> bool:
+    """Whether a word says that nobody knows: it is neither a slip of another word nor a quantity gone wrong."""
+    return re.sub("[^a-z]", "", text.casefold()) in _UNKNOWN and text.strip() != ""
 
 
 def single(key: Key, dotted: str, name: str, raw: object, ledger: Ledger) -> float | None:

@@ -165,3 +165,34 @@ def test_every_key_says_what_it_means_and_none_is_declared_twice() -> None:
     dotted = [key.path for key in path.KEYS]
     assert len(set(dotted)) == len(dotted)
     assert all(key.meaning.endswith(".") for key in path.KEYS)
+
+
+@pytest.mark.parametrize(
+    "changes",
+    [
+        {"heat_path__heatsink": '"unknown"'},
+        {"heat_path__heatsink": '"?"'},
+        {"heat_path__interface": '"not known"'},
+        {"surroundings__T_ambient": '"tbd"'},
+    ],
+)
+def test_what_is_not_known_is_to_be_left_out_and_never_replaced_by_something_kinder(
+    tmp_path: Path, changes: dict[str, str | None]
+) -> None:
+    remedy = refused(tmp_path, **changes).remedy
+    assert remedy == "leave the line out when it is not known; the findings that need it become unproven"
+
+
+def test_an_altitude_is_not_to_be_written_down_as_sea_level(tmp_path: Path) -> None:
+    for text in ('"1500 m"', '"unknown"'):
+        remedy = refused(tmp_path, surroundings__altitude=text).remedy
+        assert "0 m" not in remedy
+        assert "out" in remedy
+    assert "R_th at that altitude" in refused(tmp_path, surroundings__altitude='"1500 m"').remedy
+
+
+def test_a_sink_by_its_geometry_is_refused_in_one_sentence(tmp_path: Path) -> None:
+    with pytest.raises(InputError) as caught:
+        opened(tmp_path, heat_path__heatsink='{ shape = "vertical-fins", width = "200 mm", fins = 21 }')
+    (problem,) = caught.value.problems
+    assert problem.remedy == "leave shape, width and fins out"

@@ -5,7 +5,8 @@ from __future__ import annotations
 import pytest
 
 from soacheck.errors import InputError, Problem
-from tests.table.declarations import COMPLETE, document
+from soacheck.table import Key, check_source, parse_source
+from tests.table.declarations import COMPLETE, KEYS, MOSFET, document
 
 _HEAD = '[device]\nname = "x"\nkind = "npn"\n'
 
@@ -105,6 +106,20 @@ def test_all_errors_of_a_file_come_together_in_its_order() -> None:
         ('Z_th_jc = { foster = [["1 K/W"]] }', "thermal", "thermal.Z_th_jc.foster[1]", '["1 K/W"]', "2 values", ""),
         ('Z_th_jc = { foster = [["1 K/W", "1,5 s"]] }', "thermal", "thermal.Z_th_jc.foster[1][2]", "'1,5 s'",
          "a decimal comma", '"1.5 s"'),
+        ("Ptot = 150", "max", "max.Ptot", "150", "besides, a number without", 'was P_tot meant? P_tot = "150 W"'),
+        ('Ptot = "1,5 W"', "max", "max.Ptot", "'1,5 W'", "has no key Ptot; besides, a decimal comma",
+         'was P_tot meant? use a decimal point: P_tot = "1.5 W"'),
+        ("hFE = 90", "typical", "typical.hFE", "90", "has no key hFE", "was h_FE meant? h_FE = 90"),
+        ('P_tot = "..."', "max", "max.P_tot", "'...'", "not filled in", "fill it in, or delete the line"),
+        ('P_tot = "... W"', "max", "max.P_tot", "'... W'", "not filled in", "fill it in, or delete the line"),
+        ('P_tot = { value = "\u2026 W", tol = "5 %" }', "max", "max.P_tot", '{ value = "\u2026 W", tol = "5 %" }',
+         "not filled in", "delete the line"),
+        ('V_CE_sat = ["... V", "1 V", "... V"]', "typical", "typical.V_CE_sat", '["... V", "1 V", "... V"]',
+         "not filled in", "delete the line"),
+        ('P_tot = "unknown"', "max", "max.P_tot", "'unknown'", "a power is wanted", "leave the line out"),
+        ('sink = "unknown"', "path", "path.sink", "'unknown'", 'one of "ideal", "none"', "leave the line out"),
+        ('sink = "n/a"', "path", "path.sink", "'n/a'", 'one of "ideal", "none"', "leave the line out"),
+        ('sink = "big"', "path", "path.sink", "'big'", 'one of "ideal", "none"', "leave the line out"),
         ('"P tot" = "1 W"', "max", 'max."P tot"', "'1 W'", "has no key P tot", 'P_tot = "1 W"'),
     ],
 )  # fmt: skip
@@ -130,6 +145,52 @@ def test_a_wrong_form_names_the_form(line: str, key: str, said: str, remedy: str
     found = {problem.key: problem for problem in problems(f"[device]\n{line}\n")}
     assert said in found[key].problem
     assert remedy in found[key].remedy
+
+
+def test_an_unfilled_text_is_said_to_be_unfilled() -> None:
+    (problem,) = problems('[device]\nname = "..."\nkind = "npn"\n')
+    assert (problem.key, problem.problem, problem.remedy) == ("device.name", "not filled in", "fill it in")
+
+
+def test_a_text_that_merely_ends_in_dots_is_a_text() -> None:
+    document('[device]\nname = "and so on ..."\nkind = "npn"\n').finish()
+
+
+def test_keys_refused_for_one_reason_are_refused_in_one_sentence() -> None:
+    waiting = [
+        Key(table="a", name=name, not_built="not built yet: this is", dimension="length") for name in ("x", "y", "z")
+    ]
+    ready = check_source(parse_source('[a]\nz = 1\nx = 2\ny = 3\n', shown_as="f.toml"), waiting)
+    with pytest.raises(InputError) as caught:
+        ready.finish()
+    (problem,) = caught.value.problems
+    assert (problem.key, problem.line, problem.remedy) == ("a.z", 2, "leave z, x and y out")
+
+
+def test_every_fault_of_a_misspelt_key_comes_in_the_same_report() -> None:
+    found = problems(_HEAD + '[thermal]\nR_thjc = { value = "1,25 K/W", grade = "garanteed" }\n')
+    assert "has no key R_thjc" in found[0].problem
+    said = " ".join(problem.remedy for problem in found)
+    assert '"1.25 K/W"' in said
+    assert 'grade = "guaranteed"' in said
+
+
+def test_a_characteristic_of_another_kind_is_kept_with_a_caution_and_a_rating_of_another_kind_refused() -> None:
+    more = [Key(table="typical", name="R_on", dimension="resistance", belongs_to=MOSFET)]
+    text = _HEAD + '[typical]\nR_on = "45 mohm"\n'
+    made = check_source(parse_source(text, shown_as="amp.toml"), (*KEYS, *more), device_kind="npn")
+    made.finish()
+    assert made.cautions == (
+        (
+            "other-kind",
+            "amp.toml: typical.R_on = 45 mohm is a characteristic of n-mosfet; of this npn it decides nothing",
+        ),
+    )
+    assert [node.symbol for node in made.stated()] == ["R_on"]
+    text = text.replace("mohm", "V")
+    wrong = check_source(parse_source(text, shown_as="amp.toml"), (*KEYS, *more), device_kind="npn")
+    with pytest.raises(InputError, match="V measures a voltage"):
+        wrong.finish()
 
 
 def test_a_rating_is_never_offered_for_a_characteristic_nor_the_reverse() -> None:

@@ -71,6 +71,8 @@ def test_a_file_of_fifty_megabytes_is_refused_unread(file: Path) -> None:
 def test_an_empty_file_says_so(file: Path, content: bytes) -> None:
     file.write_bytes(content)
     assert refused(file).problem == "the file is empty"
+    assert "device new" in refused(file).remedy
+    assert "demo" in refused(file).remedy  # it may be a stage
 
 
 def test_what_is_not_utf8_is_told_with_its_line(file: Path) -> None:
