@@ -260,6 +260,7 @@ SOA_KEYS: tuple[Key, ...] = (
         dimension="time",
         band=(1e-8, 1e3),
         choices=("dc",),
+        when_unknown='pulse = "dc", or pulse = "10 ms"; leave a curve out whose pulse is not known',
     ),
     _chart(
         "T_ref",
@@ -283,7 +284,7 @@ SOA_KEYS: tuple[Key, ...] = (
         choices=("forward", "reverse"),
         default="forward",
     ),
-    _chart("single", "Drawn for single pulses (false: repeated, with duty_factor).", form="flag"),
+    _chart("single", "Drawn for single pulses, as when absent (false: repeated, with duty_factor).", form="flag"),
     _chart(
         "duty_factor",
         "Duty factor of a curve drawn for repeated pulses.",

@@ -11,7 +11,7 @@ from pathlib import Path
 from soacheck.errors import InputError, Problem
 
 _LARGEST = 1_000_000  # [byte] a rating file is a few thousand; what is larger is not searched for names
-_OFFERED = 12  # names listed when none is near
+_OFFERED = 24  # names listed when none is near
 
 
 def shipped_devices() -> Path:
@@ -44,6 +44,8 @@ def find_device(name: str, stage_folder: Path, devices_dirs: Sequence[Path] = ()
                     remedy="give a folder that holds rating files: --devices DIR",
                 )
             )
+    if name.lstrip().startswith(("...", "\u2026")):
+        raise InputError(Problem(key="device", value=name, problem="not filled in", remedy="fill it in"))
     if "/" in name or "\\" in name or name.lower().endswith(".toml"):
         return _by_path(name, stage_folder)
     folders = (stage_folder, *devices_dirs, shipped_devices())
@@ -132,7 +134,8 @@ def _not_found(name: str, folders: Sequence[Path]) -> Problem:
         remedy = f"did you mean {_listed(near)}?"
     else:
         some = sorted(known)[:_OFFERED]
-        remedy = f"known here: {', '.join(some)}" + (" ..." if len(known) > len(some) else "")
+        left_out = len(known) - len(some)
+        remedy = f"known here: {', '.join(some)}" + (f" and {left_out} more" if left_out else "")
     places = dict.fromkeys(str(folder) for folder in folders)
     return Problem(
         key="device",

@@ -10,6 +10,7 @@ import numpy as np
 
 from soacheck.device.keys import KEYS
 from soacheck.device.ratings import (
+    DARLINGTON,
     IGBT,
     KINDS,
     MOSFET,
@@ -93,6 +94,7 @@ def _device(document: Document, kind: Kind, shown_as: str) -> Device:
     typical = _typical(document.table("typical"), kind)
     curves = read_curves(document, maximum.T_j.at(0) if maximum is not None else None, assumptions)
     derating = read_derating(document, curves, assumptions)
+    assumptions += _on_state_assumed(document.table("typical"), kind)
     mechanical = _mechanical(document.table("mechanical"))
     document.finish()
     if maximum is None:  # cannot be: each of its inputs is a required key or has a default
@@ -224,6 +226,20 @@ def _typical(cells: Cells, kind: Kind) -> Typical:
     if cold is not None and hot is not None and not hot.at(0) >= cold.at(0):
         cells.refuse("R_DS_on_hot", "the hot on-resistance is below the cold one", "are the two swapped?")
     return typical
+
+
+def _on_state_assumed(cells: Cells, kind: Kind) -> list[str]:
+    """What is taken for the drop of a device that is fully on and whose sheet does not state it."""
+    wanted = ("R_DS_on",) if kind in MOSFET else ("V_CE_TO", "r_CE") if kind in IGBT else ("V_CE_sat",)
+    lacking = [name for name in wanted if not cells.has(name)]
+    if not lacking or (kind in MOSFET and cells.has("R_DS_on_hot")):
+        return []
+    volts = 2 if kind in DARLINGTON else 1
+    names = " and ".join(f"typical.{name}" for name in lacking)
+    return [
+        f"fully on, it drops at most {volts} V, common practice, which counts for heat and regions, and at least 0 V,"
+        f" which counts for the greatest current of a load line ({names} not stated)"
+    ]
 
 
 def _triple(cells: Cells, name: str) -> Triple | None:

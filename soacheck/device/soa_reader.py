@@ -34,7 +34,8 @@ def read_curves(document: Document, T_j_max: float | None, assumptions: list[str
         _refuse_crossed(cells, first, second)
     undated = [curve.label for cells, curve in stated if curve.bias == "forward" and not cells.has("T_ref")]
     if undated:
-        assumptions.append(f"safe-area curves {', '.join(undated)} are drawn for 25 degC (T_ref not stated)")
+        which = f"curve {undated[0]} is" if len(undated) == 1 else f"curves {', '.join(undated)} are"
+        assumptions.append(f"safe-area {which} drawn for 25 degC (T_ref not stated)")
     return tuple(curve for _, curve in stated)
 
 
@@ -74,7 +75,7 @@ def _curve(cells: Cells, T_j_max: float | None, file: str) -> SafeAreaCurve | No
     if not single and not cells.has("duty_factor"):
         cells.refuse("single", "a curve for repeated pulses holds for one duty factor", 'duty_factor = "10 %"')
     if single and cells.has("duty_factor"):
-        cells.refuse("duty_factor", "a duty factor belongs to a curve for repeated pulses", "single = false")
+        cells.refuse("duty_factor", "only a curve for repeated pulses has a duty factor", "single = false")
     if bias == "forward":
         for name in _DRIVE:
             if cells.has(name):

@@ -97,6 +97,7 @@ def template(kind: Kind) -> str:
 def _curve(keys: list[Key], kind: Kind, usual: str) -> Iterator[str]:
     """One curve, commented out as a whole: its table exists only once its points are read."""
     first = sorted((key for key in keys if key.name in _FIRST_CURVE), key=lambda key: _FIRST_CURVE.index(key.name))
+    yield "# Without a dc curve whatever lasts or is held stays unproven: start with that one."
     yield "# [[soa]]"
     for line in _written([*first, *(key for key in keys if key.name not in _FIRST_CURVE)], kind, usual):
         yield line if line.startswith("#") else f"# {line}"
@@ -131,7 +132,7 @@ def _beside(line: str, remark: str) -> Iterator[str]:
 
 
 def _example(key: Key, kind: Kind) -> str:
-    bare = {"flag": "false", "text": f'"{_BLANK}"', "number": "[0, 0, 0]"}
+    bare = {"flag": "true", "text": f'"{_BLANK}"', "number": "[0, 0, 0]"}
     if key.path in _SHAPES or key.form in bare:
         return _SHAPES.get(key.path) or bare[key.form]
     if key.form == "choice" or key.default is not None or key.choices:

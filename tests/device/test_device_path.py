@@ -108,3 +108,19 @@ def test_rating_file_with_a_syntax_error_is_still_found_by_its_name(tmp_path: Pa
 def test_stage_file_that_is_called_like_its_device_is_passed_over(tmp_path: Path) -> None:
     put(tmp_path, "EXAMPLE-NPN-160.toml", '[stage]\ndevice = "EXAMPLE-NPN-160"\n')
     assert find_device("EXAMPLE-NPN-160", tmp_path).parent == shipped_devices()
+
+
+def test_a_list_of_known_devices_that_is_cut_says_how_many_are_left_out(tmp_path: Path) -> None:
+    for number in range(30):
+        (tmp_path / f"a{number:02}.toml").write_text(f'[device]\nname = "a{number:02}"\n', encoding="utf-8")
+    with pytest.raises(InputError) as caught:
+        find_device("zzzzzzzz", tmp_path)
+    (problem,) = caught.value.problems
+    assert "..." not in problem.remedy
+    assert problem.remedy.endswith(" more")
+
+
+def test_a_device_name_still_of_dots_is_not_looked_for(tmp_path: Path) -> None:
+    with pytest.raises(InputError) as caught:
+        find_device("...", tmp_path)
+    assert caught.value.problems[0].problem == "not filled in"

@@ -155,3 +155,21 @@ def test_more_voltage_at_one_current_never_leads_back_into_saturation(v: float, 
     device = example(f"EXAMPLE-{stem}")
     low, high = laws.regions(device, np.array([v, 1.5 * v + 0.1]), np.array([i, i]))
     assert not (high == laws.SATURATION and low != laws.SATURATION)
+
+
+def test_output_characteristics_keep_their_order_where_the_gain_falls_steeply(tmp_path: Path) -> None:
+    # Repetition of I_C = I_B * h_FE(I_C) swings between two currents where the gain falls faster than the current
+    # rises; each curve must stand where I_C / h_FE(I_C) is its base current.
+    points = '[["0.1 A", "25 degC", 120], ["2 A", "25 degC", 100], ["6 A", "25 degC", 30], ["15 A", "25 degC", 5]]'
+    device = read(NPN + f'[typical]\nh_FE_points = {points}\nV_CE_sat = "1 V"\n', tmp_path)
+    curves = laws.characteristics(device, 60.0, 15.0)
+    assert all(high.i[-1] > low.i[-1] for low, high in pairwise(curves))
+    for label, _, amps in curves:
+        gain = laws.current_gain(device, amps[-1:])
+        assert gain is not None
+        assert amps[-1] / gain[0] == pytest.approx(float(label.removesuffix(" mA")) * 1e-3, rel=1e-3)
+
+
+def test_output_characteristics_of_the_pnp_example_keep_their_order() -> None:
+    curves = laws.characteristics(example("EXAMPLE-PNP-160"), 60.0, 16.0)
+    assert all(np.all(high.i[1:] > low.i[1:]) for low, high in pairwise(curves))

@@ -43,7 +43,7 @@ def test_filled_in_template_reads(tmp_path: Path, kind: Kind) -> None:
 
 @pytest.mark.parametrize("kind", KINDS)
 def test_unfilled_template_names_each_open_key_and_nothing_else(tmp_path: Path, kind: Kind) -> None:
-    wanted = set(figures(kind)) - {"name", "ratings_from"}
+    wanted = set(figures(kind))
     found = problems(template(kind), tmp_path)
     assert {problem.key.rpartition(".")[2] for problem in found} == wanted
 
@@ -119,3 +119,10 @@ def test_control_characters_of_the_file_do_not_reach_the_terminal(tmp_path: Path
     text = shown(read(NPN.replace("T1", "T\\u001b[31m1").replace("a sheet", "a \\u0007 sheet"), tmp_path))
     assert "\x1b" not in text
     assert "\x07" not in text
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_template_states_the_defaults_of_a_curve_and_what_a_missing_dc_curve_costs(kind: Kind) -> None:
+    text = template(kind)
+    assert "# single = true " in text
+    assert text.index("Without a dc curve whatever lasts or is held stays unproven") < text.index("# [[soa]]")
