@@ -229,3 +229,16 @@ def test_a_table_that_cannot_be_read_is_an_input_error(tmp_path: Path) -> None:
     (tmp_path / "bad.csv").write_text("f,Z,phi\n20,8,0\n200,OL,30\n")
     with pytest.raises(InputError, match=r"bad\.csv, line 3"):
         from_folder(tmp_path, '{ table = "bad.csv" }')
+
+
+@pytest.mark.parametrize(
+    ("load", "key", "remedy"),
+    [
+        ('{ parallel = ["8 ohm", "180 uF"] }', "load.load.parallel[2]", '{ C = "180 uF" }'),
+        ('{ series = ["8 ohm", { parallel = ["1.2 mH"] }] }', "load.load.series[2].parallel[1]", '{ L = "1.2 mH" }'),
+        ('"180 uF"', "load.load", 'load = { C = "180 uF" }'),
+    ],
+)
+def test_a_capacitor_written_as_a_text_is_told_how_it_is_written(load: str, key: str, remedy: str) -> None:
+    found = stages.refusals("push-pull", PLAIN.replace('"8 ohm"', load))
+    assert [(one, offer) for one, _, offer in found] == [(key, remedy)]

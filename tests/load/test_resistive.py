@@ -205,3 +205,10 @@ def test_the_swing_never_leaves_the_device(i: float, v: float, R: float, V_0: fl
 def test_supply_device_and_load_keep_the_energy(I_CQ: float) -> None:
     path = locus(duties("resistive", SWING + f'I_CQ = "{I_CQ} A"\nf = "1 kHz"')["full-swing"])
     assert 24 * path.i_mean == pytest.approx(path.p_mean + 8 * path.i_rms**2)
+
+
+def test_a_held_line_without_a_stated_saturation_voltage_ends_at_nothing_and_says_so() -> None:
+    duty = duties("resistive", HELD, device())["held-worst-point"]
+    node = next(n for one in duty.facts for n in one.walk() if n.symbol == "V_CE_sat_min")
+    assert "not stated" in node.source
+    assert fact(duty, "I_end") == pytest.approx(24 / 8)

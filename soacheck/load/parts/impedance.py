@@ -10,7 +10,9 @@ from typing import Literal
 import numpy as np
 import numpy.typing as npt
 
+from soacheck.errors import QuantityError, plain
 from soacheck.load.parts.impedance_table import read_table
+from soacheck.quantity import a, read
 from soacheck.table import Cells
 from soacheck.trace import FloatArray, Traced, frozen
 
@@ -18,6 +20,7 @@ ComplexArray = npt.NDArray[np.complex128]
 
 _LETTERS: tuple[Literal["R", "L", "C"], ...] = ("R", "L", "C")
 _DIMENSION = {"R": "resistance", "L": "inductance", "C": "capacitance"}
+_UNIT = {"R": "ohm", "L": "H", "C": "F"}
 _BAND = {"R": (1e-4, 1e7), "L": (1e-10, 1e4), "C": (1e-13, 10.0)}
 _FORMS = '"8 ohm", { R = "6 ohm", L = "1.2 mH" }, { series = [...] }, { parallel = [...] } or { table = "z.csv" }'
 _DEEPEST = 16
@@ -138,6 +141,17 @@ def read_impedance(cells: Cells, name: str, folder: Path) -> Impedance | None:
     return _Reader(cells, folder).read(name, cells.raw(name), 0)
 
 
+def _letter_of(value: object) -> Literal["R", "L", "C"]:
+    """Which element a text states by its unit; R where it states none of the others."""
+    for letter in ("L", "C"):
+        try:
+            read(value, _DIMENSION[letter])
+        except QuantityError:
+            continue
+        return letter
+    return "R"
+
+
 @dataclass(frozen=True, slots=True)
 class _Reader:
     """Reads the nested form of a load; every method returns None once something has been reported."""
@@ -166,6 +180,13 @@ class _Reader:
     def _element(self, name: str, kind: Literal["R", "L", "C"], value: object) -> Element | None:
         if not isinstance(value, str | dict):
             self._refused(name, "a load is a text or an inline table")
+            return None
+        letter = _letter_of(value) if kind == "R" and not name.endswith(".R") else "R"
+        if letter != "R":
+            wanted = f'{{ {letter} = "{plain(str(value))}" }}'
+            remedy = wanted if name.endswith("]") else f"{name.rpartition('.')[2]} = {wanted}"
+            problem = f"a text alone is a resistance, {_UNIT[letter]} measures {a(_DIMENSION[letter])}"
+            self._refused(name, problem, remedy)
             return None
         path = f"{self.cells.path}.{name}"
         traced = self.cells.tree_quantity(path, value, _DIMENSION[kind], _BAND[kind])

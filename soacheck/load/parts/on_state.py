@@ -67,7 +67,10 @@ def longest_line(device: Device, share: Traced | None) -> OnState:
     if device.igbt:
         slope, knee = _low(typical.r_CE), _low(typical.V_CE_TO)
         return OnState(V_0=_named(knee, "V_CE_TO"), R_on=None if slope is None else for_all(slope.named("r_CE"), share))
-    return OnState(V_0=_named(_low(typical.V_CE_sat), "V_CE_sat"))
+    volts = _low(typical.V_CE_sat)
+    if volts is None:
+        return OnState(V_0=given("V_CE_sat_min", 0.0, "V", "V_CE_sat is not stated: 0 V, the greatest current"))
+    return OnState(V_0=volts.named("V_CE_sat"))
 
 
 def most_heat(device: Device, share: Traced | None) -> OnState:
