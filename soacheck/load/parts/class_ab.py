@@ -11,11 +11,12 @@ from typing import NamedTuple
 import numpy as np
 import numpy.typing as npt
 
+from soacheck.device.laws import BOLTZMANN_OVER_CHARGE
 from soacheck.trace import FloatArray
 
-BOLTZMANN_OVER_CHARGE = 8.617333262e-5  # [V/K] k/e from the exact SI values of 2019
 T_CROSSOVER = 298.15  # [K] temperature of the thermal voltage; a hot pair crosses over a little more softly
-_STEPS = 200  # never needed: Newton's steps on a convex function are about five, some twenty at worst
+_STEPS = 200  # never needed: Newton's steps on a convex function are about four, some twenty at worst
+_LAST = 1e-8  # a step this small leaves an error of half its square, which is below rounding
 
 
 class Pair(NamedTuple):
@@ -91,14 +92,7 @@ def exponential_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike, R_E: npt.ArrayLi
     x = np.abs(i) / (2 * some)
     r = 2 * resistor * some / V_T
     square = x * x
-    g = -r * (np.sqrt(square + 1.0) - 1.0)
-    for _ in range(_STEPS):
-        product = np.exp(g)
-        root = np.sqrt(square + product)
-        step = (g + r * (root - 1.0)) / (1.0 + r * product / (2 * root + np.finfo(float).tiny))
-        g = np.minimum(g - step, 0.0)  # the root lies below 0, the left side there above it
-        if bool(np.all(np.abs(step) <= 1e-14 * (1.0 + np.abs(g)))):
-            break
+    g = _log_product(square, r)
     product = np.exp(g)
     total = np.sqrt(square + product)
     more = some * (total + x)
@@ -108,6 +102,29 @@ def exponential_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike, R_E: npt.ArrayLi
     upper = np.where(i >= 0, more, less)
     lower = np.where(i >= 0, less, more)
     return Pair(np.where(idle > 0, upper, ideal.upper), np.where(idle > 0, lower, ideal.lower))
+
+
+def _log_product(square: FloatArray, r: FloatArray) -> FloatArray:
+    """The root g of g + r (sqrt(square + exp(g)) - 1), shapes broadcast.
+
+    The second derivative is at most twice (first - 1): a step e away from the root leaves at most e^2/2.
+    """
+    g = -r * (np.sqrt(square + 1.0) - 1.0)  # not above the root; put in once more, not below it
+    g = np.minimum(-r * (np.sqrt(square + np.exp(g)) - 1.0), 0.0)
+    for _ in range(_STEPS):
+        product = np.exp(g)
+        root = np.sqrt(square + product)
+        slope = r * product
+        slope /= 2 * root + np.finfo(float).tiny
+        slope += 1.0
+        root -= 1.0
+        root *= r
+        root += g
+        step = root / slope
+        g = np.minimum(g - step, 0.0)  # the root lies below 0, the left side there above it
+        if bool(np.all(np.abs(step) <= _LAST * (1.0 + np.abs(g)))):
+            break
+    return np.asarray(g, dtype=np.float64)
 
 
 def square_law_pair(i_load: npt.ArrayLike, I_Q: npt.ArrayLike) -> Pair:

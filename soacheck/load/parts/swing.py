@@ -21,6 +21,12 @@ _CONDUCTING, _RESTING = 192, 96  # intervals of the half period with and without
 _CLIPPED = 256  # intervals of a clipped period
 _HARMONICS = 2047
 
+# Angles of a period, and where among the quarter's angles each has the size of its sine.
+_BASE = np.concatenate([np.linspace(0, np.pi, _CONDUCTING + 1), np.linspace(np.pi, 2 * np.pi, _RESTING + 1)[1:]])
+_QUARTER = np.sin(np.linspace(0, np.pi / 2, _CONDUCTING // 2 + 1))
+_UP = np.minimum(np.arange(_CONDUCTING + 1), np.arange(_CONDUCTING, -1, -1))
+_DOWN = _UP[:: _CONDUCTING // _RESTING][1:]
+
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Output:
@@ -40,7 +46,10 @@ class Output:
 
     def upper(self, v_out: FloatArray, i_load: FloatArray) -> tuple[FloatArray, FloatArray]:
         """Voltage across and current through the device of the upper half."""
-        even = self.crossover(i_load / self.pairs).upper
+        return self.across(v_out, self.crossover(i_load / self.pairs).upper)
+
+    def across(self, v_out: FloatArray, even: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """The same from the current that each pair's upper half would carry if sharing were even."""
         v = self.V_rail[..., None] - v_out - self.R_E[..., None] * even
         return np.maximum(v, self.V_sat[..., None]), even * (self.pairs * self.share[..., None])
 
@@ -53,23 +62,27 @@ def _locked(*arrays: FloatArray) -> None:
 def sine(output: Output, V: FloatArray, Z: ComplexArray, f: FloatArray) -> Locus:
     """One period of a sine of peak V at the output, from the moment at which the half begins to conduct.
 
-    The turning points of v and i and the greatest power are among the samples.
+    The turning points of v and i and the greatest power are among the samples. The halves are mirror images, so
+    that the crossover is worked out over a quarter of the period only.
     """
     Z_mod, phi = np.abs(Z), np.angle(Z)
     V, Z_mod, phi, f = np.broadcast_arrays(V, Z_mod, phi, f)
-    base = np.concatenate([np.linspace(0, np.pi, _CONDUCTING + 1), np.linspace(np.pi, 2 * np.pi, _RESTING + 1)[1:]])
-    extra = np.stack(
-        [
-            (np.pi / 2 - phi) % (2 * np.pi),
-            (3 * np.pi / 2 - phi) % (2 * np.pi),
-            _power_angle(output, V, Z_mod, phi),
-        ],
-        axis=-1,
-    )
-    angle = np.concatenate([np.broadcast_to(base, (*V.shape, base.size)), extra], axis=-1)
-    angle.sort(axis=-1)
-    v_out = V[..., None] * np.sin(angle + phi[..., None])
-    v, i = output.upper(v_out, (V / Z_mod)[..., None] * np.sin(angle))
+    best = _power_angle(output, V, Z_mod, phi)
+    shape = best.shape  # the rails may vary over more cases than the load
+    turns = [(np.pi / 2 - phi) % (2 * np.pi), (3 * np.pi / 2 - phi) % (2 * np.pi)]
+    extra = np.stack([*(np.broadcast_to(turn, shape) for turn in turns), best], axis=-1)
+    wave = np.sin(extra)
+    # Load current of one pair at the quarter's angles and at the extra ones, as a magnitude.
+    sizes = np.concatenate([np.broadcast_to(_QUARTER, (*shape, _QUARTER.size)), np.abs(wave)], axis=-1)
+    pair = output.crossover((V / Z_mod / output.pairs)[..., None] * sizes)
+    n = _QUARTER.size
+    own = np.where(wave >= 0, pair.upper[..., n:], pair.lower[..., n:])
+    even = np.concatenate([pair.upper[..., _UP], pair.lower[..., _DOWN], own], axis=-1)
+    angle = np.concatenate([np.broadcast_to(_BASE, (*shape, _BASE.size)), extra], axis=-1)
+    order = np.argsort(angle, axis=-1, kind="stable")  # a merge: all but the last three are in order
+    angle = np.take_along_axis(angle, order, axis=-1)
+    even = np.take_along_axis(np.broadcast_to(even, (*even.shape[:2], angle.shape[-1])), order, axis=-1)
+    v, i = output.across(V[..., None] * np.sin(angle + phi[..., None]), even)
     t = angle / (2 * np.pi * f[..., None])
     _locked(t, v, i)
     return Locus(t=t, v=v, i=i, use=Use.REPEATED)
