@@ -9,10 +9,12 @@ from collections.abc import Callable
 from dataclasses import dataclass, field
 from typing import Literal
 
+import numpy as np
+
 from soacheck.device.ratings import Device
 from soacheck.locus import Locus
 from soacheck.table import Missing
-from soacheck.trace import FloatArray, Traced, frozen
+from soacheck.trace import FloatArray, IntArray, Traced, frozen
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -25,6 +27,14 @@ class Members:
     name: str = ""  # "level", "V_CE", "V_out"; empty when there is only one
     unit: str = ""
     value: FloatArray = field(default_factory=lambda: frozen([[0.0]]))
+
+
+def picked(values: FloatArray, member: IntArray) -> FloatArray:
+    """The values (case,) of one member (1 or case,) per case; values (1 or case, 1 or member)."""
+    if values.shape[1] == 1:
+        return values[:, 0]
+    cases = max(len(values), member.size)
+    return np.broadcast_to(values, (cases, values.shape[1]))[np.arange(cases), member]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -62,6 +72,7 @@ class Duty:
     locus: function of the junction temperature (case, member) [K], or None while unknown; gives the Locus.
     heat_ratio: dissipation of all devices of the stage over this device's, (1 or case, 1 or member). [1]
     facts: traced values of the duty for the sheet, the governing formula first.
+    facts_at: function of a chosen member (case,): its own working, ready to be redone by hand, the result first.
     unknown: what the load kind lacked; findings that need the locus are then unproven.
     after: name of the duty whose temperatures a one-shot duty starts from; None: the hottest steady duty.
     T_start: junction temperature just before a one-shot duty, where the user states it.
@@ -74,6 +85,7 @@ class Duty:
     locus: Callable[[FloatArray | None], Locus] | None
     heat_ratio: FloatArray
     facts: tuple[Traced, ...] = ()
+    facts_at: Callable[[IntArray], tuple[Traced, ...]] | None = None
     unknown: tuple[Missing, ...] = ()
     after: str | None = None
     T_start: Traced | None = None

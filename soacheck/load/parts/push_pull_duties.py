@@ -6,13 +6,13 @@ from collections.abc import Callable
 
 import numpy as np
 
-from soacheck.duty import Duty, Fitted, Members
+from soacheck.duty import Duty, Fitted, Members, picked
 from soacheck.load.parts import push_pull_facts as facts
 from soacheck.load.parts.levels import Driven, every_level, first_best, fractions, frequencies
 from soacheck.load.parts.push_pull_stage import PushPull, column, driven_by, law_of
 from soacheck.load.parts.swing import OVERDRIVE, clipped, held
 from soacheck.locus import Locus, Use
-from soacheck.trace import FloatArray, Traced, found, frozen, given
+from soacheck.trace import FloatArray, IntArray, Traced, found, frozen, given
 
 _ROUNDS, _POINTS = 5, 9
 
@@ -110,6 +110,13 @@ def _any_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ..
         heat_ratio=heat,
         facts=facts.sine_facts(full_sheet, full_V, levels.full.p_mean[:, 0], fitted),
     )
+
+    def at_member(member: IntArray) -> tuple[Traced, ...]:
+        here = _f_fact(load, picked(levels.f, member)[:, None], "level that governs")
+        sheet = facts.sheet_of(load, fitted, here)
+        swing = facts.looked_at(sheet, picked(levels.V, member))
+        return (*facts.sine_facts(sheet, swing, picked(levels.locus.p_mean, member), fitted), here)
+
     every = Duty(
         name="any-level",
         half=fitted.half,
@@ -118,6 +125,7 @@ def _any_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ..
         listed=False,
         members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels.V)),
         facts=worst.facts,
+        facts_at=at_member,
     )
     return worst, full, every
 
@@ -135,21 +143,24 @@ def _at_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ...
     P = locus.p_mean
     hottest = first_best(P)
     at = np.broadcast_to(f, P.shape)
-    sheet = facts.sheet_of(load, fitted, _f_fact(load, np.take_along_axis(at, hottest, 1), "greatest mean dissipation"))
-    swing, mean = facts.stated_swing(sheet), np.take_along_axis(P, hottest, 1)[:, 0]
-    made = (
-        facts.clipped_facts(sheet, swing, mean, OVERDRIVE)
-        if load.level == "clipped"
-        else facts.sine_facts(sheet, swing, mean, fitted)
-    )
     one = f.shape[1] == 1
+
+    def made(member: IntArray, what: str) -> tuple[Traced, ...]:
+        here = _f_fact(load, picked(at, member)[:, None], what)
+        sheet = facts.sheet_of(load, fitted, here)
+        swing, mean = facts.stated_swing(sheet), picked(P, member)
+        if load.level == "clipped":
+            return (*facts.clipped_facts(sheet, swing, mean, OVERDRIVE), here)
+        return (*facts.sine_facts(sheet, swing, mean, fitted), here)
+
     return (
         Duty(
             name="at-level",
             half=fitted.half,
             locus=_always(locus),
             heat_ratio=_heat(load, fitted, 2.0),
-            facts=made,
+            facts=made(hottest[:, 0], "greatest mean dissipation"),
+            facts_at=None if one else lambda member: made(member, "point that governs"),
             members=Members() if one else Members(name="f", unit="Hz", value=frozen(at)),
         ),
     )
@@ -188,6 +199,11 @@ def _held_levels(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, 
     P = line.locus.p_mean
     top = np.argmax(P * line.halves, axis=1)[:, None]
     halves = np.take_along_axis(np.broadcast_to(line.halves, P.shape), top, 1)
+
+    def at_member(member: IntArray) -> tuple[Traced, ...]:
+        swing = facts.looked_at(sheet, picked(levels, member))
+        return facts.held_facts(sheet, swing, picked(P, member), fitted)
+
     every = Duty(
         name="any-level",
         half=fitted.half,
@@ -196,6 +212,7 @@ def _held_levels(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, 
         listed=False,
         members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels)),
         facts=worst.facts,
+        facts_at=at_member,
     )
     return worst, full, every
 

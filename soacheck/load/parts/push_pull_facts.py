@@ -119,8 +119,16 @@ def stated_swing(sheet: Sheet) -> Traced:
     return sheet.of("V", formula, "V", load.level_value.named("level"))
 
 
+def looked_at(sheet: Sheet, V: FloatArray) -> Traced:
+    """Output peak (case,) of a level that was looked at, as a part of the largest swing."""
+    with np.errstate(divide="ignore", invalid="ignore"):
+        ratio = V / sheet.named["V_max"].value
+    level = found("level", ratio, "1", "level that governs, of those looked at from silence to the largest swing")
+    return sheet.of("V", "level*V_max", "V", level)
+
+
 def sine_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> tuple[Traced, ...]:
-    """Governing formula first: mean dissipation of ideal class B, then what the crossover makes of it."""
+    """Governing formula first: what the crossover makes of the mean dissipation, then that of ideal class B."""
     resistor = " - r_E*V**2/(4*Z_mod**2)" if sheet.has_r else ""
     P_B = sheet.of(
         "P_B",
@@ -132,7 +140,7 @@ def sine_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
     facts = [P_B]
     if not sheet.load.class_b:
         how = f"mean of v_CE i_C over one period of straight lines; {law_of(fitted.device.kind)}"
-        facts.append(found("P_AB", P_mean, "W", how, V, sheet.named["Z_mod"], sheet.load.I_Q.named("I_Q")))
+        facts.insert(0, found("P_AB", P_mean, "W", how, V, sheet.named["Z_mod"], sheet.load.I_Q.named("I_Q")))
     if sheet.resistive:
         peak = "share*V_rail**2/(4*(Z_mod + r_E))" if sheet.has_r else "share*V_rail**2/(4*Z_mod)"
         said = "greatest instantaneous dissipation, ideal class B, once the output passes half of the rail"
@@ -148,7 +156,8 @@ def held_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
     resistor = " - r_E*V/Z_mod" if sheet.has_r else ""
     facts = [sheet.of("P_B", f"share*(V_rail - V{resistor})*V/Z_mod", "W", V, source="output held at V, ideal class B")]
     if not sheet.load.class_b:
-        facts.append(
+        facts.insert(
+            0,
             found(
                 "P_AB",
                 P_mean,
@@ -157,7 +166,7 @@ def held_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
                 V,
                 sheet.named["Z_mod"],
                 sheet.load.I_Q.named("I_Q"),
-            )
+            ),
         )
     facts.append(sheet.of("I_load", "V/Z_mod", "A", V))
     return (*facts, *_always(sheet, V))

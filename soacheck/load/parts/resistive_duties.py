@@ -2,22 +2,25 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import replace
 
 import numpy as np
 
 from soacheck.device import laws
 from soacheck.device.ratings import Device
-from soacheck.duty import Drive, Duty, Fitted, Members
+from soacheck.duty import Drive, Duty, Fitted, Members, picked
 from soacheck.load.parts import load_line, on_state
 from soacheck.load.parts.quiescent import Bias, Circuit, Point, Quiescent, quiescent
 from soacheck.load.parts.resistive_stage import Resistive
 from soacheck.load.parts.switching import resistive_switching
 from soacheck.locus import Locus, Use
 from soacheck.table import Missing
-from soacheck.trace import FloatArray, Traced, derived, found, frozen, given
+from soacheck.trace import FloatArray, IntArray, Traced, derived, found, frozen, given
 
 COLD_BIAS = "bias worked out at 25 degC; its drift with temperature belongs to runaway"
+GOVERNS = "voltage of the point that governs, of those looked at along the line"
+OWN_POINT = "quiescent point that governs, of those over the stated spread of the characteristics"
 SLOW = "greatest v * i along the swing: no frequency is stated, so that each of its points may be held"
 
 
@@ -63,6 +66,7 @@ def _duty(
     locus: Locus,
     facts: tuple[Traced, ...],
     *,
+    facts_at: Callable[[IntArray], tuple[Traced, ...]] | None = None,
     members: Members | None = None,
     drive: Drive | None = None,
     reverse: bool = False,
@@ -75,6 +79,7 @@ def _duty(
         locus=lambda _: locus,
         heat_ratio=_heat_ratio(fitted),
         facts=facts,
+        facts_at=facts_at,
         drive=drive,
         termination="reverse" if reverse else "open",
         I_B_peak=I_B_peak,
@@ -100,12 +105,19 @@ def _idle(bias: Bias, circuit: Circuit, fitted: Fitted) -> Duty:
     for end, point in (("low", Q.low), ("high", Q.high)):
         if point is not None:
             facts.append(_idle_power(f"P_idle_{end}", point, circuit))
-    members = Members(name=circuit.family.quiescent, unit="A", value=frozen(Q.i)) if Q.i.shape[1] > 1 else None
+
+    def idle_at(member: IntArray) -> tuple[Traced, ...]:
+        point = _point_at(Q, member)
+        return _idle_power("P_idle", point, circuit), point.v, point.i
+
+    several = Q.i.shape[1] > 1
+    members = Members(name=circuit.family.quiescent, unit="A", value=frozen(Q.i)) if several else None
+    at_member = idle_at if several else None
     I_B = (Q.low or Q.middle).I_B
     if I_B is not None and circuit.share is not None:
         I_B = derived("I_B_each", "share * I_B", "A", circuit.share, I_B)
     locus = load_line.held_points(Q.v, Q.i * fitted.share.value[:, None])
-    return _duty("idle", fitted, locus, tuple(facts), members=members, I_B_peak=I_B)
+    return _duty("idle", fitted, locus, tuple(facts), facts_at=at_member, members=members, I_B_peak=I_B)
 
 
 def _idle_power(symbol: str, point: Point, circuit: Circuit) -> Traced:
@@ -130,8 +142,23 @@ def _held(circuit: Circuit, fitted: Fitted) -> Duty:
         how = f"where {family.across} is half of {supply.symbol}"
         facts.append(_power("P_max", formula, circuit, supply, upper, lower, how=how))
     facts.append(end)
+
+    def at_member(member: IntArray) -> tuple[Traced, ...]:
+        V = found(family.across, picked(v, member), "V", GOVERNS)
+        formula = f"({supply.symbol} - {V.symbol}) / ({upper.symbol} + {lower.symbol})"
+        return _held_point(V, formula, (supply, V, upper, lower), circuit)
+
     members = Members(name=family.across, unit="V", value=frozen(v))
-    return _duty("held-worst-point", fitted, load_line.held_points(v, i), tuple(facts), members=members)
+    locus = load_line.held_points(v, i)
+    return _duty("held-worst-point", fitted, locus, tuple(facts), facts_at=at_member, members=members)
+
+
+def _held_point(V: Traced, formula: str, inputs: tuple[Traced, ...], circuit: Circuit) -> tuple[Traced, ...]:
+    """A held point of the worst device: its power first; `formula` gives the whole current at V."""
+    if circuit.share is not None:
+        formula, inputs = f"share * {formula}", (circuit.share, *inputs)
+    current = derived("I", formula, "A", *inputs)
+    return derived("P", f"{V.symbol} * I", "W", V, current), V, current
 
 
 def _full_swing(load: Resistive, bias: Bias, circuit: Circuit, fitted: Fitted) -> Duty:
@@ -151,10 +178,31 @@ def _full_swing(load: Resistive, bias: Bias, circuit: Circuit, fitted: Fitted) -
         locus = load_line.slow_swing(Q.i, Q.v, line.value, amplitude, share=share, one_line=load.R_ac is None)
         members = Members(name=circuit.family.across, unit="V", value=frozen(locus.v[:, :, 0]))
         greatest = found("P_max", locus.p_mean.max(axis=1), "W", SLOW, *facts[1:])
-        return _duty("full-swing", fitted, locus, (greatest, *facts[1:]), members=members)
+
+        def held_at(member: IntArray) -> tuple[Traced, ...]:
+            V = found(circuit.family.across, picked(locus.v[:, :, 0], member), "V", GOVERNS)
+            if several:
+                how = "current of this point, on the swing about its own quiescent point"
+                current = found("I", picked(locus.i[:, :, 0], member), "A", how)
+                return derived("P", f"{V.symbol} * I", "W", V, current), V, current
+            v_Q, i_Q = Q.middle.v, Q.middle.i
+            formula = f"max({i_Q.symbol} + ({v_Q.symbol} - {V.symbol}) / {line.symbol}, 0)"
+            return _held_point(V, formula, (i_Q, v_Q, V, line), circuit)
+
+        return _duty("full-swing", fitted, locus, (greatest, *facts[1:]), facts_at=held_at, members=members)
     locus = load_line.sine_swing(Q.i, Q.v, line.value, amplitude, f=load.f.value, share=share)
     members = Members(name=circuit.family.quiescent, unit="A", value=frozen(Q.i)) if several else Members()
-    return _duty("full-swing", fitted, locus, (*facts, load.f), members=members)
+
+    def swung_at(member: IntArray) -> tuple[Traced, ...]:
+        return _swing_facts(_point_at(Q, member), line, on, circuit)
+
+    return _duty("full-swing", fitted, locus, (*facts, load.f), facts_at=swung_at if several else None, members=members)
+
+
+def _point_at(Q: Quiescent, member: IntArray) -> Point:
+    """One of the quiescent points over the stated spread."""
+    i = found(Q.middle.i.symbol, picked(Q.i, member), "A", OWN_POINT)
+    return Point(i=i, v=found(Q.middle.v.symbol, picked(Q.v, member), "V", OWN_POINT), I_B=Q.middle.I_B)
 
 
 def _swing_facts(point: Point, line: Traced, on: on_state.OnState, circuit: Circuit) -> tuple[Traced, ...]:
