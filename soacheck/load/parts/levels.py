@@ -19,6 +19,7 @@ from soacheck.trace import FloatArray, IntArray
 _SCAN = 241  # frequencies of the first look at the load, evenly over log f
 _SPREAD = 9  # frequencies kept from end to end of the range, besides the worst of each sort
 _POINTS, _ROUNDS = 9, 5  # of the refinement: each round narrows by four
+_SEARCHED = 2  # rounds over the level alone, a parabola then ends them; as many again where the frequency moves too
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -26,10 +27,12 @@ class Driven:
     """An output stage on its load: what a level and a frequency are turned into loci with.
 
     Z_at: frequencies (case, n) -> impedance that one amplifier sees (case, n).
+    cases: of all values together; each array below has that many or one.
     """
 
     output: Output
     Z_at: Callable[[FloatArray], ComplexArray]
+    cases: int = 1
 
     @property
     def r(self) -> FloatArray:
@@ -60,6 +63,7 @@ def frequencies(driven: Driven, low: FloatArray, high: FloatArray, knots: FloatA
     level and at the largest swing, the greatest peak power and current, and the largest load angle. `knots`
     (n,) are the rows of a measured table.
     """
+    low, high = (np.broadcast_to(end, (driven.cases, 1)) for end in (low, high))
     span = np.log(high / low)
     scan = low * np.exp(span * np.linspace(0, 1, _SCAN))
     scan[:, -1:] = high  # the end itself, not its rounding
@@ -129,15 +133,7 @@ def every_level(driven: Driven, f: FloatArray, *, class_b_only: bool, resistance
     class_b_only: no idle current, so that the worst level has a closed form. Else it is searched: the best of
     the grid, then by turns a finer grid over the level and over the frequency around it.
     """
-    levels = fractions(f.shape[1] <= 2)
-    cases = np.broadcast_shapes(
-        f.shape[:1],
-        driven.Z_at(f).shape[:1],
-        driven.output.V_rail.shape[:1],
-        driven.output.R_E.shape[:1],
-        driven.output.V_sat.shape[:1],
-        driven.output.share.shape[:1],
-    )[0]
+    levels, cases = fractions(f.shape[1] <= 2), driven.cases
     f = np.broadcast_to(f, (cases, f.shape[1]))
     grid_f = np.repeat(f, levels.size, axis=1)
     grid_level = np.broadcast_to(np.tile(levels, f.shape[1]), grid_f.shape)
@@ -151,7 +147,8 @@ def every_level(driven: Driven, f: FloatArray, *, class_b_only: bool, resistance
         best_level = class_b.worst_swing(driven.output.V_rail, V_max, driven.r, np.abs(Z), np.angle(Z)) / V_max
         best_level = np.minimum(best_level, 1.0)
     else:
-        best_level, best_f = _search(driven, levels, f, best, best_f, fixed_f=resistance)
+        fixed = resistance or f.shape[1] == 1
+        best_level, best_f = _search(driven, levels, f, best, best_f, fixed_f=fixed)
     worst_V, worst = driven.at(best_level, best_f)
     last = P[:, levels.size - 1 :: levels.size]
     full_f = np.take_along_axis(f, first_best(last), 1)
@@ -194,26 +191,35 @@ def _search(
     def over_f(x: FloatArray) -> FloatArray:
         return driven.at(level, x)[1].p_mean
 
-    for _ in range(_ROUNDS):
-        level, level_at = _narrowed(over_level, level, level_at)
+    for n in range(_SEARCHED if fixed_f else 2 * _SEARCHED):
+        last = n + 1 == (_SEARCHED if fixed_f else 2 * _SEARCHED)
         if not fixed_f:
             best_f, f_at = _narrowed(over_f, best_f, f_at)
+        level, level_at = _narrowed(over_level, level, level_at, vertex=last)
     return level, best_f
 
 
 def _narrowed(
-    score: Callable[[FloatArray], FloatArray], centre: FloatArray, ends: list[FloatArray]
+    score: Callable[[FloatArray], FloatArray], centre: FloatArray, ends: list[FloatArray], *, vertex: bool = False
 ) -> tuple[FloatArray, list[FloatArray]]:
-    """The best of a few arguments between the ends, and its neighbours; the centre if nothing is better."""
+    """The best of a few arguments between the ends, and its neighbours; the centre if nothing is better.
+
+    vertex: the top of the parabola through those three, where it is one.
+    """
     half = np.linspace(0, 1, _POINTS // 2 + 1)
     tried = np.concatenate([ends[0] + (centre - ends[0]) * half, centre + (ends[1] - centre) * half[1:]], axis=1)
     values = np.broadcast_to(score(tried), tried.shape).copy()
     values[:, _POINTS // 2] *= 1 + 1e-12  # rounding alone must not move it
     best = np.argmax(values, axis=1)[:, None]
-    return np.take_along_axis(tried, best, 1), [
-        np.take_along_axis(tried, np.maximum(best - 1, 0), 1),
-        np.take_along_axis(tried, np.minimum(best + 1, _POINTS - 1), 1),
-    ]
+    around = [np.clip(best + step, 0, _POINTS - 1) for step in (-1, 0, 1)]
+    x = [np.take_along_axis(tried, index, 1) for index in around]
+    if not vertex:
+        return x[1], [x[0], x[2]]
+    y = [np.take_along_axis(values, index, 1) for index in around]
+    left, right = (x[1] - x[0]) * (y[1] - y[2]), (x[2] - x[1]) * (y[1] - y[0])
+    with np.errstate(divide="ignore", invalid="ignore"):
+        top = x[1] + ((x[2] - x[1]) * right - (x[1] - x[0]) * left) / (2 * (left + right))
+    return np.where((top > x[0]) & (top < x[2]), top, x[1]), [x[0], x[2]]
 
 
 def _joined(many: FloatArray, one: FloatArray, cases: int) -> FloatArray:

@@ -110,4 +110,8 @@ def output_of(load: PushPull, device: Device, share: Traced) -> Output:
 
 def driven_by(load: PushPull, fitted: Fitted) -> Driven:
     """The output stage on its load."""
-    return Driven(output=output_of(load, fitted.device, fitted.share), Z_at=load.Z_at)
+    output = output_of(load, fitted.device, fitted.share)
+    values = (load.V_rail, load.V_sat, load.R_E, load.I_Q, fitted.share, *(load.f or ()))
+    values += () if load.level_value is None else (load.level_value,)
+    cases = max(load.Z_at(np.ones((1, 1))).shape[0], *(value.value.size for value in values))
+    return Driven(output=output, Z_at=load.Z_at, cases=cases)
