@@ -4,21 +4,16 @@ from __future__ import annotations
 
 import math
 import re
-from collections.abc import Iterable
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 
 from soacheck import drawn
 from soacheck.balance.chain import chain
-from soacheck.balance.operating import Operating, before_of, needs_sink_bound, settle
-from soacheck.balance.place import Place, place_of
 from soacheck.device.ratings import Device
-from soacheck.duty import Duty, Fitted
+from soacheck.evaluate import Sitting, evaluate
 from soacheck.guard import GUARDS, Raised, Seen
-from soacheck.limit import LIMITS
 from soacheck.limit.judged import Judged
-from soacheck.locus import Locus, Use
 from soacheck.quantity import write
 from soacheck.result import (
     Caution,
@@ -31,7 +26,7 @@ from soacheck.result import (
     Status,
 )
 from soacheck.stage import Stage, keys_of
-from soacheck.table import CasePlan, Missing
+from soacheck.table import CasePlan
 from soacheck.trace import Traced, derived
 
 BLOCK = 9  # cases worked out together; fixed, so that the answer does not depend on anything else
@@ -42,21 +37,6 @@ NOT_DECIDED = (
     "avalanche",
     "touch-temperature",
 )
-DELIVERED = 1e-9  # of the peak power: more than rounding
-SIGN = Missing(key="load.points", where="the measurement or the drawing: the signs of v and i")
-SINK_CAPACITY = Missing(
-    key="heat_path.heatsink.C_th", where="mass of the sink times its specific heat; a long shot warms it"
-)
-
-
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class Sitting:
-    """One half of a stage worked out for some cases."""
-
-    fitted: Fitted
-    place: Place
-    judged: tuple[Judged, ...]
-    findings: tuple[Finding, ...]
 
 
 def check(stage: Stage, *, pictures: bool = True) -> Result:
@@ -85,7 +65,7 @@ def check(stage: Stage, *, pictures: bool = True) -> Result:
                 cases.append(case)
             elif _badness(one) > _badness(worst[k]):
                 worst[k], cases[k] = one, start + case
-    first = max(range(len(worst)), key=lambda k: (*_badness(worst[k]), -k)) if worst else None
+    first = max(range(len(worst)), key=lambda k: (*_rank(worst[k]), -k)) if worst else None
     governing = cases[first] if first is not None else 0
     if plan.count > 1:
         sittings = evaluate(stage.over(plan.block(governing, governing + 1)))
@@ -93,131 +73,35 @@ def check(stage: Stage, *, pictures: bool = True) -> Result:
     return _with_pictures(result, sittings) if pictures else result
 
 
-def evaluate(stage: Stage) -> tuple[Sitting, ...]:
-    """Every half, duty and limit of a stage, for all cases of its plan at once."""
-    return tuple(
-        _sit(stage, half.fitted, place_of(half.fitted.device, half.ladder, stage.heat_path, stage.devices))
-        for half in stage.halves
-    )
-
-
-def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
-    cases = stage.plan.count
-    duties = stage.kind.duties(stage.load, fitted)
-    settled = _settle_all(duties, place, cases)
-    judged, findings = [], []
-    for duty in duties:
-        operating, lower = settled[id(duty)]
-        asked = Judged(
-            device=fitted.device,
-            fitted=fitted,
-            duty=duty,
-            operating=operating,
-            rules=stage.rules,
-            cases=cases,
-        )
-        judged.append(asked)
-        of_duty = [f for limit in LIMITS for f in limit(asked)]
-        if lower is not None:
-            again = [f for limit in LIMITS for f in limit(replace(asked, operating=lower))]
-            of_duty = [_either(upper, low) for upper, low in zip(of_duty, again, strict=True)]
-        findings += _signed(of_duty, operating.locus, cases)
-    return Sitting(fitted=fitted, place=place, judged=tuple(judged), findings=tuple(findings))
-
-
-def _settle_all(duties: Iterable[Duty], place: Place, cases: int) -> dict[int, tuple[Operating, Operating | None]]:
-    """Steady duties first, then the shots that start from them.
-
-    A shot that outlasts a sink of unknown heat capacity gets its upper and its lower bound.
-    """
-    settled: dict[int, tuple[Operating, Operating | None]] = {}
-    shots = []
-    for duty in duties:
-        if duty.locus is not None and duty.locus(None).use is Use.ONCE:
-            shots.append(duty)
-        else:
-            settled[id(duty)] = settle(duty, place, cases), None
-    steady = [operating for operating, _ in settled.values()]
-    for duty in shots:
-        wanted = [op for op in steady if duty.after is None or op.duty.name == duty.after]
-        before = before_of(wanted)
-        held = settle(duty, place, cases, before=before)
-        if needs_sink_bound(duty, place):
-            settled[id(duty)] = settle(duty, place, cases, before=before, sink_follows=True), held
-        else:
-            settled[id(duty)] = held, None
-    return settled
-
-
-def _signed(findings: list[Finding], locus: Locus | None, cases: int) -> list[Finding]:
-    """Findings of a locus along which the device would deliver power: none of them is better than unproven.
-
-    A transistor turns power into heat. v and i of opposite signs are a reversed probe, a channel skew, or a P-type part
-    whose values were not written as magnitudes.
-    """
-    if locus is None:
-        return findings
-    p = np.broadcast_to(locus.p, locus.shape)
-    wrong = np.any(p < -DELIVERED * np.abs(p).max(axis=2, keepdims=True), axis=(1, 2))
-    if not bool(np.any(wrong)):
-        return findings
-    reason = Reason(
-        text="Voltage and current have opposite signs: the device would deliver power. Check the sign of both; values "
-        "of P-type devices are magnitudes.",
-        applies=np.broadcast_to(wrong, (cases,)),
-        missing=(SIGN,),
-    )
-    return [
-        replace(
-            f,
-            status=np.where(wrong, np.maximum(f.status, int(Status.UNPROVEN)), f.status),
-            reasons=(*f.reasons, reason),
-        )
-        for f in findings
-    ]
-
-
-def _either(upper: Finding, lower: Finding) -> Finding:
-    """A finding between two bounds: the upper one decides `within`, `exceeds` needs the lower one too."""
-    open_ = (upper.status == Status.EXCEEDS) & (lower.status != Status.EXCEEDS)
-    if not bool(np.any(open_)):
-        return upper
-    reason = Reason(
-        text="The shot warms a sink whose heat capacity is not stated: held at its start it would do, "
-        "following at once it would not.",
-        applies=open_,
-        missing=(SINK_CAPACITY,),
-    )
-    return replace(upper, status=np.where(open_, int(Status.UNPROVEN), upper.status), reasons=(*upper.reasons, reason))
-
-
 def _name(finding: Finding) -> tuple[str, str, str | None]:
     return finding.limit, finding.duty, finding.half
 
 
-def _badness(finding: Finding) -> tuple[int, float]:
-    """Order of findings: by status, then utilisation; an excess without a number comes first."""
+def _badness(finding: Finding) -> tuple[int, float, float]:
+    """Order of findings: by status, then utilisation, an excess without a number first; then by what is applied."""
     status, u = int(finding.status[0]), float(finding.utilisation[0])
+    applied = -math.inf if finding.applied is None else float(np.nan_to_num(finding.applied.at(0), nan=-math.inf))
     if math.isnan(u):
-        return status, math.inf if status == Status.EXCEEDS else -math.inf
-    return status, u
+        u = math.inf if status == Status.EXCEEDS else -math.inf
+    return status, u, applied
 
 
 def _rank(finding: Finding) -> tuple[int, float]:
-    """The same, with what differs by rounding alone taken as equal."""
-    status, u = _badness(finding)
+    """The same without what is applied, and with what differs by rounding alone taken as equal."""
+    status, u, _ = _badness(finding)
     return status, float(f"{u:.9g}")
 
 
 def worst_case(finding: Finding, cases: int) -> int:
-    """The case that decides a finding."""
-    u = np.broadcast_to(finding.utilisation, (cases,))
-    status = np.broadcast_to(finding.status, (cases,))
+    """The case that decides a finding; the first of equal ones."""
+    u, status = np.broadcast_to(finding.utilisation, (cases,)), np.broadcast_to(finding.status, (cases,))
+    applied = np.full(cases, -np.inf) if finding.applied is None else np.broadcast_to(finding.applied.value, (cases,))
     empty = np.where(status == int(Status.EXCEEDS), np.inf, -np.inf)
-    order = np.lexsort((np.where(np.isnan(u), empty, u), status))
-    top = order[-1]
-    same = (status == status[top]) & ((u == u[top]) | (np.isnan(u) & np.isnan(u[top])))
-    return int(np.argmax(same))
+    keys = (status, np.where(np.isnan(u), empty, u), np.where(np.isnan(applied), -np.inf, applied))
+    best = np.ones(cases, dtype=np.bool_)
+    for key in keys:
+        best &= key == np.max(np.where(best, key, -np.inf))
+    return int(np.argmax(best))
 
 
 def _decide(

@@ -142,9 +142,25 @@ def test_ten_spreads_are_worked_out_and_eleven_are_refused(tmp_path: Path) -> No
         check(read_stage(tmp_path / "stage.toml"))
 
 
+def test_a_typical_interface_leaves_temperatures_at_best_marginal(tmp_path: Path) -> None:
+    result = result_of(tmp_path, put(HELD, interface='{ value = "0.4 K/W", grade = "typical" }'))
+    assert result.verdict is Status.MARGINAL
+    for f in result.findings:
+        hot = f.limit in ("safe-area", "dissipation", "junction-temperature")
+        assert f.status[0] == (Status.MARGINAL if hot else Status.WITHIN), f.limit
+
+
+def test_a_corner_without_a_number_still_shows_the_corner_that_is_worst(tmp_path: Path) -> None:
+    stage = put(HELD, V_CC='{ value = "100 V", min = "90 V", max = "110 V" }', heatsink='"40 K/W"')
+    result = result_of(tmp_path, stage)
+    assert result.duties[-1].V_peak is not None
+    assert result.duties[-1].V_peak.at(0) == 110.0
+
+
 REVERSED = {
     "all the time": '[["0 s", "40 V", "-1 A"], ["1 s", "40 V", "-1 A"]]',
-    "half of the time": '[["0 s", "40 V", "1 A"], ["1 s", "40 V", "1 A"], ["1 s", "40 V", "-1 A"], ["2 s", "40 V", "-1 A"]]',
+    "half of the time": '[["0 s", "40 V", "1 A"], ["1 s", "40 V", "1 A"], ["1 s", "40 V", "-1 A"], '
+    '["2 s", "40 V", "-1 A"]]',
     "the other way": '[["0 s", "-40 V", "1 A"], ["1 s", "-40 V", "1 A"]]',
 }
 

@@ -10,7 +10,7 @@ from scipy.integrate import solve_ivp
 
 from soacheck.balance.chain import chain
 from soacheck.balance.operating import Operating
-from soacheck.check import evaluate
+from soacheck.evaluate import evaluate
 from tests.whole import DEVICE, HELD, PROFILE, put, stage_of
 
 CAUER = put(DEVICE, Z_th_jc='{ cauer = [["0.1 K/W", "2 mJ/K"], ["0.3 K/W", "40 mJ/K"], ["0.433 K/W", "300 mJ/K"]] }')

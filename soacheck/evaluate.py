@@ -1,0 +1,150 @@
+"""Every half, duty and limit of a stage worked out, for all cases of its plan at once; nothing is decided here."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from soacheck.balance.operating import Operating, before_of, needs_sink_bound, settle
+from soacheck.balance.place import Place, place_of
+from soacheck.duty import Duty, Fitted
+from soacheck.guard.heat import TEMPERATURE_LIMITS
+from soacheck.heat.path import HeatPath
+from soacheck.limit import LIMITS
+from soacheck.limit.judged import Judged
+from soacheck.locus import Locus, Use
+from soacheck.result import Finding, Reason, Status
+from soacheck.stage import Stage
+from soacheck.table import Missing
+
+DELIVERED = 1e-9  # of the peak power: more than rounding
+SIGN = Missing(key="load.points", where="the measurement or the drawing: the signs of v and i")
+SINK_CAPACITY = Missing(
+    key="heat_path.heatsink.C_th", where="mass of the sink times its specific heat; a long shot warms it"
+)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Sitting:
+    """One half of a stage worked out for some cases."""
+
+    fitted: Fitted
+    place: Place
+    judged: tuple[Judged, ...]
+    findings: tuple[Finding, ...]
+
+
+def evaluate(stage: Stage) -> tuple[Sitting, ...]:
+    """Every half, duty and limit of a stage, for all cases of its plan at once."""
+    return tuple(
+        _sit(stage, half.fitted, place_of(half.fitted.device, half.ladder, stage.heat_path, stage.devices))
+        for half in stage.halves
+    )
+
+
+def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
+    cases = stage.plan.count
+    duties = stage.kind.duties(stage.load, fitted)
+    settled = _settle_all(duties, place, cases)
+    judged, findings = [], []
+    for duty in duties:
+        operating, lower = settled[id(duty)]
+        asked = Judged(
+            device=fitted.device,
+            fitted=fitted,
+            duty=duty,
+            operating=operating,
+            rules=stage.rules,
+            cases=cases,
+        )
+        judged.append(asked)
+        of_duty = [f for limit in LIMITS for f in limit(asked)]
+        if lower is not None:
+            again = [f for limit in LIMITS for f in limit(replace(asked, operating=lower))]
+            of_duty = [_either(upper, low) for upper, low in zip(of_duty, again, strict=True)]
+        findings += _signed(_typical(of_duty, stage.heat_path), operating.locus, cases)
+    return Sitting(fitted=fitted, place=place, judged=tuple(judged), findings=tuple(findings))
+
+
+def _settle_all(duties: Iterable[Duty], place: Place, cases: int) -> dict[int, tuple[Operating, Operating | None]]:
+    """Steady duties first, then the shots that start from them.
+
+    A shot that outlasts a sink of unknown heat capacity gets its upper and its lower bound.
+    """
+    settled: dict[int, tuple[Operating, Operating | None]] = {}
+    shots = []
+    for duty in duties:
+        if duty.locus is not None and duty.locus(None).use is Use.ONCE:
+            shots.append(duty)
+        else:
+            settled[id(duty)] = settle(duty, place, cases), None
+    steady = [operating for operating, _ in settled.values()]
+    for duty in shots:
+        wanted = [op for op in steady if duty.after is None or op.duty.name == duty.after]
+        before = before_of(wanted)
+        held = settle(duty, place, cases, before=before)
+        if needs_sink_bound(duty, place):
+            settled[id(duty)] = settle(duty, place, cases, before=before, sink_follows=True), held
+        else:
+            settled[id(duty)] = held, None
+    return settled
+
+
+def _typical(findings: list[Finding], path: HeatPath) -> list[Finding]:
+    """Findings that rest on typical-grade values of the heat path: at best marginal."""
+    values = (path.interface, path.R_th_sink, path.C_th_sink, path.R_th_enclosure)
+    names = [value.source for value in values if value is not None and value.rests_on_typical]
+    if not names:
+        return findings
+    text = f"Rests on typical data ({', '.join(names)}): at best marginal."
+    reason = Reason(text=text, applies=np.asarray([True]))
+    return [
+        replace(f, status=np.maximum(f.status, int(Status.MARGINAL)), reasons=(*f.reasons, reason))
+        if f.limit in TEMPERATURE_LIMITS
+        else f
+        for f in findings
+    ]
+
+
+def _signed(findings: list[Finding], locus: Locus | None, cases: int) -> list[Finding]:
+    """Findings of a locus along which the device would deliver power: none of them is better than unproven.
+
+    A transistor turns power into heat. v and i of opposite signs are a reversed probe, a channel skew, or a P-type part
+    whose values were not written as magnitudes.
+    """
+    if locus is None:
+        return findings
+    p = np.broadcast_to(locus.p, locus.shape)
+    wrong = np.any(p < -DELIVERED * np.abs(p).max(axis=2, keepdims=True), axis=(1, 2))
+    if not bool(np.any(wrong)):
+        return findings
+    reason = Reason(
+        text="Voltage and current have opposite signs: the device would deliver power. Check the sign of both; values "
+        "of P-type devices are magnitudes.",
+        applies=np.broadcast_to(wrong, (cases,)),
+        missing=(SIGN,),
+    )
+    return [
+        replace(
+            f,
+            status=np.where(wrong, np.maximum(f.status, int(Status.UNPROVEN)), f.status),
+            reasons=(*f.reasons, reason),
+        )
+        for f in findings
+    ]
+
+
+def _either(upper: Finding, lower: Finding) -> Finding:
+    """A finding between two bounds: the upper one decides `within`, `exceeds` needs the lower one too."""
+    open_ = (upper.status == Status.EXCEEDS) & (lower.status != Status.EXCEEDS)
+    if not bool(np.any(open_)):
+        return upper
+    reason = Reason(
+        text="The shot warms a sink whose heat capacity is not stated: held at its start it would do, "
+        "following at once it would not.",
+        applies=open_,
+        missing=(SINK_CAPACITY,),
+    )
+    return replace(upper, status=np.where(open_, int(Status.UNPROVEN), upper.status), reasons=(*upper.reasons, reason))
