@@ -140,7 +140,7 @@ def sine_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
     facts = [P_B]
     if not sheet.load.class_b:
         how = f"mean of v_CE i_C over one period of straight lines; {law_of(fitted.device.kind)}"
-        facts.insert(0, found("P_AB", P_mean, "W", how, V, sheet.named["Z_mod"], sheet.load.I_Q.named("I_Q")))
+        facts.insert(0, found("P_AB", P_mean, "W", how, V, *_crossing(sheet)))
     if sheet.resistive:
         peak = "share*V_rail**2/(4*(Z_mod + r_E))" if sheet.has_r else "share*V_rail**2/(4*Z_mod)"
         said = "greatest instantaneous dissipation, ideal class B, once the output passes half of the rail"
@@ -149,6 +149,12 @@ def sine_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
         said = "greatest instantaneous dissipation, ideal class B driven to the rail: a bound at lower levels"
     facts += [sheet.of("P_peak_B", peak, "W", source=said), sheet.of("I_load_peak", "V/Z_mod", "A", V)]
     return (*facts, *_always(sheet, V))
+
+
+def _crossing(sheet: Sheet) -> tuple[Traced, ...]:
+    """What the crossover is worked out from, besides the output."""
+    names = [name for name in ("V_rail", "share", "Z_mod", "phi", "r_E") if name in sheet.named]
+    return (*(sheet.named[name] for name in names), sheet.load.I_Q.named("I_Q"))
 
 
 def held_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> tuple[Traced, ...]:
@@ -164,8 +170,7 @@ def held_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
                 "W",
                 law_of(fitted.device.kind),
                 V,
-                sheet.named["Z_mod"],
-                sheet.load.I_Q.named("I_Q"),
+                *_crossing(sheet),
             ),
         )
     facts.append(sheet.of("I_load", "V/Z_mod", "A", V))
