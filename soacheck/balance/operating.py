@@ -22,6 +22,7 @@ from soacheck.locus import Locus, Use
 from soacheck.table import Missing
 from soacheck.trace import FloatArray, Traced
 
+ELEMENTS = 250_000  # of the largest array of one piece of work: what stays in the processor's cache
 SAMPLES = 256  # a locus with fewer times is cut finer before its temperatures are looked for
 HELD_SINK_LONGEST = 1.0  # [s] a one-shot up to this long leaves a sink of unknown heat capacity as it was
 
@@ -206,10 +207,17 @@ def _steady(duty: Duty, place: Place, locus: Locus, cases: int) -> Operating:
         T_j_peak = np.where(still, T_j_mean, np.nan)
     else:
         modes, base = _modes(place, ratio, T_air, T_sink, T_case)
-        response = periodic(modes, locus.t, locus.p, locus.p_mid)
-        T_j, T_case_t, T_sink_t = _nodes(modes, response, base, place)
+        shape = (cases, members, times)
+        T_j, T_case_t, T_sink_t = np.empty(shape), np.empty(shape), np.empty(shape)
+        state = np.empty((cases, members, modes.tau.shape[1]))
+        width = max(1, ELEMENTS // (cases * times * modes.tau.shape[1]))
+        for start in range(0, members, width):
+            part = slice(start, start + width)
+            t, p, p_mid = (_members(a, part) for a in (locus.t, locus.p, locus.p_mid))
+            response = periodic(modes, t, p, p_mid)
+            T_j[:, part], T_case_t[:, part], T_sink_t[:, part] = _nodes(modes, response, _members(base, part), place)
+            state[:, part] = _at_peak(response.state, T_j[:, part])
         T_case_peak, T_j_peak = T_case_t.max(axis=2), _peak(T_j, locus.t)
-        state = _at_peak(response.state, T_j)
     bound = np.where(np.isfinite(T_j_peak), T_j_peak, T_case + R_jc * P_peak)
     return Operating(
         duty=duty,
@@ -377,6 +385,11 @@ def _peak(T: FloatArray, t: FloatArray) -> FloatArray:
         value = a + s1 * (s - ta) + curve * (s - ta) * (s - tb)
     good = (curve < 0) & (s > ta) & (s < tc) & (value > top) & (value - top < np.maximum(b - a, b - c))
     return np.where(good, value, top)
+
+
+def _members(a: FloatArray, part: slice) -> FloatArray:
+    """Some members of an array whose member axis may have the length 1."""
+    return a if a.shape[1] == 1 else a[:, part]
 
 
 def _at_peak(state: FloatArray, T_j: FloatArray) -> FloatArray:

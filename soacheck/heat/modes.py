@@ -20,7 +20,7 @@ from math import factorial, isqrt
 
 import numpy as np
 
-from soacheck.trace import FloatArray, frozen
+from soacheck.trace import FloatArray, IntArray, frozen
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -84,19 +84,43 @@ def _respond(modes: Modes, t: FloatArray, p: FloatArray, p_mid: FloatArray, star
     cases, members, times = _shape(modes, t, p, p_mid, start)
     t, p, p_mid = (_time_first(a) for a in (t, p, p_mid))
     tau = modes.tau[None, :, :, None]
-    x = np.diff(t, axis=0) / tau
-    before, middle, after = segment_weights(x)
+    steps, which = _alike(np.diff(t, axis=0))
+    x = steps / tau
+    before, middle, after = (np.empty(x.shape) for _ in range(3))
+    for mode in range(x.shape[2]):  # a slow mode needs few terms of the series
+        before[:, :, mode], middle[:, :, mode], after[:, :, mode] = segment_weights(x[:, :, mode])
+    decay = np.exp(-x)
+    if which is not None:
+        before, middle, after, decay = (a[..., which] for a in (before, middle, after, decay))
     feed = np.empty((times - 1, cases, tau.shape[2], members))
     np.multiply(before, p[:-1], out=feed)
     feed += middle * p_mid
     feed += after * p[1:]
     whole = -np.expm1(-(t[-1] - t[0]) / tau[0])
     begin = None if start is None else np.swapaxes(start, 1, 2)
-    state = _recursion(np.exp(-x), feed, whole, begin)
+    state = _recursion(decay, feed, whole, begin)
     rise = np.matmul(modes.gain, state)
     if modes.direct.any():
         rise += modes.direct[:, :, None] * p
     return Response(rise=rise.transpose(1, 3, 2, 0), state=state.transpose(1, 3, 2, 0))
+
+
+def _alike(steps: FloatArray) -> tuple[FloatArray, IntArray | None]:
+    """Time steps (time, 1, 1, member) with members that share them counted once, and which one each member has.
+
+    Levels of one frequency have the same times; the weights of a segment are the dearest part of a response.
+    """
+    members = steps.shape[3]
+    if steps.shape[1] > 1 or members == 1:
+        return steps, None
+    columns = steps[:, 0, 0]
+    length = columns.sum(axis=0)
+    order = np.argsort(length, kind="stable")
+    first = order[np.concatenate([[True], np.diff(length[order]) != 0])]
+    which = np.searchsorted(length[first], length)
+    if len(first) == members or not np.array_equal(columns[:, first][:, which], columns):
+        return steps, None
+    return steps[..., first], which
 
 
 def _shape(
@@ -117,6 +141,12 @@ def _time_first(a: FloatArray) -> FloatArray:
 
 SERIES_BELOW = 1.0  # the recursion for phi loses digits below, the series needs few terms there
 _SERIES = tuple((-1.0) ** j / factorial(j + 3) for j in range(17))  # phi_3(-x), first neglected term 3e-19 at x = 1
+
+
+def _terms(x: float) -> int:
+    """Terms of the series that are needed up to x, for a neglected one of 3e-19 of the sum."""
+    neglected = (6 * x**j * abs(term) for j, term in enumerate(_SERIES))
+    return next((j for j, size in enumerate(neglected) if size < 3e-19 and j > 0), len(_SERIES))
 
 
 def segment_weights(x: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
@@ -141,8 +171,9 @@ def segment_weights(x: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
     functions; the weights by integration.
     """
     small = np.minimum(x, SERIES_BELOW)
-    phi_3 = np.full_like(small, _SERIES[-1])
-    for term in _SERIES[-2::-1]:
+    terms = _terms(float(small.max(initial=0.0)))
+    phi_3 = np.full_like(small, _SERIES[terms - 1])
+    for term in _SERIES[: terms - 1][::-1]:
         phi_3 *= small
         phi_3 += term
     phi_2 = 0.5 - small * phi_3
