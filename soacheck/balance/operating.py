@@ -211,9 +211,10 @@ def _steady(duty: Duty, place: Place, locus: Locus, cases: int) -> Operating:
         T_j, T_case_t, T_sink_t = np.empty(shape), np.empty(shape), np.empty(shape)
         state = np.empty((cases, members, modes.tau.shape[1]))
         width = max(1, ELEMENTS // (cases * times * modes.tau.shape[1]))
+        drive = (locus.t, locus.p, locus.p_mid)
         for start in range(0, members, width):
             part = slice(start, start + width)
-            t, p, p_mid = (_members(a, part) for a in (locus.t, locus.p, locus.p_mid))
+            t, p, p_mid = (_members(a, part) for a in drive)
             response = periodic(modes, t, p, p_mid)
             T_j[:, part], T_case_t[:, part], T_sink_t[:, part] = _nodes(modes, response, _members(base, part), place)
             state[:, part] = _at_peak(response.state, T_j[:, part])

@@ -14,7 +14,7 @@ import numpy as np
 from soacheck.locus import Use
 from soacheck.trace import BoolArray, FloatArray, IntArray
 
-STEPS = 48  # of a bisection: closer than float64 can tell for any ratio below 1e4
+STEPS = 36  # of a bisection: to 2e-10 for a ratio of 1e6 between its ends
 HAIR = 1e-9  # relative, when a duration is compared with a printed pulse width
 
 
