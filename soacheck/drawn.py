@@ -5,7 +5,7 @@ Pictures compute nothing; every number they show is made here or in a finding.
 
 from __future__ import annotations
 
-from dataclasses import replace
+from itertools import pairwise
 
 import numpy as np
 
@@ -15,7 +15,9 @@ from soacheck.limit import dissipation, safe_area
 from soacheck.limit.judged import Judged
 from soacheck.locus import Use
 from soacheck.result import Characteristics, Finding, SafeAreaPicture, Series, Sweep
-from soacheck.trace import FloatArray
+from soacheck.trace import FloatArray, distinct
+
+_SAME_END = 1.02
 
 
 def series(judged: Judged) -> Series | None:
@@ -55,50 +57,67 @@ def series(judged: Judged) -> Series | None:
 
 
 def sweeps(judged: tuple[Judged, ...]) -> tuple[Sweep, ...]:
-    """Duties that only carry findings, drawn over what their members are."""
+    """Duties that only carry findings, drawn over what their members are; of several runs over it, the worst."""
     drawn = []
     for one in judged:
         operating, members = one.operating, one.duty.members
         if one.duty.listed or operating.locus is None or not members.name:
             continue
-        x = np.broadcast_to(members.value, operating.P_mean.shape)[0]
-        order = np.argsort(x, kind="stable")
+        along = np.broadcast_to(members.value, operating.P_mean.shape)[0]
+        x = distinct(along)
         drawn.append(
             Sweep(
                 duty=one.duty.name,
                 half=one.duty.half,
                 name=members.name,
                 unit=members.unit,
-                x=x[order],
-                P_mean=operating.P_mean[0, order],
-                P_allowed=dissipation.allowed_power(one)[0, order],
-                T_j_peak=operating.T_j_peak[0, order],
-                T_case=operating.T_case[0, order],
-                T_heatsink=operating.T_heatsink[0, order],
-                T_air=operating.T_air[0, order],
+                x=x,
+                P_mean=_greatest(along, operating.P_mean[0], x),
+                P_allowed=-_greatest(along, -dissipation.allowed_power(one)[0], x),
+                T_j_peak=_greatest(along, operating.T_j_peak[0], x),
+                T_case=_greatest(along, operating.T_case[0], x),
+                T_heatsink=_greatest(along, operating.T_heatsink[0], x),
+                T_air=_greatest(along, operating.T_air[0], x),
             )
         )
     return tuple(drawn)
 
 
+def _greatest(along: FloatArray, values: FloatArray, x: FloatArray) -> FloatArray:
+    """The greatest of several runs at each x, straight between the members of a run, NaN where one is not known.
+
+    A run is what rises: the levels at one frequency, then those at the next, which are other levels (n,). Each ends
+    at its own largest swing; that they end a hair apart shall not look like a fall of the worst.
+    """
+    full = np.broadcast_to(values, along.shape)
+    starts = np.concatenate([[0], np.flatnonzero(np.diff(along) <= 0) + 1, [along.size]])
+    most = np.full(x.shape, -np.inf)
+    for first, stop in pairwise(starts.tolist()):
+        end = along[stop - 1] * (_SAME_END if stop - first > 1 else 1.0)
+        run = np.interp(x, along[first:stop], full[first:stop], left=-np.inf)
+        most = np.maximum(most, np.where(x <= end, run, -np.inf))
+    return most
+
+
 def safe_areas(judged: tuple[Judged, ...], findings: tuple[Finding, ...]) -> tuple[SafeAreaPicture, ...]:
     """The safe area of one half at the duty of its worst safe-area finding.
 
-    findings: worst first. The locus of the governing member goes with it where no row of the duties shows it.
+    findings: worst first. Curves are scaled to the temperature that the member has for which the finding stands.
     """
     for finding in findings:
         one = next((j for j in judged if (j.duty.name, j.duty.half) == (finding.duty, finding.half)), None)
         if finding.limit != "safe-area" or one is None or one.operating.locus is None or not one.device.soa:
             continue
-        picture = safe_area.picture(one, 0)
-        if one.duty.listed:
-            return (picture,)
-        locus = one.operating.locus
-        values = np.broadcast_to(one.duty.members.value, locus.shape[:2])[0]
-        member = int(np.argmin(np.abs(values - finding.where.member[0])))
-        v, i = (np.array(np.broadcast_to(a, locus.shape)[0, member]) for a in (locus.v, locus.i))
-        return (replace(picture, v=v, i=i),)
+        return (safe_area.picture(one, 0, _member(one, float(finding.where.member[0]))),)
     return ()
+
+
+def _member(judged: Judged, value: float) -> int | None:
+    """The number of the member with this value; None where the finding names none."""
+    if np.isnan(value):
+        return None
+    members = np.broadcast_to(judged.duty.members.value, judged.operating.P_mean.shape)[0]
+    return int(np.argmin(np.abs(members - value)))
 
 
 def characteristics(judged: tuple[Judged, ...]) -> Characteristics:
