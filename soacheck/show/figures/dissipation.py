@@ -61,18 +61,24 @@ def _row(sheet: page.Page, axes: Axes, panel: Panel, result: Result, half: str |
     if panel.x.size > 1:
         canvas.drawn_line(axes, panel.x, power / factor, palette.POWER, zorder=4)
         sheet.explain(canvas.sample_line(palette.POWER), "power")
-    labels = [_peak(axes, panel, factor)] if panel.x.size == 1 or high - low > 1e-9 * abs(high) else []
-    if panel.timed:
-        labels += _mean(sheet, axes, _result_of(result, panel.duty, half), factor)
+    varies = high - low > 1e-9 * abs(high)
+    labels = [_peak(axes, panel, factor, sign)] if panel.x.size == 1 or varies else []
+    duty = _result_of(result, panel.duty, half)
+    if panel.timed and varies:
+        labels += _mean(sheet, axes, duty, factor, sign)
+    elif panel.timed:  # the mean would lie under the power
+        labels.append(_steady(axes, high, factor, sign))
     if shown:
-        labels.append(_draw_allowance(sheet, axes, panel, allowed, factor))
+        labels.append(_draw_allowance(sheet, axes, panel, allowed, factor, sign))
     elif allowed.size:
         least = words.amount(float(np.nanmin(allowed)), "W")
         sheet.note(f"{panel.duty}: the allowance of {least} is above the picture.")
+    elif duty is not None and duty.series is not None and duty.series.use == "once":
+        sheet.note(f"{panel.duty}: one shot has no allowance of mean power; temperature and safe area judge it.")
     else:
         sheet.note(f"{panel.duty}: no allowance is drawn, for want of what it rests on.")
     if not panel.timed:
-        labels += _rest(axes, panel, result, half, factor)
+        labels += _rest(axes, panel, result, half, factor, sign)
     sheet.note(*place(axes, labels))
 
 
@@ -86,27 +92,32 @@ def _allowance(panel: Panel, finding: Finding | None) -> tuple[FloatArray, bool]
     return np.full(panel.x.size, finding.allowed.at(0)), True
 
 
-def _peak(axes: Axes, panel: Panel, factor: float) -> Label:
+def _peak(axes: Axes, panel: Panel, factor: float, sign: str) -> Label:
     at = int(np.nanargmax(panel.P))
     x, y = float(panel.x[at]), float(panel.P[at])
     canvas.drawn_spot(axes, x, y / factor, palette.HOT)
-    text = f"{'peak' if panel.timed else 'greatest'} {words.amount(y, 'W')}"
+    text = f"{'peak' if panel.timed else 'greatest'} {words.on_axis(y, factor, sign, 'W')}"
     return Label(x=x, y=y / factor, text=text, bold=True, near=("N", "NE", "NW", "S", "SE", "SW"))
 
 
-def _mean(sheet: page.Page, axes: Axes, duty: DutyResult | None, factor: float) -> list[Label]:
+def _steady(axes: Axes, power: float, factor: float, sign: str) -> Label:
+    x, text = page.ends(axes)[1], f"power {words.on_axis(power, factor, sign, 'W')}"
+    return Label(x=x, y=power / factor, text=text, colour=palette.LOAD, near=("NW", "SW"))
+
+
+def _mean(sheet: page.Page, axes: Axes, duty: DutyResult | None, factor: float, sign: str) -> list[Label]:
     if duty is None or duty.P_mean is None or not np.isfinite(duty.P_mean.at(0)):
         return []
     mean = duty.P_mean.at(0)
     canvas.drawn_line(axes, page.ends(axes), [mean / factor] * 2, palette.MEAN, zorder=3)
     sheet.explain(canvas.sample_line(palette.MEAN), "mean")
     x = page.ends(axes)[1]
-    text = f"mean {words.amount(mean, 'W')}"
+    text = f"mean {words.on_axis(mean, factor, sign, 'W')}"
     also = ((0.5 * x, mean / factor), (0.0, mean / factor))
     return [Label(x=x, y=mean / factor, text=text, colour=palette.LOAD, near=("NW", "SW"), also=also)]
 
 
-def _draw_allowance(sheet: page.Page, axes: Axes, panel: Panel, allowed: FloatArray, factor: float) -> Label:
+def _draw_allowance(sheet: page.Page, axes: Axes, panel: Panel, allowed: FloatArray, factor: float, sign: str) -> Label:
     one = panel.timed or panel.x.size == 1
     x = np.asarray(page.ends(axes)) if one else panel.x
     y = np.full(2, allowed[0]) if one else allowed
@@ -114,7 +125,7 @@ def _draw_allowance(sheet: page.Page, axes: Axes, panel: Panel, allowed: FloatAr
     text = "allowed mean" if panel.timed else "allowed"
     sheet.explain(canvas.sample_line(palette.ALLOWANCE), "allowed mean at the case temperature reached")
     at = int(np.nanargmin(y))
-    value = words.amount(float(y[at]), "W")
+    value = words.on_axis(float(y[at]), factor, sign, "W")
     constant = float(np.nanmax(y) - np.nanmin(y)) <= 1e-9 * abs(float(y[at]))
     text = f"{text} {value}" if constant else f"{text}, at the least {value}"
     anchor = float(x[0]) if constant else float(x[at])
@@ -124,7 +135,7 @@ def _draw_allowance(sheet: page.Page, axes: Axes, panel: Panel, allowed: FloatAr
     return Label(x=anchor, y=level, text=text, colour=palette.LIMIT, near=near, also=also)
 
 
-def _rest(axes: Axes, panel: Panel, result: Result, half: str | None, factor: float) -> list[Label]:
+def _rest(axes: Axes, panel: Panel, result: Result, half: str | None, factor: float, sign: str) -> list[Label]:
     """The Q point on a held line."""
     if panel.x_name != words.voltage_axis(read.device_kind(result, half)):
         return []
@@ -133,7 +144,7 @@ def _rest(axes: Axes, panel: Panel, result: Result, half: str | None, factor: fl
         if duty.points == 1 and duty.held and duty.name != panel.duty:
             x, y = float(duty.series.v[0]), float(duty.series.v[0] * duty.series.i[0])
             canvas.drawn_spot(axes, x, y / factor, palette.REST)
-            labels.append(Label(x=x, y=y / factor, text=f"{duty.name} {words.amount(y, 'W')}"))
+            labels.append(Label(x=x, y=y / factor, text=f"{duty.name} {words.on_axis(y, factor, sign, 'W')}"))
     return labels
 
 

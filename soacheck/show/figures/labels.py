@@ -31,6 +31,7 @@ _AROUND = {
 _DISTANCES = (5.0, 10.0, 18.0, 30.0, 46.0, 66.0, 90.0, 120.0, 155.0)  # [points]
 _LEADER_FROM = 16.0  # [points]
 _GAP = 2.0  # [pixel] between labels
+_SUBJECT_FROM, _SUBJECT = 4, 4  # lines drawn this high are the subject of the picture: worth four others to keep clear
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -181,7 +182,7 @@ def _under(box: Box, points: FloatArray) -> float:
 
 
 def _stroke_points(axes: Axes) -> FloatArray:
-    """Points every few pixels along all lines of the axes."""
+    """Points every few pixels along all lines of the axes; more of them where a line is what the picture is about."""
     frame = axes.bbox.extents
     pieces = [np.empty((0, 2))]
     for line in axes.lines:
@@ -194,7 +195,8 @@ def _stroke_points(axes: Axes) -> FloatArray:
         points = np.clip(points, (frame[0] - 50, frame[1] - 50), (frame[2] + 50, frame[3] + 50))
         length = np.concatenate([[0.0], np.cumsum(np.hypot(*np.diff(points, axis=0).T))])
         along = np.linspace(0.0, length[-1], 2 + int(length[-1] / 4))
-        pieces.append(np.column_stack([np.interp(along, length, points[:, k]) for k in (0, 1)]))
+        weight = _SUBJECT if line.get_zorder() >= _SUBJECT_FROM else 1
+        pieces.append(np.repeat(np.column_stack([np.interp(along, length, points[:, k]) for k in (0, 1)]), weight, 0))
     return np.concatenate(pieces)
 
 

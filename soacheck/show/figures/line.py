@@ -53,10 +53,11 @@ def draw(result: Result, half: str | None) -> Figure:
         if duty.still:
             at_v, at_i = float(duty.series.v[0]), float(duty.series.i[0])
             canvas.drawn_spot(axes, at_v, at_i / factor, palette.REST)
-            text = f"{_point_name(duty)}\n{words.amount(at_v, 'V')}, {words.amount(at_i, 'A')}"
+            at = f"{words.on_axis(at_v, 1.0, '', 'V')}, {words.on_axis(at_i, factor, sign, 'A')}"
+            text = f"{_point_name(duty)}\n{at}"
             labels.append(Label(x=at_v, y=at_i / factor, text=text, bold=True))
     if loci:
-        ends, named = _ends(axes, loci[0], kind, factor)
+        ends, named = _ends(axes, loci[0], kind, factor, sign, labels)
         labels.extend((*ends, *_regions(loci[0], kind, factor, named)))
     sheet.note(*place(axes, [*labels, *behind]))
     sheet.note(_about_characteristics(result, half, bool(behind)))
@@ -130,10 +131,12 @@ def _about_characteristics(result: Result, half: str | None, shown: bool) -> str
     return "No output characteristics: they are drawn for bipolar transistors only."
 
 
-def _ends(axes: Axes, duty: Drawn, kind: str, factor: float) -> tuple[list[Label], set[int]]:
+def _ends(
+    axes: Axes, duty: Drawn, kind: str, factor: float, sign: str, there: list[Label]
+) -> tuple[list[Label], set[int]]:
     """Both ends of an open line, of a closed path the points of greatest current and greatest voltage.
 
-    And the regions that these labels name, which then need no label of their own.
+    And the regions that these labels name, which then need no label of their own. there: points that have a label.
     """
     v, i = duty.series.v, duty.series.i
     known = np.where(np.isfinite(v * i), 0.0, np.nan)
@@ -149,7 +152,7 @@ def _ends(axes: Axes, duty: Drawn, kind: str, factor: float) -> tuple[list[Label
     named: set[int] = set()
     for name, at in places.items():
         x, y = float(v[at]), float(i[at] / factor)
-        if not np.isfinite(x * y) or any(_near(axes, label, x, y) for label in labels):
+        if not np.isfinite(x * y) or any(_near(axes, label, x, y) for label in (*there, *labels)):
             continue
         canvas.drawn_spot(axes, x, y, palette.END)
         head = "" if duty.held else f"{name}\n"
@@ -161,8 +164,8 @@ def _ends(axes: Axes, duty: Drawn, kind: str, factor: float) -> tuple[list[Label
                 tail = f", {word}"
                 named.add(code)
         nothing = abs(float(i[at])) < _NOTHING * float(np.nanmax(np.abs(i)))
-        current = "≈ 0 A" if nothing and i[at] != 0 else words.amount(float(i[at]), "A")
-        text = f"{head}{words.amount(float(v[at]), 'V')}, {current}{tail}"
+        current = f"≈ 0 {sign}A" if nothing and i[at] != 0 else words.on_axis(float(i[at]), factor, sign, "A")
+        text = f"{head}{words.on_axis(float(v[at]), 1.0, '', 'V')}, {current}{tail}"
         near = ("NE", "E", "NW", "W", "N", "SE")
         labels.append(Label(x=x, y=y, text=text, colour=palette.LOAD, near=near))
     return labels, named

@@ -104,7 +104,7 @@ def duty_words(finding: Finding) -> str:
 def why(finding: Finding) -> str:
     """The reasons of a finding, or what it lacks, in words for the notes."""
     reasons = [reason.text for reason in finding.reasons if reason.applies[0]]
-    return "; ".join(reasons) or "missing: " + (", ".join(finding.missing(0)) or "see the findings")
+    return " ".join(reasons) or "missing: " + (", ".join(finding.missing(0)) or "see the findings")
 
 
 def unproven_notes(result: Result, limit: str, half: str | None) -> tuple[str, ...]:

@@ -55,9 +55,12 @@ def draw(result: Result, half: str | None) -> Figure:
     sheet.note(*place(axes, labels))
     T, T_ref = words.celsius(picture.T), words.celsius(picture.T_ref)
     factor = "" if picture.factor == 1 else f", {percent(picture.factor)} by the rules"
-    sheet.explain(canvas.sample_line(palette.SCALED), f"allowed at {T}{factor}")
-    sheet.explain(canvas.sample_line(palette.PRINTED), f"as printed, for {T_ref}")
-    sheet.explain(canvas.sample_line(palette.RATING), "rating")
+    if any(_drawable(scaled).size for _, _, scaled in picture.curves):
+        sheet.explain(canvas.sample_line(palette.SCALED), f"allowed at {T}{factor}")
+    if any(printed.size for _, printed, _ in picture.curves):
+        sheet.explain(canvas.sample_line(palette.PRINTED), f"as printed, for {T_ref}")
+    if np.isfinite([picture.I_max, picture.I_peak, picture.V_max]).any():
+        sheet.explain(canvas.sample_line(palette.RATING), "rating")
     sheet.note(*_notes(result, picture, half, spot))
     return page.finish(sheet, "Safe area", result, half)
 
@@ -115,16 +118,21 @@ def _curves(axes: Axes, picture: SafeAreaPicture) -> list[Label]:
         text = canvas.plain(name, 24)
         if printed.size:
             canvas.drawn_line(axes, printed[:, 0], printed[:, 1], palette.PRINTED, zorder=2.5)
-        shown = scaled[np.all(scaled > 0, axis=1)] if scaled.size else scaled
+        shown = _drawable(scaled)
         if shown.size:
             canvas.drawn_line(axes, shown[:, 0], shown[:, 1], palette.SCALED, zorder=3)
             labels.append(_on_slope(shown, text))
         elif printed.size:
-            labels.append(_on_slope(printed, f"{text}: printed only"))
+            labels.append(_on_slope(printed, f"({text})", bold=False))
     return labels
 
 
-def _on_slope(points: FloatArray, text: str) -> Label:
+def _drawable(scaled: FloatArray) -> FloatArray:
+    """The points of an allowed curve that have a place on log paper."""
+    return scaled[np.all(scaled > 0, axis=1)] if scaled.size else scaled
+
+
+def _on_slope(points: FloatArray, text: str, bold: bool = True) -> Label:
     """A curve's name on its falling part, clear of the rating line at its end."""
     falling = points[points[:, 1] < points[:, 1].max() * (1 - 1e-6)]
     top = points[points.shape[0] - falling.shape[0] - 1 :] if falling.size else points
@@ -132,7 +140,7 @@ def _on_slope(points: FloatArray, text: str) -> Label:
     along = np.linspace(0.35, 0.92, 20) * length[-1]
     on = np.exp(np.column_stack([np.interp(along, length, np.log(top[:, k])) for k in (0, 1)]))
     return Label(
-        x=float(on[-1, 0]), y=float(on[-1, 1]), text=text, colour=palette.LIMIT, bold=True, near=("SW", "NE"),
+        x=float(on[-1, 0]), y=float(on[-1, 1]), text=text, colour=palette.LIMIT, bold=bold, near=("SW", "NE"),
         on=tuple((float(x), float(y)) for x, y in on[::-1]),
     )  # fmt: skip
 
@@ -204,8 +212,13 @@ def _hot_labels(axes: Axes, spot: Finding | None) -> list[Label]:
 
 def _notes(result: Result, picture: SafeAreaPicture, half: str | None, spot: Finding | None) -> list[str]:
     notes = []
-    if any(printed.size and not scaled.size for _, printed, scaled in picture.curves):
-        notes.append("Printed only: allows nothing at this temperature, or is no curve that this duty is judged by.")
+    if any(printed.size and not _drawable(scaled).size for _, printed, scaled in picture.curves):
+        notes.append(
+            f"In brackets, printed only: allows nothing at {words.celsius(picture.T)}, or is no curve that this duty "
+            "is judged by."
+            if math.isfinite(picture.T)
+            else "In brackets: as printed only."
+        )
     if not math.isfinite(picture.T):
         notes.append("The temperature at the chart's reference point is not known, so no curve could be scaled.")
     if spot is None:

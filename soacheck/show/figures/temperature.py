@@ -102,7 +102,8 @@ def _label(panel: Panel, name: str, column: FloatArray, right: float) -> Label:
     flat = float(np.nanmax(column) - np.nanmin(column)) < 0.5
     greatest = f"{_WORDS[name]} {round(value)} °C" if flat else f"{_WORDS[name]}, greatest {round(value)} °C"
     x = right if flat or panel.x.size == 1 else float(panel.x[at])
-    near = ("NW", "SW") if flat or panel.x.size == 1 else ("N", "NE", "NW", "S", "SE", "SW")
+    below = ("SW", "NW") if name == "T_air" else ("NW", "SW")  # nothing but the edge is below the air
+    near = below if flat or panel.x.size == 1 else ("N", "NE", "NW", "S", "SE", "SW")
     return Label(x=x, y=value, text=greatest, colour=_STROKES[name].colour, bold=name == "T_j", near=near)
 
 

@@ -5,14 +5,20 @@ from __future__ import annotations
 import math
 
 from soacheck.device.ratings import BIPOLAR, MOSFET
-from soacheck.show.text import ZERO_CELSIUS, quantity
+from soacheck.show.text import ZERO_CELSIUS, number, quantity
 
-_PREFIXES = ((1e-9, "n"), (1e-6, "µ"), (1e-3, "m"), (1.0, ""), (1e3, "k"))
+_PREFIXES = ((1e-9, "n"), (1e-6, "µ"), (1e-3, "m"), (1.0, ""))
+_KILO_FROM = 1e4  # below, a label beside the axis reads better in watts
 
 
 def amount(value: float, unit: str) -> str:
     """A value with its unit, three digits."""
     return quantity(value, unit, 3).replace(" u", " µ") if math.isfinite(value) else "not known"
+
+
+def on_axis(value: float, factor: float, sign: str, unit: str) -> str:
+    """A value in the unit of the axis it stands at, three digits: at an axis in kW, 850 W is "0.85 kW"."""
+    return f"{number(value / factor, 3)} {sign}{unit}" if math.isfinite(value) else "not known"
 
 
 def celsius(kelvin: float) -> str:
@@ -25,6 +31,8 @@ def prefix(largest: float) -> tuple[float, str]:
     size = abs(largest)
     if not math.isfinite(size) or size == 0:
         return 1.0, ""
+    if size >= _KILO_FROM:
+        return 1e3, "k"
     return [entry for entry in _PREFIXES if 0.3 * entry[0] <= max(size, 1e-9)][-1]
 
 

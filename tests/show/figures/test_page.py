@@ -7,7 +7,8 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from soacheck.show.figures import page, words
+from soacheck.show.figures import canvas, page, words
+from soacheck.show.figures.labels import Label, place
 
 
 @given(st.floats(1e-6, 1e6))
@@ -52,9 +53,27 @@ def test_a_short_record_is_drawn_whole() -> None:
 
 
 @pytest.mark.parametrize(
-    ("largest", "sign"), [(0.9, ""), (0.05, "m"), (60e-3, "m"), (2e-4, "µ"), (150.0, ""), (3000.0, "k")]
+    ("largest", "sign"), [(0.9, ""), (0.05, "m"), (60e-3, "m"), (2e-4, "µ"), (150.0, ""), (3000.0, ""), (3e4, "k")]
 )
 def test_axes_are_in_units_that_need_no_exponent(largest: float, sign: str) -> None:
     factor, found = words.prefix(largest)
     assert found == sign
-    assert 0.3 <= largest / factor < 300
+    assert 0.3 <= largest / factor < 10_000  # watts stay watts as long as the labels beside them do
+
+
+def test_a_label_rather_covers_two_lines_of_the_chart_than_the_one_it_is_about() -> None:
+    with canvas.settings():
+        figure = page.new_page((3.0,)).figure
+        (axes,) = figure.axes
+        axes.set_xlim(0, 10)
+        axes.set_ylim(0, 10)
+        for level in np.arange(0, 10, 0.2):
+            axes.plot([5.0, 10.0], [level, level], zorder=4)  # right of the point: what the picture is about
+        for level in np.arange(0, 10, 0.1):
+            axes.plot([0.0, 5.0], [level, level], zorder=2)  # left of it: twice as many lines of the chart
+        homeless = place(axes, [Label(x=5.0, y=5.0, text="named here by a long word", near=("NE", "NW"))])
+        (label,) = [text for text in axes.texts if text.get_gid() == "label"]
+        box = label.get_window_extent(canvas.renderer_of(figure))
+        middle = axes.transData.inverted().transform((0.5 * (box.x0 + box.x1), box.y0))
+    assert homeless == ()
+    assert middle[0] < 5

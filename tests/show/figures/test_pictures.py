@@ -150,8 +150,57 @@ def test_a_curve_without_an_allowance_says_so() -> None:
     curves = (("dc", build.DC, np.empty((0, 2))), ("10 ms", build.TEN_MS, build.TEN_MS_HOT))
     result = replace(build.held_line(), safe_area=(build.picture("held-worst-point", curves=curves),))
     figure = figures.draw(result, "safe-area")
-    assert "dc: printed only" in texts(figure, "label")
-    assert any(text.startswith("Printed only: allows nothing") for text in texts(figure, "note"))
+    assert {"(dc)", "10 ms"} <= set(texts(figure, "label"))
+    assert any(text.startswith("In brackets, printed only: allows nothing") for text in texts(figure, "note"))
+
+
+def test_the_key_explains_only_lines_that_are_drawn() -> None:
+    curves = (("dc", build.DC, np.empty((0, 2))), ("10 ms", build.TEN_MS, np.empty((0, 2))))
+    nothing = build.picture("held-worst-point", curves=curves, V_max=np.nan, I_max=np.nan, I_peak=np.nan)
+    words = key(figures.draw(replace(build.held_line(), safe_area=(nothing,)), "safe-area"))
+    assert "as printed, for 25 °C" in words
+    assert not any(word == "rating" or word.startswith("allowed at") for word in words)
+
+
+@pytest.mark.parametrize("which", ["held", "held, hot", "push-pull", "one shot"])
+def test_no_label_of_the_safe_area_lies_on_a_locus(which: str) -> None:
+    result = RESULTS[which]
+    for half in figures.halves(result):
+        figure = drawn_once(which, "safe-area", half)
+        (axes,) = figure.axes
+        loci = [line for line in axes.lines if line.get_color() == palette.LOAD and line.get_linestyle() != "None"]
+        boxes = [box for text, box in visible(figure) if text in texts(figure, "label") and "allowance" in text]
+        for line in loci:
+            points = line.get_transform().transform(np.asarray(line.get_xydata(), dtype=np.float64))
+            for left, bottom, right, top in boxes:
+                inside = (points > (left, bottom)).all(axis=1) & (points < (right, top)).all(axis=1)
+                assert not inside.any()
+
+
+@pytest.mark.parametrize(("watts", "text", "axis"), [(850.0, "850 W", "(W)"), (0.02, "20 mW", "(mW)")])
+def test_a_label_has_the_unit_of_its_axis(watts: float, text: str, axis: str) -> None:
+    t = np.linspace(0.0, 1e-3, 5)
+    pulse = build.series(t, np.full(5, 10.0), watts / 10 * np.array([0.0, 0.5, 1.0, 0.5, 0.0]), "repeated")
+    figure = figures.draw(build.result((build.duty("profile", pulse, P_mean=watts / 500),), ()), "dissipation")
+    assert figure.axes[0].get_ylabel().endswith(axis)
+    assert f"peak {text}" in texts(figure, "label")
+    assert any(label.startswith("mean") and label.endswith(axis.strip("()")) for label in texts(figure, "label"))
+
+
+def test_a_shot_is_not_said_to_lack_an_allowance() -> None:
+    notes = texts(figures.draw(build.one_shot(), "dissipation"), "note")
+    assert any("one shot has no allowance of mean power" in note for note in notes)
+
+
+def test_an_end_of_the_line_that_is_the_q_point_is_named_once() -> None:
+    t, v, i = np.array([0.0, 0.5, 1.0]), np.array([0.8, 12.0, 24.0]), np.array([2.0, 1.0, 0.001])
+    duties = (
+        build.duty("idle", build.series([0.0], [24.0], [0.001], "held")),
+        build.duty("switched", build.series(t, v, i, "repeated")),
+    )
+    labels = texts(figures.draw(build.result(duties, ()), "line"), "label")
+    assert "Q point (idle)\n24 V, 0.001 A" in labels
+    assert not any(label.startswith("greatest voltage") for label in labels)
 
 
 def test_an_unproven_safe_area_says_why_below_the_picture() -> None:
@@ -357,7 +406,9 @@ def test_a_locus_that_stands_still_is_drawn_as_a_point() -> None:
     result = build.result((build.duty("profile", still),), (), safe_area=(build.picture("profile"),))
     assert "profile\n60 V, 0.75 A" in texts(figures.draw(result, "line"), "label")
     assert "profile" in texts(figures.draw(result, "safe-area"), "label")
-    assert texts(figures.draw(result, "dissipation"), "label") == []  # a constant power has no peak to mark
+    figure = figures.draw(result, "dissipation")
+    assert texts(figure, "label") == ["power 45 W"]  # a constant power has no peak to mark, and is its own mean
+    assert "mean" not in key(figure)
 
 
 def test_a_locus_with_no_current_at_all_can_be_drawn() -> None:
