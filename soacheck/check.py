@@ -10,6 +10,7 @@ import numpy as np
 
 from soacheck import drawn
 from soacheck.balance.chain import chain
+from soacheck.balance.settle import HELD_CASE, HELD_SINK
 from soacheck.device.ratings import Device
 from soacheck.evaluate import Sitting, evaluate
 from soacheck.guard import GUARDS, Raised, Seen
@@ -270,10 +271,12 @@ def _assumptions(stage: Stage, plan: CasePlan, governing: int) -> tuple[str, ...
         said.append(
             f"the sink is shared by every device of the stage, {stage.devices} (heat_path.shared_by not stated)"
         )
-    if path.sink == "resistance" and path.C_th_sink is None:
+    held = {"resistance": ("sink", HELD_SINK), "none": ("case, without a sink,", HELD_CASE)}
+    if path.sink in held and path.C_th_sink is None:
+        what, longest = held[path.sink]
         said.append(
-            "the sink stays at its mean temperature over a period, and at its start over a shot of up to 1 s "
-            "(common practice)"
+            f"the {what} stays at its mean temperature over a period, and at its start over a shot, of up to "
+            f"{write(longest, 'time', 3)} (common practice); beyond that both bounds are judged"
         )
     if stage.spreads and governing > 0:
         said.append(f"duties are shown at the corner that governs: {_corner(stage, plan, governing)}")

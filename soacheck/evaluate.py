@@ -2,16 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
 
-from soacheck.balance.operating import Operating, before_of, needs_sink_bound, settle
+from soacheck.balance.operating import Before, Operating, before_of
 from soacheck.balance.place import Place, place_of
+from soacheck.balance.settle import needs_sink_bound, settle
 from soacheck.duty import Duty, Fitted
 from soacheck.guard.heat import TEMPERATURE_LIMITS
-from soacheck.heat.path import HeatPath
 from soacheck.limit import LIMITS
 from soacheck.limit.judged import Judged
 from soacheck.locus import Locus, Use
@@ -49,8 +49,7 @@ def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
     duties = stage.kind.duties(stage.load, fitted)
     settled = _settle_all(duties, place, cases)
     judged, findings = [], []
-    for duty in duties:
-        operating, lower = settled[id(duty)]
+    for duty, (operating, lower) in zip(duties, settled, strict=True):
         asked = Judged(
             device=fitted.device,
             fitted=fitted,
@@ -64,37 +63,38 @@ def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
         if lower is not None:
             again = [f for limit in LIMITS for f in limit(replace(asked, operating=lower))]
             of_duty = [_either(upper, low) for upper, low in zip(of_duty, again, strict=True)]
-        findings += _signed(_typical(of_duty, stage.heat_path), operating.locus, cases)
+        findings += _signed(_typical(of_duty, place), operating.locus, cases)
     return Sitting(fitted=fitted, place=place, judged=tuple(judged), findings=tuple(findings))
 
 
-def _settle_all(duties: Iterable[Duty], place: Place, cases: int) -> dict[int, tuple[Operating, Operating | None]]:
-    """Steady duties first, then the shots that start from them.
+def _settle_all(duties: Sequence[Duty], place: Place, cases: int) -> list[tuple[Operating, Operating | None]]:
+    """Each duty at its temperatures; steady duties first, then the shots that start from them.
 
-    A shot that outlasts a sink of unknown heat capacity gets its upper and its lower bound.
+    What outlasts a sink of unknown heat capacity comes with its upper and its lower bound.
     """
-    settled: dict[int, tuple[Operating, Operating | None]] = {}
-    shots = []
-    for duty in duties:
-        if duty.locus is not None and duty.locus(None).use is Use.ONCE:
-            shots.append(duty)
-        else:
-            settled[id(duty)] = settle(duty, place, cases), None
-    steady = [operating for operating, _ in settled.values()]
-    for duty in shots:
-        wanted = [op for op in steady if duty.after is None or op.duty.name == duty.after]
-        before = before_of(wanted)
+
+    def bounds(duty: Duty, before: Before | None) -> tuple[Operating, Operating | None]:
         held = settle(duty, place, cases, before=before)
-        if needs_sink_bound(duty, place):
-            settled[id(duty)] = settle(duty, place, cases, before=before, sink_follows=True), held
-        else:
-            settled[id(duty)] = held, None
-    return settled
+        if not needs_sink_bound(duty, place):
+            return held, None
+        return settle(duty, place, cases, before=before, sink_follows=True), held
+
+    shot = [duty.locus is not None and duty.locus(None).use is Use.ONCE for duty in duties]
+    settled = {k: bounds(duty, None) for k, duty in enumerate(duties) if not shot[k]}
+    steady = [operating for operating, _ in settled.values()]
+    for k, duty in enumerate(duties):
+        if shot[k]:
+            wanted = [op for op in steady if duty.after is None or op.duty.name == duty.after]
+            settled[k] = bounds(duty, before_of(wanted))
+    return [settled[k] for k in range(len(duties))]
 
 
-def _typical(findings: list[Finding], path: HeatPath) -> list[Finding]:
+def _typical(findings: list[Finding], place: Place) -> list[Finding]:
     """Findings that rest on typical-grade values of the heat path: at best marginal."""
-    values = (path.interface, path.R_th_sink, path.C_th_sink, path.R_th_enclosure)
+    path = place.path
+    values = [path.interface, path.R_th_sink, path.C_th_sink, path.R_th_enclosure]
+    if path.sink == "none":
+        values = [place.device.thermal.R_th_ja, path.R_th_enclosure]
     names = [value.source for value in values if value is not None and value.rests_on_typical]
     if not names:
         return findings
@@ -138,12 +138,14 @@ def _signed(findings: list[Finding], locus: Locus | None, cases: int) -> list[Fi
 
 def _either(upper: Finding, lower: Finding) -> Finding:
     """A finding between two bounds: the upper one decides `within`, `exceeds` needs the lower one too."""
+    if bool(np.all(lower.status == Status.EXCEEDS)):
+        return lower
     open_ = (upper.status == Status.EXCEEDS) & (lower.status != Status.EXCEEDS)
     if not bool(np.any(open_)):
         return upper
     reason = Reason(
-        text="The shot warms a sink whose heat capacity is not stated: held at its start it would do, "
-        "following at once it would not.",
+        text="This lasts long enough to warm a sink or case whose heat capacity is not stated: held at its mean it "
+        "would do, following at once it would not.",
         applies=open_,
         missing=(SINK_CAPACITY,),
     )

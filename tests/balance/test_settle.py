@@ -126,3 +126,36 @@ def test_long_shot_on_a_sink_of_unknown_capacity_is_not_within(tmp_path: Path) -
     hot = next(f for f in sitting.findings if f.limit == "junction-temperature")
     assert hot.status[0] == 2
     assert "heat_path.heatsink.C_th" in hot.missing(0)
+
+
+def test_a_slow_repetition_on_a_sink_of_unknown_capacity_is_not_within(tmp_path: Path) -> None:
+    # 39 W for half an hour, then off for half an hour: the mean would do, half an hour at 39 W on 1.6 K/W would not.
+    rows = (
+        '[["0 s", "30 V", "1.3 A"], ["1800 s", "30 V", "1.3 A"], ["1800 s", "30 V", "0 A"], ["3600 s", "30 V", "0 A"]]'
+    )
+    text = put(PROFILE, points=rows, heatsink='"1.6 K/W"')
+    sitting = evaluate(stage_of(tmp_path, text, CAUER))[0]
+    op = sitting.judged[0].operating
+    assert op.T_j_peak[0, 0] == pytest.approx(T_AIR + 39 * (1.6 + R_CS + 0.833), abs=0.01)
+    hot = next(f for f in sitting.findings if f.limit == "junction-temperature")
+    assert hot.status[0] == 2
+    assert "heat_path.heatsink.C_th" in hot.missing(0)
+    known = put(PROFILE, points=rows, heatsink='{ R_th = "1.6 K/W", C_th = "100 J/K" }')
+    exact = next(f for f in evaluate(stage_of(tmp_path, known, CAUER))[0].findings if f.limit == "junction-temperature")
+    assert exact.status[0] == 3
+
+
+@pytest.mark.parametrize("seconds", [0.1, 1.0, 30.0])
+def test_a_bare_package_is_not_held_for_a_second(seconds: float, tmp_path: Path) -> None:
+    rows = f'[["0 s", "40 V", "2 A"], ["{seconds} s", "40 V", "2 A"]]'
+    head = put(PROFILE, points=rows, repeat='false\nT_start = "40 degC"')
+    text = head[: head.index("[heat_path]")] + '[heat_path]\nheatsink = "none"\n[surroundings]\nT_ambient = "40 degC"\n'
+    device = put(CAUER, R_th_jc='"0.833 K/W"\nR_th_ja = "35 K/W"')
+    findings = evaluate(stage_of(tmp_path, text, device))[0].findings
+    assert next(f for f in findings if f.limit == "junction-temperature").status[0] == 2
+
+
+def test_a_start_below_the_air_leaves_the_sink_in_the_air(tmp_path: Path) -> None:
+    op = operating(tmp_path, put(PROFILE, repeat='false\nT_start = "-40 degC"'))
+    assert op.T_before[0, 0] == pytest.approx(233.15)
+    assert op.T_heatsink[0, 0] == pytest.approx(T_AIR)
