@@ -137,7 +137,9 @@ def _decide(
     findings = tuple(decided[k] for k in order)
     verdict = Status(max((int(f.status[0]) for f in decided), default=int(Status.UNPROVEN)))
     return Result(
-        stage=StageFacts(title=stage.title, file=stage.file, sha256=stage.sha256, revision=stage.revision),
+        stage=StageFacts(
+            title=stage.title, file=stage.file, sha256=stage.sha256, revision=stage.revision, papers=stage.papers
+        ),
         device=_facts(stage.halves[0].fitted.device),
         complement=_facts(stage.halves[1].fitted.device) if len(stage.halves) > 1 else None,
         verdict=verdict,

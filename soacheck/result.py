@@ -210,6 +210,7 @@ class StageFacts:
     file: str
     sha256: str
     revision: str
+    papers: tuple[tuple[str, str], ...] = ()  # what is printed as it stands: author, checker, drawing, equipment, date
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

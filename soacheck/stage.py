@@ -36,6 +36,9 @@ from soacheck.trace import Traced, given
 HOGGING = 1.2  # worst device of a parallel set without a stated share: 20 % above the even one, shown, never decisive
 
 
+PAPERS = ("author", "checker", "approver", "drawing", "equipment", "date")
+
+
 def _text(name: str, meaning: str) -> Key:
     return Key(table="stage", name=name, form="text", meaning=meaning, where="the drawing's title block")
 
@@ -63,10 +66,7 @@ STAGE_KEYS: tuple[Key, ...] = (
         meaning="The device of the other half of a push-pull stage.",
         where="the parts list",
     ),
-    *(
-        _text(name, f"Printed on the report: {name}.")
-        for name in ("revision", "author", "checker", "approver", "drawing", "equipment", "date")
-    ),
+    *(_text(name, f"Printed on the report: {name}.") for name in ("revision", *PAPERS)),
     Key(
         table="stage",
         name="parallel",
@@ -122,6 +122,7 @@ class Stage:
 
     title: str
     revision: str
+    papers: tuple[tuple[str, str], ...]  # those of PAPERS that are stated, as they stand
     file: str
     sha256: str
     kind: LoadKind
@@ -260,6 +261,7 @@ def _build(
         assumptions=(*document.assumptions, *alone, *path.unused),
         title=stage.text("title") or "",
         revision=stage.text("revision") or "",
+        papers=tuple((name, text) for name in PAPERS if (text := stage.text(name)) is not None),
         file=file,
         sha256=document.sha256,
         kind=kind,

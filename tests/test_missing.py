@@ -170,3 +170,13 @@ def test_a_device_that_would_deliver_power_is_unproven(points: str, tmp_path: Pa
     result = result_of(tmp_path, put(PROFILE, points=points))
     assert result.verdict is Status.UNPROVEN
     assert all(f.status[0] != Status.WITHIN for f in result.findings)
+
+
+def test_a_spread_in_the_device_file_is_not_passed_over_in_silence(tmp_path: Path) -> None:
+    result = result_of(tmp_path, HELD, put(DEVICE, V_CEO='{ value = "160 V", min = "140 V" }'))
+    assert any(c.id == "device-spread" and "max.V_CEO" in c.text for c in result.cautions)
+
+
+def test_what_is_stated_for_the_papers_is_printed(tmp_path: Path) -> None:
+    result = result_of(tmp_path, put(HELD, title='"test"\ndrawing = "GV-014"\nauthor = "A. N. Other"'))
+    assert result.stage.papers == (("author", "A. N. Other"), ("drawing", "GV-014"))

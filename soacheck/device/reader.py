@@ -103,6 +103,10 @@ def _device(document: Document, kind: Kind, shown_as: str) -> Device:
     cautions = list(document.cautions)
     if not ratings_from:
         cautions.append(NO_SOURCE)
+    if document.spreads:
+        keys = ", ".join(spread.key for spread in document.spreads)
+        text = f"{shown_as}: min, max and tol of {keys} are kept for a later job; this check uses the stated values"
+        cautions.append(("device-spread", text))
     if maximum.E_AS is not None and maximum.I_AS is None:
         cautions.append(NO_AVALANCHE_CURRENT)
     return Device(

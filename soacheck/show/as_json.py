@@ -38,6 +38,7 @@ def result_object(result: Result) -> Json:
             "file": PurePath(result.stage.file).name or None,
             "sha256": result.stage.sha256 or None,
             "revision": result.stage.revision or None,
+            **dict(result.stage.papers),
         },
         "device": _device(result.device),
         "complement": complement,

@@ -110,4 +110,5 @@ def stage_words(result: Result) -> str:
     stage = result.stage
     names = [name for name in (stage.title, PurePath(stage.file).name) if name]
     details = [*names[1:], *([f"revision {stage.revision}"] if stage.revision else [])]
+    details += [f"{name} {text}" for name, text in stage.papers]
     return (names[0] if names else "without a title") + (f" ({', '.join(details)})" if details else "")
