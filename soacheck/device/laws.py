@@ -125,50 +125,6 @@ def regions(device: Device, v: FloatArray, i: FloatArray) -> IntArray:
     return np.where(np.isnan(v) | np.isnan(i), -1, code).astype(np.int64)
 
 
-def V_BE_tempco(device: Device) -> Traced:
-    """Change of V_BE with temperature at constant current [V/K]; absent: -2 mV/K, Darlington -4 mV/K."""
-    stated = device.typical.V_BE_tempco
-    if stated is not None:
-        return stated
-    return given("V_BE_tempco", -4e-3 if device.kind in DARLINGTON else -2e-3, "V/K", COMMON_PRACTICE)
-
-
-def base_emitter_voltage(device: Device, current: FloatArray, T: FloatArray | float = T_25) -> FloatArray | None:
-    """V_BE at a collector current and junction temperature; None when the file states no V_BE.
-
-    Parameters
-    ----------
-    device : Device
-        A bipolar transistor.
-    current : ndarray, any shape
-        Collector current. [A]  Counts only where V_BE_I_C is stated; else V_BE is taken as it stands.
-    T : ndarray or float, broadcastable with current
-        Junction temperature. [K]
-
-    Returns
-    -------
-    ndarray, broadcast shape, or None
-        V_BE + V_BE_tempco*(T - 298.15 K) + n*(k*T/q)*ln(I/V_BE_I_C), n = 2 junctions for a Darlington. [V]
-        NaN for currents of 0 or less where the logarithm counts.
-
-    Range: below the onset of high injection and base resistance.
-    Source: Shockley's junction law; tempco as `V_BE_tempco`.
-    """
-    typical = device.typical
-    stated = typical.V_BE.middle if typical.V_BE is not None else None
-    if stated is None:
-        return None
-    current, T = np.asarray(current, dtype=np.float64), np.asarray(T, dtype=np.float64)
-    ndim = max(current.ndim, T.ndim)
-    volts = _over(stated.value, ndim) + _over(V_BE_tempco(device).value, ndim) * (T - T_25)
-    if typical.V_BE_I_C is None:
-        return volts + np.zeros_like(current)
-    junctions = 2.0 if device.kind in DARLINGTON else 1.0
-    with np.errstate(divide="ignore", invalid="ignore"):
-        decades = np.log(current / _over(typical.V_BE_I_C.value, ndim))
-    return np.where(current > 0, volts + junctions * BOLTZMANN_OVER_CHARGE * T * decades, np.nan)
-
-
 def current_gain(device: Device, current: FloatArray, T: float = T_25) -> FloatArray | None:
     """h_FE at a collector current; None when the file states no gain.
 

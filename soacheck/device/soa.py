@@ -18,21 +18,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from soacheck.device.ratings import SafeAreaCurve, SafeAreaDerating
-from soacheck.trace import BoolArray, FloatArray, IntArray
-
-# What an allowance is set by: codes of Allowed.by.
-RATING = 0  # the current rating
-FLAT = 1  # the flat of the printed curve
-CURVE = 2  # the printed curve below its flat, scaled (second breakdown, thermal instability)
-DISSIPATION = 3  # (T_j_max - T)/(Z*V)
-ZERO = 4  # nothing: the factor or the temperature distance is 0 or less
-BEYOND = 5  # not known: right of the curve's last point
-UNKNOWN = 6  # not known: temperature, voltage or thermal resistance is not a number
-
-BY_WORDS = (
-    "current rating", "flat of the curve", "curve", "dissipation",
-    "no allowance", "right of the curve", "unknown",
-)  # fmt: skip
+from soacheck.trace import BoolArray, FloatArray
 
 _TINY = 1e-12  # [V] below this the flat holds; keeps log(v) finite
 
@@ -42,13 +28,11 @@ class Allowed:
     """Allowance of one curve; the arrays share the broadcast shape of v and T.
 
     current: [A], NaN right of the last point or where an input is not a number.
-    by: which line sets it (codes above).
     rating_limited: the allowance is the current rating, or a flat that is printed at the rating or above
     it; then the current limits judge, not the safe area.
     """
 
     current: FloatArray
-    by: IntArray
     rating_limited: BoolArray
 
 
@@ -191,15 +175,12 @@ def allowed_current(
     stack = np.stack(lines)
     unknown = np.isnan(stack).any(axis=0)
     current = np.where(unknown, np.nan, stack.min(axis=0))
-    # The first line within a hair of the least: where rating or flat meets another line, the rating counts.
-    by = np.where(unknown, UNKNOWN, np.argmax(stack <= current * (1 + 1e-9), axis=0))
-    by = np.where(current <= 0.0, ZERO, by)
-    by = np.where(v > points[-1, 0], BEYOND, by)
+    # Within a hair of the least: where the rating or a flat that stands for it meets another line, the rating counts.
+    at_rating, at_flat = stack[:2] <= current * (1 + 1e-9)
     flat_is_rating = curve.points[:, 1].max() >= rating * (1.0 - 1e-9)
     return Allowed(
         current=np.asarray(current, dtype=np.float64),
-        by=np.asarray(by, dtype=np.int64),
-        rating_limited=np.asarray((by == RATING) | ((by == FLAT) & flat_is_rating), dtype=np.bool_),
+        rating_limited=np.asarray((current > 0.0) & (at_rating | (at_flat & flat_is_rating)), dtype=np.bool_),
     )
 
 

@@ -92,31 +92,6 @@ def test_stated_hot_on_resistance_outranks_the_law(tmp_path: Path) -> None:
     assert laws.R_DS_on_hot(read(MOSFET, tmp_path)) is None
 
 
-def test_base_emitter_tempco_has_a_common_value_where_none_is_stated(tmp_path: Path) -> None:
-    for kind, tempco in (("npn", -2e-3), ("pnp-darlington", -4e-3)):
-        found = laws.V_BE_tempco(read(NPN.replace('kind = "npn"', f'kind = "{kind}"'), tmp_path))
-        assert (found.at(0), found.source) == (tempco, "common practice")
-    stated = laws.V_BE_tempco(read(NPN + '[typical]\nV_BE_tempco = "-2.1 mV/K"\n', tmp_path))
-    assert stated.at(0) == pytest.approx(-2.1e-3)
-
-
-def test_base_emitter_voltage_rises_by_sixty_millivolts_per_decade(tmp_path: Path) -> None:
-    # Analytic: (k*T/q)*ln 10 = 59.16 mV at 298.15 K, twice that for two junctions; and the tempco over 50 K.
-    text = NPN + '[typical]\nV_BE = "0.65 V"\nV_BE_I_C = "0.1 A"\n'
-    device = read(text, tmp_path)
-    volts = laws.base_emitter_voltage(device, np.array([0.1, 1.0, 0.0]))
-    assert volts is not None
-    assert volts[0] == pytest.approx(0.65)
-    assert volts[1] - volts[0] == pytest.approx(0.05916, abs=1e-5)
-    assert np.isnan(volts[2])
-    hot = laws.base_emitter_voltage(device, np.array(0.1), 298.15 + 50)
-    assert hot == pytest.approx(0.55)
-    double = laws.base_emitter_voltage(read(text.replace('"npn"', '"npn-darlington"'), tmp_path), np.array([0.1, 1.0]))
-    assert double is not None
-    assert double[1] - double[0] == pytest.approx(2 * 0.05916, abs=2e-5)
-    assert laws.base_emitter_voltage(read(NPN, tmp_path), np.array(1.0)) is None
-
-
 def test_gain_is_straight_over_the_logarithm_of_current(tmp_path: Path) -> None:
     points = '[["0.1 A", "25 degC", 80], ["10 A", "25 degC", 40], ["0.1 A", "125 degC", 160], ["10 A", "125 degC", 60]]'
     device = read(NPN + f"[typical]\nh_FE_points = {points}\n", tmp_path)

@@ -121,7 +121,6 @@ class Levels:
     worst_V: FloatArray  # (case, 1)
     worst_f: FloatArray
     worst: Locus
-    full_V: FloatArray
     full_f: FloatArray
     full: Locus
 
@@ -152,7 +151,7 @@ def every_level(driven: Driven, f: FloatArray, *, class_b_only: bool, resistance
     worst_V, worst = driven.at(best_level, best_f)
     last = P[:, levels.size - 1 :: levels.size]
     full_f = np.take_along_axis(f, first_best(last), 1)
-    full_V, full = driven.at(np.ones((1, 1)), full_f)
+    full = driven.at(np.ones((1, 1)), full_f)[1]
     joined = Locus(
         t=_joined(locus.t, worst.t, cases),
         v=_joined(locus.v, worst.v, cases),
@@ -167,7 +166,6 @@ def every_level(driven: Driven, f: FloatArray, *, class_b_only: bool, resistance
         worst_V=both[1],
         worst_f=best_f,
         worst=worst,
-        full_V=full_V,
         full_f=full_f,
         full=full,
     )
