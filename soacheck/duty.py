@@ -16,6 +16,8 @@ from soacheck.locus import Locus
 from soacheck.table import Missing
 from soacheck.trace import FloatArray, IntArray, Traced, frozen
 
+Level = Literal["worst", "full", "stated"]  # of a signal: greatest mean dissipation, greatest swing, as the file says
+
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Members:
@@ -48,6 +50,14 @@ class Drive:
     saturates: bool = False  # the duty relies on saturation (on-state) being reached
     I_B2: Traced | None = None  # reverse base current while turning off [A]
     R_G: Traced | None = None  # gate resistance [ohm]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Limiter:
+    """A current limiter that the levels of a duty are worked out without, (case,) each."""
+
+    I_limit: Traced  # what it lets through into a short [A]
+    I_peak: Traced  # greatest current that the levels ask for where it stands [A]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -94,4 +104,6 @@ class Duty:
     R_BE: Traced | None = None  # with termination "resistor" [ohm]
     I_B_peak: Traced | None = None  # base current at the current peak, where the kind knows it better than I/h_FE
     listed: bool = True
-    temperature_follows: bool = False  # whether locus depends on its temperature argument
+    level: Level | None = None  # which level of a signal this duty is, where it is one
+    load_angle: Traced | None = None  # of the load at that level [deg]
+    limiter: Limiter | None = None

@@ -23,6 +23,7 @@ GUARDS: tuple[Guard, ...] = (
     chart.no_dc_curve,
     signal.class_b_worst,
     signal.pure_resistance,
+    signal.limiter_left_out,
 )
 
 __all__ = ["GUARDS", "Guard", "Raised", "Seen"]

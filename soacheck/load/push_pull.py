@@ -89,7 +89,7 @@ KEYS: tuple[Key, ...] = (
         band=(0.0, 100.0),
         sign="non-negative",
         default="0 A",
-        assumption="no idle current: ideal class B (I_Q not stated)",
+        assumption="no idle current: ideal class B (I_Q not stated); state I_Q: an idle current adds its watts",
         grade="",
         meaning="Idle current of each device.",
         where="the bias adjustment: voltage over an emitter or source resistor",
@@ -164,6 +164,7 @@ def read(cells: Cells, surround: Surround) -> PushPull:
         level_value=level_value,
         f=cells.span("f"),
         I_Q=_or_nought(cells.quantity("I_Q")),
+        I_Q_stated=cells.has("I_Q"),
         R_E=_or_nought(cells.quantity(R_name)),
         R_name=R_name,
         pairs=cells.count("pairs") or 1,
@@ -173,6 +174,7 @@ def read(cells: Cells, surround: Surround) -> PushPull:
         fault_time=cells.quantity("fault_time"),
         dc_protected=bool(cells.flag("dc_protected")),
     )
+    _refuse_excess_current(cells, stage)
     if load is not None:
         _check_frequency(cells, stage, load)
     if stage.fault_time is not None and not cells.has("I_limit"):
@@ -188,6 +190,20 @@ def read(cells: Cells, surround: Surround) -> PushPull:
             "state f, or leave dc_protected out",
         )
     return stage
+
+
+def _refuse_excess_current(cells: Cells, stage: PushPull) -> None:
+    """Stated currents that the rail cannot drive through the emitter or source resistors, at any stated value."""
+    room = stage.V_rail.value - stage.V_sat.value
+    if cells.quantity("V_rail") is None or bool(np.any(room <= 0)):  # refused elsewhere
+        return
+    R = stage.R_E.value
+    for name, current, ohms in (("I_Q", stage.I_Q, R), ("I_limit", stage.I_limit, R / stage.pairs)):
+        with np.errstate(divide="ignore"):
+            most = room / ohms
+        if current is not None and bool(np.any(current.value >= most)):
+            problem = f"V_rail drives less than {float(np.min(most)):.4g} A through {stage.R_name}"
+            cells.refuse(name, problem, f"a smaller {name}, or the right {stage.R_name}")
 
 
 def _nothing(value: float) -> Traced:
@@ -256,6 +272,8 @@ def _check_frequency(cells: Cells, stage: PushPull, load: Impedance) -> None:
 
 
 def _check_swing(cells: Cells, stage: PushPull, Z_mod: np.ndarray, phi: np.ndarray) -> None:
+    if cells.quantity("V_rail") is None:  # reported already; there is nothing to measure a swing by
+        return
     V_rail, V_sat = column(stage.V_rail), column(stage.V_sat)
     if bool(np.any(V_sat >= V_rail)):
         cells.refuse("V_sat", "nothing of the rail is left for the output", "a V_sat well below V_rail")
@@ -274,7 +292,7 @@ def _check_swing(cells: Cells, stage: PushPull, Z_mod: np.ndarray, phi: np.ndarr
 
 
 def duties(load: PushPull, fitted: Fitted) -> tuple[Duty, ...]:
-    """idle; worst-level, full-level and any-level, or at-level; shorted-output when I_limit is stated."""
+    """idle when I_Q is stated; worst-level, full-level and any-level, or at-level; shorted-output with I_limit."""
     return every_duty(load, fitted)
 
 
@@ -296,6 +314,8 @@ def halves(load: PushPull) -> int:
 def not_analysed(load: PushPull) -> tuple[str, ...]:
     """What the file leaves open, by name."""
     left = []
+    if not load.I_Q_stated:
+        left.append("idle (I_Q not stated)")
     if load.I_limit is None:
         left.append("shorted output (no I_limit)")
     if load.f is not None and not load.dc_protected:

@@ -33,6 +33,11 @@ CASES: dict[str, tuple[tuple[str, str], tuple[str, str], bool]] = {
         (put(PUSH_PULL, load='{ R = "6 ohm", L = "5 mH" }'), DEVICE),
         False,
     ),
+    "limiter-left-out": (  # 35 V into 8.22 ohm ask for 4.26 A
+        (put(PUSH_PULL, R_E='"0.22 ohm"\nI_limit = "1 A"'), DEVICE),
+        (put(PUSH_PULL, R_E='"0.22 ohm"\nI_limit = "4.3 A"'), DEVICE),
+        False,
+    ),
     "shared-sink": ((PUSH_PULL, DEVICE), (HELD, DEVICE), False),
 }
 

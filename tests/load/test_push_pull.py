@@ -411,11 +411,44 @@ def test_what_is_not_analysed_is_said_by_name() -> None:
     assert push_pull.not_analysed(stage(f=None, I_limit=6.0)) == ()
 
 
-def test_a_duty_does_not_follow_temperature_and_its_locus_is_read_only() -> None:
+def test_the_locus_of_a_duty_is_read_only() -> None:
     duty = by_name(stage(I_Q=0.1))["worst-level"]
     locus = locus_of(duty)
-    assert not duty.temperature_follows
     assert not locus.v.flags.writeable
+
+
+def test_each_level_says_which_it_is_and_at_what_angle_of_the_load() -> None:
+    for f in (1000.0, None):
+        said = {d.name: d.level for d in by_name(stage(f=f, I_limit=6.0)).values()}
+        assert said.pop("worst-level") == "worst"
+        assert said.pop("full-level") == "full"
+        assert set(said.values()) == {None}
+        at = by_name(stage(f=f, level="ratio", level_value=0.6))["at-level"]
+        assert at.level == "stated"
+        assert at.load_angle is not None
+        assert at.load_angle.at(0) == 0.0
+    found = by_name(stage(load=at_angle(8.0, 40)))
+    for name in ("worst-level", "full-level"):
+        angle = found[name].load_angle
+        assert angle is not None
+        assert angle.at(0) == pytest.approx(40)
+
+
+@pytest.mark.parametrize("f", [1000.0, None])
+def test_levels_are_not_cut_to_the_current_into_a_short_and_what_they_ask_for_is_kept(f: float | None) -> None:
+    # Analytic: 30 V into 8 ohm with two 0.2 ohm resistors in parallel asks for 30/8.1 = 3.7 A from the half.
+    free = by_name(stage(30.0, 8.0, f, R_E=0.2, pairs=2), fitted(share=0.6))
+    for limit in (1.0, 6.0):
+        found = by_name(stage(30.0, 8.0, f, R_E=0.2, pairs=2, I_limit=limit), fitted(share=0.6))
+        assert mean(found["worst-level"]) == mean(free["worst-level"])
+        limiter = found["any-level"].limiter
+        assert limiter is not None
+        assert limiter.I_limit.at(0) == limit
+        assert limiter.I_peak.at(0) == pytest.approx(30 / 8.1)
+    assert free["any-level"].limiter is None
+    stated = by_name(stage(30.0, 8.0, f, level="voltage", level_value=16.0, I_limit=1.0))["at-level"].limiter
+    assert stated is not None
+    assert stated.I_peak.at(0) == pytest.approx(2.0)
 
 
 def longest_over(ratio: FloatArray, share_of_period: float) -> float:

@@ -12,6 +12,7 @@ from soacheck.errors import InputError
 from soacheck.load import push_pull
 from soacheck.load.kind import Surround
 from soacheck.load.parts.push_pull_stage import PushPull
+from soacheck.table import CasePlan
 
 from . import stages
 
@@ -148,6 +149,56 @@ def test_a_fault_time_without_its_current_and_a_protection_of_a_held_line_are_re
 
 def test_a_saturation_that_eats_the_rail_is_refused() -> None:
     assert refused(PLAIN + 'V_sat = "36 V"\n')[0][0] == "load.V_sat"
+
+
+@pytest.mark.parametrize(
+    ("more", "key", "problem"),
+    [
+        # 30 V - 1 A * 47 ohm leaves nothing of the rail: 0.47 ohm was meant.
+        ('R_E = "47 ohm"\nI_Q = "1 A"\n', "load.I_Q", "V_rail drives less than 0.6383 A through R_E"),
+        ('R_E = "30 ohm"\nI_Q = "1 A"\n', "load.I_Q", "V_rail drives less than 1 A through R_E"),
+        ('R_E = "29 ohm"\nI_Q = "1 A"\nV_sat = "2 V"\n', "load.I_Q", "V_rail drives less than 0.9655 A through R_E"),
+        ('R_E = "22 ohm"\nI_Q = "0 A"\npairs = 2\nI_limit = "6 A"\n', "load.I_limit",
+         "V_rail drives less than 2.727 A through R_E"),
+    ],
+)  # fmt: skip
+def test_a_current_that_the_rail_cannot_drive_through_the_resistors_is_refused(
+    more: str, key: str, problem: str
+) -> None:
+    text = PLAIN.replace('"35 V"', '"30 V"') + more
+    found = stages.refusals("push-pull", text)
+    assert [(one, said) for one, said, _ in found] == [(key, problem)]
+    assert found[0][2] == f"a smaller {key[5:]}, or the right R_E"
+    assert refused(text.replace("R_E", "R_S"), "n-mosfet") == [(key, problem.replace("R_E", "R_S"))]
+    assert not refused(text.replace("47 ohm", "0.47 ohm").replace("30 ohm", "29 ohm").replace('"2 V"', '"0.9 V"')
+                       .replace('"22 ohm"', '"0.22 ohm"'))  # fmt: skip
+
+
+def test_a_corner_in_which_the_rail_cannot_drive_the_idle_current_is_refused() -> None:
+    text = PLAIN + 'I_Q = "1 A"\nR_E = { value = "34 ohm", tol = "5 %" }\n'
+    assert refused(text) == []
+    made = stages.document("push-pull", text)
+    over = made.over(CasePlan.corners(made.spreads))
+    push_pull.read(over.table("load"), Surround(folder=Path("."), device_kind="npn"))
+    with pytest.raises(InputError, match="V_rail drives less than"):
+        over.finish()
+
+
+def test_a_rail_that_is_not_stated_brings_no_second_problem() -> None:
+    text = PLAIN.replace('V_rail = "35 V"\n', "").replace('"any"', '"20 V"')
+    more = 'V_sat = "3 V"\nI_Q = "1 A"\nR_E = "2 ohm"\n'
+    assert [key for key, _ in refused(text + more)] == ["load.V_rail"]
+
+
+def test_an_idle_current_that_is_not_stated_is_asked_for_and_gives_no_idle_duty() -> None:
+    made = stages.document("push-pull", PLAIN)
+    stage = push_pull.read(made.table("load"), Surround(folder=Path("."), device_kind="npn"))
+    assert any("I_Q not stated" in said and "state I_Q" in said for said in made.assumptions)
+    assert "idle (I_Q not stated)" in push_pull.not_analysed(stage)
+    assert list(stages.duties("push-pull", PLAIN)) == ["worst-level", "full-level", "any-level"]
+    stated = PLAIN + 'I_Q = "0 A"\n'
+    assert not any("idle" in said for said in push_pull.not_analysed(read(stated)))
+    assert next(iter(stages.duties("push-pull", stated))) == "idle"
 
 
 def test_a_mosfet_stage_says_source_resistor() -> None:

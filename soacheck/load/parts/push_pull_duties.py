@@ -6,7 +6,7 @@ from collections.abc import Callable
 
 import numpy as np
 
-from soacheck.duty import Duty, Fitted, Members, picked
+from soacheck.duty import Duty, Fitted, Level, Limiter, Members, picked
 from soacheck.load.parts import push_pull_facts as facts
 from soacheck.load.parts.levels import Driven, every_level, first_best, fractions, frequencies
 from soacheck.load.parts.push_pull_stage import PushPull, column, driven_by, law_of
@@ -26,7 +26,9 @@ def every_duty(load: PushPull, fitted: Fitted) -> tuple[Duty, ...]:
         levels = _any_level(load, fitted, driven)
     else:
         levels = _at_level(load, fitted, driven)
-    return (_idle(load, fitted, driven), *levels, *_shorted(load, fitted))
+    # Without a stated idle current an idle duty of 0 W would be evidence of nothing.
+    idle = (_idle(load, fitted, driven),) if load.I_Q_stated else ()
+    return (*idle, *levels, *_shorted(load, fitted))
 
 
 def _always(locus: Locus) -> Callable[[FloatArray | None], Locus]:
@@ -51,6 +53,19 @@ def _idle(load: PushPull, fitted: Fitted, driven: Driven) -> Duty:
         heat_ratio=_heat(load, fitted, 2.0),
         facts=facts.idle_facts(load, fitted),
     )
+
+
+def _limiter(load: PushPull, fitted: Fitted, locus: Locus) -> Limiter | None:
+    """The limiter beside what the levels of a locus ask of one half.
+
+    Levels are not cut to I_limit: it is the current into a short, and a limiter that follows the output voltage lets
+    more pass at a level. Cut to it, a level that the circuit does reach would be left out.
+    """
+    if load.I_limit is None:
+        return None
+    most = np.max(locus.i_peak / column(fitted.share), axis=1)
+    how = "greatest current of one half over the levels looked at, the limiter left out"
+    return Limiter(I_limit=load.I_limit, I_peak=found("I_half_peak", most, "A", how))
 
 
 def _grid_of(load: PushPull, driven: Driven) -> FloatArray:
@@ -102,6 +117,8 @@ def _any_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ..
         locus=_always(levels.worst),
         heat_ratio=heat,
         facts=facts.sine_facts(worst_sheet, V, levels.worst.p_mean[:, 0], fitted),
+        level="worst",
+        load_angle=worst_sheet.named["phi"],
     )
     full = Duty(
         name="full-level",
@@ -109,6 +126,8 @@ def _any_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ..
         locus=_always(levels.full),
         heat_ratio=heat,
         facts=facts.sine_facts(full_sheet, full_V, levels.full.p_mean[:, 0], fitted),
+        level="full",
+        load_angle=full_sheet.named["phi"],
     )
 
     def at_member(member: IntArray) -> tuple[Traced, ...]:
@@ -126,6 +145,7 @@ def _any_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ..
         members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels.V)),
         facts=worst.facts,
         facts_at=at_member,
+        limiter=_limiter(load, fitted, levels.locus),
     )
     return worst, full, every
 
@@ -145,23 +165,29 @@ def _at_level(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ...
     at = np.broadcast_to(f, P.shape)
     one = f.shape[1] == 1
 
-    def made(member: IntArray, what: str) -> tuple[Traced, ...]:
+    def sheet_at(member: IntArray, what: str) -> tuple[facts.Sheet, Traced]:
         here = _f_fact(load, picked(at, member)[:, None], what)
-        sheet = facts.sheet_of(load, fitted, here)
+        return facts.sheet_of(load, fitted, here), here
+
+    def made(member: IntArray, sheet: facts.Sheet, here: Traced) -> tuple[Traced, ...]:
         swing, mean = facts.stated_swing(sheet), picked(P, member)
         if load.level == "clipped":
             return (*facts.clipped_facts(sheet, swing, mean, OVERDRIVE), here)
         return (*facts.sine_facts(sheet, swing, mean, fitted), here)
 
+    worst_sheet, worst_f = sheet_at(hottest[:, 0], "greatest mean dissipation")
     return (
         Duty(
             name="at-level",
             half=fitted.half,
             locus=_always(locus),
             heat_ratio=_heat(load, fitted, 2.0),
-            facts=made(hottest[:, 0], "greatest mean dissipation"),
-            facts_at=None if one else lambda member: made(member, "point that governs"),
+            facts=made(hottest[:, 0], worst_sheet, worst_f),
+            facts_at=None if one else lambda member: made(member, *sheet_at(member, "point that governs")),
             members=Members() if one else Members(name="f", unit="Hz", value=frozen(at)),
+            level="stated",
+            load_angle=worst_sheet.named["phi"],
+            limiter=_limiter(load, fitted, locus),
         ),
     )
 
@@ -176,7 +202,7 @@ def _held_levels(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, 
     sheet = facts.sheet_of(load, fitted, None)
     V_max = column(sheet.named["V_max"])
     if load.level != "any":
-        return (_held_duty("at-level", fitted, driven, facts.stated_swing(sheet), sheet),)
+        return (_held_duty("at-level", "stated", fitted, driven, facts.stated_swing(sheet), sheet),)
     if load.class_b:
         V = facts.worst_held(sheet)
     else:
@@ -188,8 +214,8 @@ def _held_levels(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, 
             *sheet.named.values(),
             load.I_Q.named("I_Q"),
         )
-    worst = _held_duty("worst-level", fitted, driven, V, sheet)
-    full = _held_duty("full-level", fitted, driven, sheet.of("V", "V_max", "V"), sheet)
+    worst = _held_duty("worst-level", "worst", fitted, driven, V, sheet)
+    full = _held_duty("full-level", "full", fitted, driven, sheet.of("V", "V_max", "V"), sheet)
     grid = V_max * fractions(True)
     rows = max(grid.shape[0], V.value.shape[0])
     both = [np.broadcast_to(x, (rows, x.shape[1])) for x in (grid, column(V))]
@@ -213,11 +239,12 @@ def _held_levels(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, 
         members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels)),
         facts=worst.facts,
         facts_at=at_member,
+        limiter=_limiter(load, fitted, line.locus),
     )
     return worst, full, every
 
 
-def _held_duty(name: str, fitted: Fitted, driven: Driven, V: Traced, sheet: facts.Sheet) -> Duty:
+def _held_duty(name: str, level: Level, fitted: Fitted, driven: Driven, V: Traced, sheet: facts.Sheet) -> Duty:
     load = sheet.load
     point = held(driven.output, column(V), load.resistance())
     return Duty(
@@ -226,6 +253,9 @@ def _held_duty(name: str, fitted: Fitted, driven: Driven, V: Traced, sheet: fact
         locus=_always(point.locus),
         heat_ratio=_heat(load, fitted, point.halves),
         facts=facts.held_facts(sheet, V, point.locus.p_mean[:, 0], fitted),
+        level=level,
+        load_angle=sheet.named["phi"],
+        limiter=_limiter(load, fitted, point.locus) if level == "stated" else None,
     )
 
 

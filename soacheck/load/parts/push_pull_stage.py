@@ -22,7 +22,8 @@ class PushPull:
 
     level: every level, clipped, a peak voltage at the load, or a ratio of the largest unclipped swing;
     `level_value` is there for the last two. f: both ends of the operating range, equal for one frequency;
-    None: a held output. R_E, I_Q: of one device. R_name: how the file calls the emitter or source resistor.
+    None: a held output. R_E, I_Q: of one device; I_Q is 0 where it is not stated. R_name: how the file calls the
+    emitter or source resistor.
     """
 
     V_rail: Traced
@@ -31,6 +32,7 @@ class PushPull:
     level_value: Traced | None = None
     f: tuple[Traced, Traced] | None = None
     I_Q: Traced
+    I_Q_stated: bool = True
     R_E: Traced
     R_name: str = "R_E"
     pairs: int = 1
