@@ -6,7 +6,7 @@ import math
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import example, given, settings
 from hypothesis import strategies as st
 
 from soacheck.load import push_pull
@@ -190,6 +190,7 @@ def test_closed_forms_of_class_b_agree_with_integration(angle: float, R_E: float
     I_Q=st.floats(1e-3, 0.5),
     R_E=st.floats(0.0, 0.5),
 )
+@example(angle=54.0, I_Q=0.5, R_E=0.0)  # the worst level is the full one
 @settings(max_examples=25, deadline=None)
 def test_no_level_heats_a_class_ab_device_more_than_the_worst_level(angle: float, I_Q: float, R_E: float) -> None:
     load = stage(35.0, at_angle(8.0, angle), I_Q=I_Q, R_E=R_E)

@@ -217,7 +217,8 @@ def _narrowed(
     left, right = (x[1] - x[0]) * (y[1] - y[2]), (x[2] - x[1]) * (y[1] - y[0])
     with np.errstate(divide="ignore", invalid="ignore"):
         top = x[1] + ((x[2] - x[1]) * right - (x[1] - x[0]) * left) / (2 * (left + right))
-    return np.where((top > x[0]) & (top < x[2]), top, x[1]), [x[0], x[2]]
+    inside = (x[0] < x[1]) & (x[1] < x[2])  # at an end of the range there is no parabola
+    return np.where(inside & (top > x[0]) & (top < x[2]), top, x[1]), [x[0], x[2]]
 
 
 def _joined(many: FloatArray, one: FloatArray, cases: int) -> FloatArray:
