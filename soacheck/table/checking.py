@@ -48,17 +48,25 @@ def check_table(sheet: Sheet, path: str, table: str, data: Mapping[str, Any]) ->
 
 
 def _how_to_state(key: Key, of_array: bool) -> str:
-    if key.form == "choice":
-        line = f'{key.name} = "{key.choices[0]}"'
-    elif key.form in ("text", "tree", "table", "tables"):
-        line = f'{key.name} = "..."' if key.form == "text" else key.name
-    elif key.form == "quantity":
-        line = f'{key.name} = "... {DIMENSIONS[key.dimension]}"'
-    else:
-        line = f"{key.name} = ..."
+    line = f"{key.name} = {_value_to_fill_in(key)}"
     header = f"[[{key.table}]]" if of_array and "." not in key.table else f"[{key.table}]"
     text = f"add {line}" + (f" under {header}" if key.table else "")
     return text + (f" ({key.where})" if key.where else "")
+
+
+def _value_to_fill_in(key: Key) -> str:
+    """What stands right of the equals sign: dots are for the user, words and flags are all there is to choose from."""
+    if key.form == "flag":
+        return "true (or false)"
+    if key.form == "choice":
+        first, *others = (f'"{choice}"' for choice in key.choices)
+        return first + (f" (or {', '.join(others)})" if others else "")
+    if key.form == "points":
+        row = ", ".join(f'"... {DIMENSIONS[column]}"' if column else "..." for column in key.columns)
+        return f"[[{row}], ...]" if len(key.columns) > 1 else f"[{row}, ...]"
+    if key.form == "quantity":
+        return f'"... {DIMENSIONS[key.dimension]}"'
+    return '"..."' if key.form == "text" else "..."
 
 
 def _refuse_unknown(sheet: Sheet, table: str, dotted: str, name: str, data: Mapping[str, Any]) -> str:

@@ -18,6 +18,8 @@ def likeness(written: str, name: str) -> float:
     if len(written) > _LONGEST:
         return 0.0
     one, other = folded(written), folded(name)
+    if max(len(one), len(other)) > 2 * min(len(one), len(other)):
+        return 0.0  # a word that merely contains the other's letters
     return 1.0 if one and one == other else min(SequenceMatcher(None, one, other).ratio(), 0.999)
 
 

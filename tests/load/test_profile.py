@@ -191,3 +191,9 @@ def test_any_points_give_a_locus_or_a_refusal(gaps: list[int], levels: list[tupl
     path = locus(duties("profile", text)["profile"])
     assert float(path.p_mean[0, 0]) <= float(path.p_peak[0, 0]) + 1e-9
     assert float(path.i_mean[0, 0]) <= float(path.i_rms[0, 0]) + 1e-9
+
+
+def test_a_repetition_that_is_not_stated_is_asked_for_by_its_line() -> None:
+    ((key, _, remedy),) = refusals("profile", RAMP)
+    assert key == "load.repeat"
+    assert remedy.startswith("add repeat = true (or false) under [load]")

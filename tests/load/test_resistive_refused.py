@@ -128,3 +128,10 @@ def test_a_name_of_another_family_is_refused_with_the_right_one(
 def test_a_base_resistor_does_not_belong_to_a_gate() -> None:
     text = 'use = "held"\nV_DD = "24 V"\nR_D = "8 ohm"\n[load.bias]\nR_B = "1 kohm"\nV_GG = "5 V"'
     assert [key for key, _, _ in refusals("resistive", text, "n-mosfet")] == ["load.bias.R_B"]
+
+
+def test_a_reason_that_only_a_profile_reads_is_not_taken_for_the_use() -> None:
+    ((key, problem, remedy),) = refusals("resistive", HELD + 'because = "a loop holds the current"\n')
+    assert (key, problem) == ("load.because", "[load] has no key because")
+    assert "use is stated" not in remedy
+    assert remedy.startswith("known here: ")

@@ -147,6 +147,33 @@ def test_a_wrong_form_names_the_form(line: str, key: str, said: str, remedy: str
     assert remedy in found[key].remedy
 
 
+@pytest.mark.parametrize(
+    ("key", "remedy"),
+    [
+        (Key(table="a", name="x", form="flag", required=True), "add x = true (or false) under [a]"),
+        (Key(table="a", name="x", form="choice", choices=("p",), required=True), 'add x = "p" under [a]'),
+        (
+            Key(table="a", name="x", form="choice", choices=("p", "q", "r"), required=True, where="the drawing"),
+            'add x = "p" (or "q", "r") under [a] (the drawing)',
+        ),
+        (
+            Key(table="a", name="x", form="points", columns=("time", ""), required=True),
+            'add x = [["... s", ...], ...] under [a]',
+        ),
+        (Key(table="a", name="x", form="points", columns=("time",), required=True), 'add x = ["... s", ...] under [a]'),
+        (Key(table="a", name="x", dimension="voltage", required=True), 'add x = "... V" under [a]'),
+        (Key(table="a", name="x", form="text", required=True), 'add x = "..." under [a]'),
+        (Key(table="a", name="x", form="count", required=True), "add x = ... under [a]"),
+        (Key(table="a", name="x", form="tree", required=True), "add x = ... under [a]"),
+    ],
+)
+def test_a_key_that_is_absent_is_asked_for_by_a_line_of_its_form(key: Key, remedy: str) -> None:
+    with pytest.raises(InputError) as caught:
+        check_source(parse_source("[a]\n", shown_as="f.toml"), [key]).finish()
+    (problem,) = caught.value.problems
+    assert (problem.problem, problem.remedy) == ("this key is wanted and absent", remedy)
+
+
 def test_an_unfilled_text_is_said_to_be_unfilled() -> None:
     (problem,) = problems('[device]\nname = "..."\nkind = "npn"\n')
     assert (problem.key, problem.problem, problem.remedy) == ("device.name", "not filled in", "fill it in")
@@ -160,7 +187,7 @@ def test_keys_refused_for_one_reason_are_refused_in_one_sentence() -> None:
     waiting = [
         Key(table="a", name=name, not_built="not built yet: this is", dimension="length") for name in ("x", "y", "z")
     ]
-    ready = check_source(parse_source('[a]\nz = 1\nx = 2\ny = 3\n', shown_as="f.toml"), waiting)
+    ready = check_source(parse_source("[a]\nz = 1\nx = 2\ny = 3\n", shown_as="f.toml"), waiting)
     with pytest.raises(InputError) as caught:
         ready.finish()
     (problem,) = caught.value.problems

@@ -28,6 +28,11 @@ def test_the_nearest_name_is_found_through_case_and_punctuation(written: str, me
     assert nearest(written, NAMES) == meant
 
 
+def test_a_word_that_contains_the_letters_of_another_is_no_slip_of_the_pen() -> None:
+    assert nearest("because", ("use", "V_CC")) is None
+    assert nearest("usse", ("use", "V_CC")) == "use"
+
+
 def test_only_case_and_punctuation_make_names_alike() -> None:
     assert likeness("RDS(on)", "R_DS_on") == 1.0
     assert likeness("R_DS_off", "R_DS_on") < 1.0
