@@ -161,13 +161,12 @@ def read(heat_path: Cells, surroundings: Cells) -> HeatPath:
     wanted = [(surroundings, "T_ambient"), (heat_path, "heatsink")]
     if sink != "none":
         wanted.append((heat_path, "interface"))
-    unused = []
-    if sink == "none":
-        unused = [
-            f'heat_path.{name} plays no part: with heatsink = "none" the case gives its heat to the air by R_th_ja'
-            for name in ("interface", "shared_by")
-            if heat_path.has(name)
-        ]
+    R_th_enclosure, outside = _with_default(surroundings, "R_th_enclosure"), bool(surroundings.flag("sink_outside"))
+    if sink == "none" and outside:
+        surroundings.refuse(
+            "sink_outside", 'with heatsink = "none" there is no sink to stand outside', "leave sink_outside out"
+        )
+    boxed = bool((R_th_enclosure.value > 0).any()) and not outside
     return HeatPath(
         interface=None if interface is None else interface.named("R_th_cs"),
         sink=sink,
@@ -178,24 +177,47 @@ def read(heat_path: Cells, surroundings: Cells) -> HeatPath:
         extra_heat=_with_default(heat_path, "extra_heat"),
         extra_box_heat=_with_default(surroundings, "extra_box_heat"),
         T_ambient=surroundings.quantity("T_ambient"),
-        R_th_enclosure=_with_default(surroundings, "R_th_enclosure"),
-        sink_outside=bool(surroundings.flag("sink_outside")),
+        R_th_enclosure=R_th_enclosure,
+        sink_outside=outside,
         working_voltage=heat_path.quantity("working_voltage"),
         missing=tuple(cells.missing(name) for cells, name in wanted if not cells.has(name)),
-        unused=tuple(unused),
+        unused=_unused(heat_path, surroundings, sink, boxed=boxed, outside=outside),
+    )
+
+
+def _unused(heat_path: Cells, surroundings: Cells, sink: str, *, boxed: bool, outside: bool) -> tuple[str, ...]:
+    """What is stated and plays no part, with the reason. boxed: the air at the sink is warmer than the room's."""
+    idle: list[tuple[Cells, tuple[str, ...], str]] = []
+    of_box = () if boxed else ("extra_heat",)  # in a box it warms the air
+    if sink == "none":
+        names = ("interface", "shared_by", "separate_sinks", "working_voltage", *of_box)
+        idle.append((heat_path, names, 'with heatsink = "none" the case gives its heat to the air by R_th_ja'))
+    if sink == "ideal":
+        names = ("shared_by", "separate_sinks", *of_box)
+        idle.append((heat_path, names, 'with heatsink = "ideal" the sink stays at the temperature of the air'))
+    if outside:
+        idle.append((surroundings, ("R_th_enclosure", "extra_box_heat"), "the sink stands in room air (sink_outside)"))
+    elif not boxed:
+        idle.append((surroundings, ("extra_box_heat",), "no R_th_enclosure above 0 K/W is stated"))
+    return tuple(
+        f"{cells.path}.{name} plays no part: {why}" for cells, names, why in idle for name in names if cells.has(name)
     )
 
 
 def _held_case(heat_path: Cells, surroundings: Cells) -> HeatPath:
     """A case whose temperature is stated: nothing behind it counts, and temperatures count from it unless the room's
     is stated too."""
-    for name in ("interface", "heatsink", "shared_by", "extra_heat"):
-        if heat_path.has(name):
-            heat_path.refuse(
-                name,
-                "T_case is stated, which takes the place of what is behind the case",
-                f"T_case or {name}, not both",
-            )
+    for cells, names in (
+        (heat_path, ("interface", "heatsink", "shared_by", "separate_sinks", "extra_heat")),
+        (surroundings, ("R_th_enclosure", "extra_box_heat", "sink_outside")),
+    ):
+        for name in names:
+            if cells.has(name):
+                cells.refuse(
+                    name,
+                    "heat_path.T_case is stated, which takes the place of what is behind the case",
+                    f"T_case or {name}, not both",
+                )
     T_case = heat_path.quantity("T_case")
     T_ambient = surroundings.quantity("T_ambient") if surroundings.has("T_ambient") else T_case
     return HeatPath(

@@ -196,3 +196,59 @@ def test_a_sink_by_its_geometry_is_refused_in_one_sentence(tmp_path: Path) -> No
         opened(tmp_path, heat_path__heatsink='{ shape = "vertical-fins", width = "200 mm", fins = 21 }')
     (problem,) = caught.value.problems
     assert problem.remedy == "leave shape, width and fins out"
+
+
+@pytest.mark.parametrize(
+    ("changes", "key"),
+    [
+        ({"heat_path__interface": '"0.4 K/W"'}, "heat_path.interface"),
+        ({"heat_path__heatsink": '"none"'}, "heat_path.heatsink"),
+        ({"heat_path__shared_by": "2"}, "heat_path.shared_by"),
+        ({"heat_path__separate_sinks": "true"}, "heat_path.separate_sinks"),
+        ({"heat_path__extra_heat": '"5 W"'}, "heat_path.extra_heat"),
+        ({"surroundings__R_th_enclosure": '"0.5 K/W"'}, "surroundings.R_th_enclosure"),
+        ({"surroundings__extra_box_heat": '"20 W"'}, "surroundings.extra_box_heat"),
+        ({"surroundings__sink_outside": "true"}, "surroundings.sink_outside"),
+    ],
+)
+def test_what_lies_behind_a_held_case_is_refused_beside_it(
+    tmp_path: Path, changes: dict[str, str | None], key: str
+) -> None:
+    held: dict[str, str | None] = {"heat_path__interface": None, "heat_path__heatsink": None}
+    problem = refused(tmp_path, **{**held, "heat_path__T_case": '"80 degC"', **changes})
+    assert problem.key == key
+    assert "T_case" in problem.problem
+    assert problem.remedy == f"T_case or {key.rpartition('.')[2]}, not both"
+
+
+BESIDE: dict[str, str | None] = {
+    "heat_path__interface": None, "heat_path__separate_sinks": "true", "heat_path__shared_by": "1",
+    "heat_path__extra_heat": '"5 W"', "heat_path__working_voltage": '"60 V"', "surroundings__extra_box_heat": '"9 W"',
+}  # fmt: skip
+IN_A_BOX = {"surroundings__R_th_enclosure": '"0.5 K/W"'}
+OUTSIDE = {**IN_A_BOX, "surroundings__sink_outside": "true"}
+
+
+@pytest.mark.parametrize(
+    ("sink", "box", "idle"),
+    [
+        ('"none"', {}, "shared_by separate_sinks working_voltage extra_heat extra_box_heat"),
+        ('"none"', IN_A_BOX, "shared_by separate_sinks working_voltage"),
+        ('"ideal"', {}, "shared_by separate_sinks extra_heat extra_box_heat"),
+        ('"ideal"', IN_A_BOX, "shared_by separate_sinks"),
+        ('"1.6 K/W"', {}, "extra_box_heat"),
+        ('"1.6 K/W"', IN_A_BOX, ""),
+        ('"1.6 K/W"', OUTSIDE, "R_th_enclosure extra_box_heat"),
+    ],
+)
+def test_what_plays_no_part_beside_such_a_sink_is_said(
+    tmp_path: Path, sink: str, box: dict[str, str | None], idle: str
+) -> None:
+    read, _ = opened(tmp_path, **{**BESIDE, **box, "heat_path__heatsink": sink})
+    assert [said.partition(" ")[0].rpartition(".")[2] for said in read.unused] == idle.split()
+
+
+def test_a_sink_that_is_not_there_cannot_stand_outside_the_box(tmp_path: Path) -> None:
+    # the bare device itself sits in the warm air of the box
+    problem = refused(tmp_path, **{**OUTSIDE, "heat_path__heatsink": '"none"'})
+    assert problem.key == "surroundings.sink_outside"
