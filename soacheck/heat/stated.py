@@ -79,10 +79,10 @@ def _from_curve(t: FloatArray, z: FloatArray, rated: float | None, file: str) ->
     if error > REFUSED_ABOVE:
         raise _refused(
             file,
-            f"no body answers a step of power like this curve: the closest is {error:.0%} off at a point",
+            f"no body answers a step of power like this curve: the closest is {100 * error:.0f} % off at a point",
         )
     R, C = foster_to_ladder(gain, tau)
-    how = f"{t.size} points met by a ladder of {R.size} cells, greatest deviation {error:.1%}"
+    how = f"{t.size} points met by a ladder of {R.size} cells, greatest deviation {100 * error:.1f} %"
     if error > RAISED_ABOVE:
         how += "; raised until it lies on or above every point"
     if rated is None:
