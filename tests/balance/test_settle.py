@@ -106,6 +106,8 @@ BOXES = {"room": "", "box": 'R_th_enclosure = "0.3 K/W"\nextra_box_heat = "11 W"
 def test_the_sheet_writes_the_temperatures_that_were_judged(sink: str, box: str, tmp_path: Path) -> None:
     if sink == "held case" and box != "room":
         return  # refused: nothing behind the case counts
+    if sink == "none" and box == "sink outside":
+        return  # refused: there is no sink to stand outside
     head = PROFILE[: PROFILE.index("[heat_path]")]
     text = f'{head}[heat_path]\n{SINKS[sink]}\n[surroundings]\nT_ambient = "40 degC"\n{BOXES[box]}\n'
     sitting = evaluate(stage_of(tmp_path, text, put(CAUER, R_th_jc='"0.833 K/W"\nR_th_ja = "35 K/W"')))[0]
