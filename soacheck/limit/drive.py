@@ -2,8 +2,10 @@
 
 Rules: reverse base-emitter voltage <= k_V * V_EBO, gate voltage of either sign <= k_V * V_GSS, base current <= k_I *
 I_B. A bipolar transistor that the duty relies on to saturate needs I_on <= h_FE_min * I_B, with the least gain stated
-at that current or above it; a MOSFET's R_DS_on counts only at the V_GS it is stated for, or more.
-Source: limiting values of IEC 60747-7 and 60747-8; the least gain decides, never the typical one (common practice).
+at that current or above it; a MOSFET's R_DS_on counts only at the V_GS it is stated for, or more; an IGBT's on-state
+line, whose gate voltage a rating file does not state, only at 15 V or more, and then at best marginal.
+Source: limiting values of IEC 60747-7 and 60747-8; the least gain decides, never the typical one, and on-state
+lines of IGBTs are stated at 15 V (common practice).
 Range: what the stage states; where it states no drive there is nothing to judge.
 """
 
@@ -18,9 +20,11 @@ from soacheck.limit.found import ALWAYS, Note, finding, ratio, sharing, typical,
 from soacheck.limit.judged import Judged
 from soacheck.result import Finding, Status
 from soacheck.table import Missing
-from soacheck.trace import FloatArray, Traced, derived
+from soacheck.trace import FloatArray, Traced, derived, given
 
 NAME = "drive"
+IGBT_ON = 15.0  # [V] gate voltage that makers state on-state lines of IGBTs at, common practice
+GATE_MISSING = Missing(key="load.V_GS", where="gate voltage while on: the drive circuit")
 GAIN_MISSING = Missing(key="typical.h_FE", where="least dc current gain at that collector current: [min, typ, max]")
 GAIN_I_MISSING = Missing(key="typical.h_FE_I_C", where="collector current that the gain is stated at")
 
@@ -30,7 +34,7 @@ def find(judged: Judged) -> tuple[Finding, ...]:
     drive = judged.duty.drive
     if drive is None:
         return ()
-    checks: tuple[Callable[[Judged, Drive], Finding | None], ...] = (_off, _on, _base, _saturation, _on_state)
+    checks: tuple[Callable[[Judged, Drive], Finding | None], ...] = (_off, _on, _base, _saturation, _on_state, _on_line)
     return tuple(made for check in checks if (made := check(judged, drive)) is not None)
 
 
@@ -158,16 +162,40 @@ def _on_state(judged: Judged, drive: Drive) -> Finding | None:
             _lacks("R_DS_on is stated without the gate voltage it holds for.", missing),
         )
     if drive.V_on is None:
-        missing = Missing(key="load.V_GS", where="gate-source voltage while on: the drive circuit")
-        return _made(judged, needed, None, basis, "V", _lacks("The gate voltage while on is not stated.", missing))
-    low = np.broadcast_to(drive.V_on.value < needed.value * (1 - 1e-9), (judged.cases,))[:, None]
+        text = "The gate voltage while on is not stated."
+        return _made(judged, needed, None, basis, "V", _lacks(text, GATE_MISSING))
     text = (
         "The gate voltage is lower than the one R_DS_on is stated for; nothing is known of the on-state there. The "
         "threshold voltage does not mean on."
     )
     missing = Missing(key="typical.R_DS_on", where="on-resistance at this gate voltage")
-    note = Note(text=text, holds=low, best=Status.UNPROVEN, missing=(missing,))
-    # Not a rating: meeting the stated condition is all that is wanted, and falling short proves nothing either way.
-    use = np.where(low[:, 0], np.nan, np.broadcast_to(ratio(needed.value, drive.V_on.value), (judged.cases,)))
-    decided = verdict(judged, np.minimum(use, 1.0)[:, None], (note,), marginal_from=np.ones(1))
-    return finding(judged, decided, limit=NAME, basis=basis, unit="V", applied=needed, allowed=drive.V_on)
+    return _fully_on(judged, drive.V_on, needed, basis, text, missing)
+
+
+def _on_line(judged: Judged, drive: Drive) -> Finding | None:
+    if not drive.saturates or not judged.device.igbt:
+        return None
+    needed = given("V_GS_on", IGBT_ON, "V", "common practice")
+    basis = "on-state: V_GS >= the gate voltage that on-state lines of IGBTs are stated for"
+    if drive.V_on is None:
+        text = "The gate voltage while on is not stated."
+        return _made(judged, needed, None, basis, "V", _lacks(text, GATE_MISSING))
+    text = (
+        f"The gate voltage is lower than the {IGBT_ON:.3g} V that on-state lines of IGBTs are stated for; nothing is "
+        "known of the on-state there."
+    )
+    missing = Missing(key="typical.V_CE_TO", where="on-state line at this gate voltage")
+    assumed = f"That the on-state line holds at {IGBT_ON:.3g} V is common practice, not stated: at best marginal."
+    note = Note(text=assumed, holds=ALWAYS, best=Status.MARGINAL)
+    return _fully_on(judged, drive.V_on, needed, basis, text, missing, note)
+
+
+def _fully_on(
+    judged: Judged, V_on: Traced, needed: Traced, basis: str, text: str, missing: Missing, *notes: Note
+) -> Finding:
+    """Not a rating: meeting the stated condition is all that is wanted, and falling short proves nothing either way."""
+    low = np.broadcast_to(V_on.value < needed.value * (1 - 1e-9), (judged.cases,))[:, None]
+    short = Note(text=text, holds=low, best=Status.UNPROVEN, missing=(missing,))
+    use = np.where(low[:, 0], np.nan, np.broadcast_to(ratio(needed.value, V_on.value), (judged.cases,)))
+    decided = verdict(judged, np.minimum(use, 1.0)[:, None], (short, *notes), marginal_from=np.ones(1))
+    return finding(judged, decided, limit=NAME, basis=basis, unit="V", applied=needed, allowed=V_on)

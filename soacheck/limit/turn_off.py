@@ -18,6 +18,7 @@ from soacheck.device.soa import printed_current
 from soacheck.limit.found import Note, typical_named
 from soacheck.limit.judged import Judged
 from soacheck.limit.path import Path
+from soacheck.quantity.units import ZERO_CELSIUS
 from soacheck.result import Status
 from soacheck.table import Missing
 from soacheck.trace import BoolArray, FloatArray, IntArray, Traced
@@ -96,7 +97,7 @@ def _temperature(judged: Judged, curve: SafeAreaCurve, concerned: BoolArray) -> 
     valid = curve.T_j_valid
     T_valid = np.full((1, 1), np.nan) if valid is None else valid.value[:, None]
     cold = judged.operating.T_j_bound <= T_valid
-    said = "not stated" if valid is None else f"{valid.at(0) - 273.15:.4g} degC"
+    said = "not stated" if valid is None else f"{valid.at(0) - ZERO_CELSIUS:.4g} degC"
     missing = (Missing(key="soa[reverse].T_j_valid", where="conditions of the reverse-bias safe-area chart"),)
     return Note(
         text=f"The junction is not shown to stay within the temperature that the reverse-bias area holds for ({said}).",
@@ -108,10 +109,12 @@ def _temperature(judged: Judged, curve: SafeAreaCurve, concerned: BoolArray) -> 
 
 def _conditions(judged: Judged, curve: SafeAreaCurve, concerned: BoolArray) -> list[Note]:
     """What keeps the drive conditions of a reverse-bias curve from being shown to hold."""
-    stated: dict[str, Traced | None] = {"V_BE_off": curve.V_BE_off, "I_B2": curve.I_B2, "R_G": curve.R_G}
+    gate = not judged.device.bipolar
+    reverse = "V_GS_off" if gate else "V_BE_off"  # what the stage calls it; a chart of a gate-driven device states R_G
+    stated: dict[str, Traced | None] = {reverse: curve.V_BE_off, "I_B2": curve.I_B2, "R_G": curve.R_G}
     if all(value is None for value in stated.values()):
-        where = "conditions of the reverse-bias safe-area chart (or I_B2, R_G)"
-        missing = Missing(key="soa[reverse].V_BE_off", where=where)
+        where = "conditions of the reverse-bias safe-area chart" + ("" if gate else " (or I_B2)")
+        missing = Missing(key=f"soa[reverse].{'R_G' if gate else 'V_BE_off'}", where=where)
         return [
             Note(
                 text="The reverse-bias area is stated without its drive conditions.",
@@ -122,7 +125,7 @@ def _conditions(judged: Judged, curve: SafeAreaCurve, concerned: BoolArray) -> l
         ]
     drive = judged.duty.drive
     ours = {
-        "V_BE_off": None if drive is None else drive.V_off,
+        reverse: None if drive is None else drive.V_off,
         "I_B2": None if drive is None else drive.I_B2,
         "R_G": None if drive is None else drive.R_G,
     }

@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 import numpy as np
 import pytest
 
-from soacheck.device.ratings import Triple, Typical
+from soacheck.device.ratings import Device, Triple, Typical
 from soacheck.duty import Drive
 from soacheck.limit import drive
 from soacheck.result import Finding, Status
@@ -22,8 +24,8 @@ NPN = device(
 FET = device("n-mosfet", V_GSS=value("V_GSS", 20, "V"), typical=Typical(R_DS_on_V_GS=value("R_DS_on_V_GS", 10, "V")))
 
 
-def ask(part: object, **given: object) -> tuple[Finding, ...]:
-    return drive.find(judged(held(1, 1), part, drive=Drive(**given)))  # type: ignore[arg-type]  # names of Drive
+def ask(part: Device, **given: Any) -> tuple[Finding, ...]:
+    return drive.find(judged(held(1, 1), part, drive=Drive(**given)))
 
 
 def test_nothing_is_judged_where_no_drive_is_stated() -> None:
@@ -70,6 +72,17 @@ def test_a_gain_at_a_lower_current_decides_nothing() -> None:
     part = device(I_B=value("I_B", 1.5, "A"), typical=Typical(h_FE=Triple(min=value("h_FE", 20))))
     _, finding = ask(part, I_B=value("I_B", 1.0, "A"), I_on=value("I_on", 2, "A"), saturates=True)
     assert finding.missing(0) == ("typical.h_FE_I_C",)
+
+
+def test_an_igbt_is_on_from_15_V_by_common_practice_only() -> None:
+    part = device("n-igbt", V_GSS=value("V_GSS", 20, "V"))
+    _, full = ask(part, V_on=value("V_GS", 15, "V"), saturates=True)
+    _, low = ask(part, V_on=value("V_GS", 10, "V"), saturates=True)
+    assert status(full) is Status.MARGINAL
+    assert "common practice" in said(full)
+    assert (status(low), low.missing(0)) == (Status.UNPROVEN, ("typical.V_CE_TO",))
+    unknown = only(ask(part, saturates=True))
+    assert (status(unknown), unknown.missing(0)) == (Status.UNPROVEN, ("load.V_GS",))
 
 
 def test_what_the_stage_leaves_out_is_named() -> None:

@@ -81,6 +81,16 @@ def test_conditions_that_do_not_hold_leave_it_unproven(
     assert words in said(finding)
 
 
+def test_a_gate_driven_device_is_asked_for_its_own_keys() -> None:
+    stated, silent = area(), area(V_BE_off=None)
+    for curve_of, key in ((stated, "load.V_GS_off"), (silent, "soa[reverse].R_G")):
+        part = device("n-igbt", soa=(*PULSES, DC, curve_of))
+        finding = only(safe_area.find(judged(locus(), part, drive=Drive(), T_j=100)))
+        assert status(finding) is Status.UNPROVEN
+        assert finding.missing(0) == (key,)
+        assert "V_BE_off" not in said(finding)
+
+
 def test_the_curve_whose_conditions_hold_counts() -> None:
     strict = area(V_BE_off=value("V_BE_off", 2, "V"))
     assert status(ask(locus(), strict)) is Status.UNPROVEN
