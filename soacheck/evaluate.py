@@ -10,17 +10,17 @@ import numpy as np
 from soacheck.balance.operating import Before, Operating, before_of
 from soacheck.balance.place import Place, place_of
 from soacheck.balance.settle import needs_sink_bound, settle
+from soacheck.device.ratings import Device
 from soacheck.duty import Duty, Fitted
 from soacheck.guard.heat import TEMPERATURE_LIMITS
 from soacheck.limit import LIMITS
 from soacheck.limit.judged import Judged
+from soacheck.limit.signs import wrong_signs
 from soacheck.locus import Locus, Use
 from soacheck.result import Finding, Reason, Status
 from soacheck.stage import Stage
 from soacheck.table import Missing
 
-DELIVERED = 1e-9  # of the peak power: more than rounding
-SIGN = Missing(key="load.points", where="the measurement or the drawing: the signs of v and i")
 SINK_CAPACITY = Missing(
     key="heat_path.heatsink.C_th", where="mass of the sink times its specific heat; a long shot warms it"
 )
@@ -63,7 +63,7 @@ def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
         if lower is not None:
             again = [f for limit in LIMITS for f in limit(replace(asked, operating=lower))]
             of_duty = [_either(upper, low) for upper, low in zip(of_duty, again, strict=True)]
-        findings += _signed(_typical(of_duty, place), operating.locus, cases)
+        findings += _signed(_typical(of_duty, place), fitted.device, operating.locus, cases)
     return Sitting(fitted=fitted, place=place, judged=tuple(judged), findings=tuple(findings))
 
 
@@ -95,7 +95,7 @@ def _typical(findings: list[Finding], place: Place) -> list[Finding]:
     values = [path.interface, path.R_th_sink, path.C_th_sink, path.R_th_enclosure]
     if path.sink == "none":
         values = [place.device.thermal.R_th_ja, path.R_th_enclosure]
-    names = [value.source for value in values if value is not None and value.rests_on_typical]
+    names = [value.source for value in values if value is not None and value.typical_below]
     if not names:
         return findings
     text = f"Rests on typical data ({', '.join(names)}): at best marginal."
@@ -108,32 +108,29 @@ def _typical(findings: list[Finding], place: Place) -> list[Finding]:
     ]
 
 
-def _signed(findings: list[Finding], locus: Locus | None, cases: int) -> list[Finding]:
-    """Findings of a locus along which the device would deliver power: none of them is better than unproven.
-
-    A transistor turns power into heat. v and i of opposite signs are a reversed probe, a channel skew, or a P-type part
-    whose values were not written as magnitudes.
-    """
+def _signed(findings: list[Finding], device: Device, locus: Locus | None, cases: int) -> list[Finding]:
+    """Findings of a locus whose signs no transistor can show: none of them is better than unproven."""
     if locus is None:
         return findings
-    p = np.broadcast_to(locus.p, locus.shape)
-    wrong = np.any(p < -DELIVERED * np.abs(p).max(axis=2, keepdims=True), axis=(1, 2))
-    if not bool(np.any(wrong)):
-        return findings
-    reason = Reason(
-        text="Voltage and current have opposite signs: the device would deliver power. Check the sign of both; values "
-        "of P-type devices are magnitudes.",
-        applies=np.broadcast_to(wrong, (cases,)),
-        missing=(SIGN,),
-    )
-    return [
-        replace(
-            f,
-            status=np.where(wrong, np.maximum(f.status, int(Status.UNPROVEN)), f.status),
-            reasons=(*f.reasons, reason),
-        )
-        for f in findings
-    ]
+    for reason in wrong_signs(device, locus):
+        wrong = np.broadcast_to(reason.applies, (cases,))
+        findings = [
+            replace(
+                f,
+                status=np.where(wrong, np.maximum(f.status, int(Status.UNPROVEN)), f.status),
+                reasons=_said_once(f.reasons, replace(reason, applies=wrong)),
+            )
+            for f in findings
+        ]
+    return findings
+
+
+def _said_once(reasons: tuple[Reason, ...], more: Reason) -> tuple[Reason, ...]:
+    """Reasons with one more, which takes the place of one of the same words."""
+    for own in reasons:
+        if own.text == more.text:
+            more = replace(more, applies=own.applies | more.applies)
+    return (*(own for own in reasons if own.text != more.text), more)
 
 
 def _either(upper: Finding, lower: Finding) -> Finding:

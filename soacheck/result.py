@@ -125,7 +125,11 @@ def one_case(value: Traced, case: int, memo: dict[int, Traced]) -> Traced:
 
 
 def status_of(utilisation: FloatArray, marginal_from: FloatArray) -> IntArray:
-    """Status by utilisation alone; what is not a number is unproven. Shapes (case,), broadcasting."""
+    """Status by utilisation alone; what is not a number is unproven. Shapes (case,), broadcasting.
+
+    Within reaches up to the marginal share and includes it, as marginal reaches up to 1: exactly 80 % of an allowance
+    that is marginal from 80 % is within.
+    """
     u, m = np.broadcast_arrays(np.asarray(utilisation, dtype=np.float64), np.asarray(marginal_from, dtype=np.float64))
     status = np.full(u.shape, int(Status.UNPROVEN), dtype=np.int64)
     status[u > 1] = int(Status.EXCEEDS)

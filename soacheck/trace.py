@@ -111,9 +111,9 @@ class Traced:
                 stack.extend((child, False) for child in reversed(node.inputs))
 
     @property
-    def rests_on_typical(self) -> bool:
-        """Whether a typical-grade rating, curve or thermal value stands anywhere below this value."""
-        return any(node.grade == TYPICAL for node in self.walk())
+    def typical_below(self) -> tuple[str, ...]:
+        """Symbols of the typical-grade ratings, curves and thermal values that this value rests on."""
+        return tuple(dict.fromkeys(node.symbol for node in self.walk() if node.grade == TYPICAL))
 
 
 @lru_cache(maxsize=1024)

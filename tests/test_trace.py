@@ -36,8 +36,8 @@ def test_only_arithmetic_is_a_formula(formula: str) -> None:
 def test_a_typical_value_is_seen_through_any_number_of_formulas() -> None:
     typical = given("R_th_jc", 0.8, "K/W", "file", "typical")
     once = derived("rise", "R_th_jc * 10", "K", typical)
-    assert found("peak", [1.0], "K", "search", once).rests_on_typical
-    assert not given("x", 1.0, "1", "file", "guaranteed").rests_on_typical
+    assert found("peak", [1.0], "K", "search", once).typical_below
+    assert not given("x", 1.0, "1", "file", "guaranteed").typical_below
 
 
 def test_values_cannot_be_changed_afterwards() -> None:

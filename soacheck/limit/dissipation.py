@@ -41,7 +41,7 @@ def find(judged: Judged) -> tuple[Finding, ...]:
     if locus.use is Use.ONCE:
         return ()
     allowed = allowed_power(judged)
-    applied = np.broadcast_to(operating.P_mean, allowed.shape)
+    applied = np.broadcast_to(np.abs(operating.P_mean), allowed.shape)
     rated = judged.device.max.P_tot
     notes: list[Note] = [
         *sharing(judged),
@@ -59,6 +59,9 @@ def find(judged: Judged) -> tuple[Finding, ...]:
             )
         )
     decided = verdict(judged, ratio(applied, allowed), notes)
+    how = "exact mean of v * i over the locus"
+    if bool(np.any(decided.of(operating.P_mean) < 0)):
+        how += ", without its sign"
     at = np.zeros(allowed.shape, dtype=np.int64)
     point = point_at(judged, decided, at) if locus.use is Use.HELD else None
     return (
@@ -69,7 +72,7 @@ def find(judged: Judged) -> tuple[Finding, ...]:
             basis=basis,
             unit="W",
             point=point,
-            applied=found("P_mean", decided.of(applied), "W", "exact mean of v * i over the locus"),
+            applied=found("P_mean", decided.of(applied), "W", how),
             allowed=_traced(judged, decided),
         ),
     )

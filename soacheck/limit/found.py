@@ -180,8 +180,8 @@ def sharing(judged: Judged) -> tuple[Note, ...]:
 def temperature_unknown(judged: Judged, T: FloatArray) -> tuple[Note, ...]:
     """The finding needs a temperature that is not known."""
     unknown = np.isnan(T)
-    keys = ", ".join(missing.key for missing in judged.operating.missing)
-    because = f": {keys} not stated" if keys else ""
+    keys = [missing.key for missing in judged.operating.missing]
+    because = f": {', '.join(keys)} {'is' if len(keys) == 1 else 'are'} not stated" if keys else ""
     return (
         Note(
             text=f"The temperatures are not known{because}.",
@@ -194,9 +194,7 @@ def temperature_unknown(judged: Judged, T: FloatArray) -> tuple[Note, ...]:
 
 def typical(*values: Traced | None, holds: BoolArray = ALWAYS) -> tuple[Note, ...]:
     """What rests on a typical value is at best marginal."""
-    names = dict.fromkeys(
-        node.symbol for value in values if value is not None for node in value.walk() if node.grade == "typical"
-    )
+    names = dict.fromkeys(name for value in values if value is not None for name in value.typical_below)
     return typical_named(tuple(names), holds=holds)
 
 

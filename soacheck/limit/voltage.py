@@ -4,7 +4,8 @@ Rule: v <= k_V * V_CEO (V_DSS, V_CES) at every instant. Where the duty states wh
 flows, V_CER counts then (the resistance no larger than the one V_CER is stated with), or V_CEV with a reverse voltage;
 V_CBO never stands for V_CEO.
 Source: definitions of the limiting values of IEC 60747-7 and 60747-8.
-Range: v >= 0; a bipolar transistor with collector and emitter exchanged has no rating here and is unproven.
+Range: v >= 0; a bipolar transistor, or an IGBT without a stated diode, with collector and emitter exchanged has no
+rating here and is unproven. A negative voltage counts by its magnitude, so that a wrong sign hides no excess.
 """
 
 from __future__ import annotations
@@ -15,10 +16,15 @@ from soacheck.device.laws import leakage_level
 from soacheck.limit.found import Note, finding, nothing_allowed, point_at, ratio, typical, verdict, without_locus
 from soacheck.limit.judged import Judged
 from soacheck.result import Finding, Status
+from soacheck.table import Missing
 from soacheck.trace import BoolArray, Traced, derived, found
 
 NAME = "voltage"
 REVERSED = "The collector goes negative of the emitter; the ratings of a bipolar transistor do not cover that."
+REVERSED_IGBT = (
+    "The collector goes negative of the emitter; without a stated I_S the ratings of an IGBT do not cover that."
+)
+SIGN = Missing(key="load.points", where="the measurement or the drawing: the signs of v and i")
 
 
 def find(judged: Judged) -> tuple[Finding, ...]:
@@ -35,10 +41,10 @@ def find(judged: Judged) -> tuple[Finding, ...]:
     other = _while_off(judged)
     if other is not None:
         basis += f"; while only leakage flows k_V * {other.symbol} ({judged.duty.termination} at the base)"
-        off = locus.i <= leakage_level(judged.device)
+        off = (locus.i <= leakage_level(judged.device)) & (v >= 0)
         more = derived("V_allowed", f"k_V * {other.symbol}", "V", k, other)
         allowed = np.where(off & _opened(judged), np.maximum(more.value[:, None, None], allowed), allowed)
-    share = ratio(v, np.broadcast_to(allowed, v.shape))
+    share = ratio(np.abs(v), np.broadcast_to(allowed, v.shape))
     at = np.argmax(np.where(np.isnan(share), np.inf, share), axis=2)
     use = np.take_along_axis(share, at[..., None], axis=2)[..., 0]
     decided = verdict(
@@ -51,7 +57,10 @@ def find(judged: Judged) -> tuple[Finding, ...]:
         ),
     )
     point = point_at(judged, decided, at)
-    applied = found("V_peak", point.v, "V", "voltage at the instant nearest to its rating")
+    how = "voltage at the instant nearest to its rating"
+    if bool(np.any(point.v < 0)):
+        how += ", without its sign"
+    applied = found("V_peak", np.abs(point.v), "V", how)
     if other is not None:
         limit = decided.of(np.take_along_axis(np.broadcast_to(allowed, v.shape), at[..., None], axis=2)[..., 0])
         plain = found(
@@ -85,6 +94,9 @@ def _opened(judged: Judged) -> BoolArray:
 
 
 def _reversed(judged: Judged, negative: BoolArray) -> tuple[Note, ...]:
-    if not judged.device.bipolar:
+    device = judged.device
+    if not device.bipolar and not (device.igbt and device.max.I_S is None):
         return ()
-    return (Note(text=REVERSED, holds=np.asarray(np.any(negative, axis=2), dtype=np.bool_), best=Status.UNPROVEN),)
+    text = REVERSED if device.bipolar else REVERSED_IGBT
+    holds = np.asarray(np.any(negative, axis=2), dtype=np.bool_)
+    return (Note(text=text, holds=holds, best=Status.UNPROVEN, missing=(SIGN,)),)
