@@ -6,6 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from soacheck.device.laws import leakage_level
 from soacheck.limit.found import Note, Verdict, ratio, typical
 from soacheck.limit.judged import Judged
 from soacheck.result import Status
@@ -37,19 +38,30 @@ class BodyDiode:
         return found("I_allowed", decided.of(self.allowed), "A", how, *rated.inputs, *forward.inputs[1:])
 
 
+def without_backwards(judged: Judged, i: FloatArray, use: FloatArray) -> FloatArray:
+    """Utilisation (case, member) of forward conduction, not a number where a device that has no body diode conducts
+    backwards: nothing rates that. An excess stays one."""
+    if not judged.device.bipolar:
+        return use
+    backwards = np.any(i < -leakage_level(judged.device), axis=2) & ~(use > 1)
+    return np.where(backwards, np.nan, use)
+
+
 def body_diode(judged: Judged, diode: FloatArray, use: FloatArray, allowed: FloatArray) -> BodyDiode | None:
-    """Body-diode current (case, member) beside the utilisation of forward conduction; None where no diode conducts.
+    """Body-diode current (case, member) beside the utilisation of forward conduction; None where no diode conducts
+    (more than the leakage).
 
     The answer depends on each case alone: a case without diode current keeps its forward figures.
     """
-    conducts = diode > 0
+    conducts = diode > leakage_level(judged.device)
     if not bool(np.any(conducts)):
         return None
     rated = judged.device.max.I_S
     k = judged.rules.current.value[:, None]
     limit = np.full((1, 1), np.nan) if rated is None else k * rated.value[:, None]
     third = np.where(conducts, ratio(diode, limit), -np.inf)
-    governs = conducts & ~(third < use)
+    # What is not known of the diode counts; what is not known of forward conduction gives way to an excess alone.
+    governs = conducts & (np.isnan(third) | (third >= use) | (third > 1))
     notes = [Note(text="The body diode governs.", holds=governs)]
     if rated is None:
         text = "Current flows through the body diode and its rating I_S is not stated."

@@ -3,9 +3,11 @@
 Rule: the rms current over the period, or the level held without a break for longer than the width the peak rating is
 stated for (I_CM_pulse), whichever is larger, <= k_I * I_C. Without a peak rating every level counts. A MOSFET's I_D
 falls with the case temperature as sqrt((T_j_max - T_case)/(T_j_max - T_ref)) and never rises above the rating. Body
-diode conduction counts against I_S in the same way.
-Source: limiting values of IEC 60747-7 and 60747-8; square-root law from "Understanding power MOSFET data sheet
-parameters", application note AN11158 rev. 4 (2014).
+diode conduction counts against I_S in the same way. One shot has no period: over no window of it may the integral of
+i^2 be more than the continuous rating passes and one peak pulse comes to on top (see `pulses`); a train of pulses above
+the continuous rating that would exceed it if it came again at once is unproven.
+Source: limiting values of IEC 60747-7 and 60747-8; the windows of one shot are our own rule; square-root law from
+"Understanding power MOSFET data sheet parameters", application note AN11158 rev. 4 (2014).
 Range: steady and one-shot duties; a MOSFET needs its case temperature.
 """
 
@@ -15,7 +17,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from soacheck.limit.body_diode import body_diode
+from soacheck.limit.body_diode import body_diode, without_backwards
 from soacheck.limit.duration import HAIR, bisect, exact_where_it_matters, longest_run
 from soacheck.limit.found import (
     Note,
@@ -31,12 +33,17 @@ from soacheck.limit.found import (
     without_locus,
 )
 from soacheck.limit.judged import Judged
+from soacheck.limit.pulses import is_train, pulses, squared
 from soacheck.locus import Use
 from soacheck.result import Finding, Status
 from soacheck.table import Missing
 from soacheck.trace import BoolArray, FloatArray, IntArray, Traced, derived, found
 
 NAME = "current"
+PULSES = (
+    "allowance times the root of the integral of i^2 over (allowance^2 * L + (peak allowance^2 - allowance^2) * pulse "
+    "of the peak rating), the greatest over all windows of length L"
+)
 
 
 def find(judged: Judged) -> tuple[Finding, ...]:
@@ -49,44 +56,55 @@ def find(judged: Judged) -> tuple[Finding, ...]:
     if locus is None:
         return (without_locus(judged, limit=NAME, basis=basis, unit="A"),)
     i = np.broadcast_to(locus.i, (judged.cases, *locus.shape[1:]))
-    lasting = lasting_current(judged, np.maximum(i, 0.0))
-    diode = lasting_current(judged, np.maximum(-i, 0.0)) if not judged.device.bipolar else None
-    return (_found(judged, lasting, diode, basis),)
+    diode = lasting_current(judged, np.maximum(-i, 0.0), locus.use) if not judged.device.bipolar else None
+    return (_found(judged, i, diode, basis),)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Lasting:
-    """What flows for long [A], and the sample nearest to it, (case, member); level: held, and not rms, decides."""
+    """What flows for long [A], and the sample nearest to it, (case, member): the larger of level and rms.
+
+    level: held longer than the peak rating's pulse. rms: over the period; of one shot what `pulses` says, or 0.
+    """
 
     value: FloatArray
     at: IntArray
     level: FloatArray
     rms: FloatArray
 
+    def where(self, this: BoolArray, other: Lasting) -> Lasting:
+        """The other one where `this` does not hold."""
+        pick = {name: np.where(this, getattr(self, name), getattr(other, name)) for name in ("value", "level", "rms")}
+        return Lasting(at=np.where(this, self.at, other.at), **pick)
 
-def lasting_current(judged: Judged, i: FloatArray) -> Lasting:
-    """The larger of the rms current and the level held longer than the peak rating's pulse."""
+
+def lasting_current(judged: Judged, i: FloatArray, use: Use, shot: FloatArray | None = None) -> Lasting:
+    """The larger of the rms current and the level held longer than the peak rating's pulse.
+
+    i: (case, member, time), not negative. use: how the locus is read. shot: what counts for rms in one shot.
+    """
     locus = judged.operating.locus
     if locus is None:
         raise ValueError("a duty without a locus has no current")
     cases, members = i.shape[:2]
     peak = i.max(axis=2)
-    if locus.use is Use.HELD:
+    if use is Use.HELD:
         zero = np.zeros((cases, members), dtype=np.int64)
         return Lasting(value=peak, at=zero, level=peak, rms=peak)
-    t, use = locus.t, locus.use
-    dt = np.diff(t, axis=2)
-    a, b = i[..., :-1], i[..., 1:]
-    with np.errstate(divide="ignore", invalid="ignore"):
-        rms = np.sqrt(np.sum(dt * (a * a + a * b + b * b), axis=2) / 3 / np.sum(dt, axis=2))
-    ratings = judged.device.max
+    t, ratings = locus.t, judged.device.max
+    if use is Use.REPEATED:
+        dt = np.diff(t, axis=2)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            rms = np.sqrt(np.sum(squared(dt, i[..., :-1], i[..., 1:]), axis=2) / np.sum(dt, axis=2))
+    else:
+        rms = np.zeros_like(peak) if shot is None else shot
     if ratings.I_peak is None:
         level = peak
     elif ratings.I_peak_pulse is None:
         level = np.zeros_like(peak)  # peak-current says what is missing
     else:
         width = ratings.I_peak_pulse.value[:, None] * (1 + HAIR)
-        floor = rms if locus.use is Use.REPEATED else np.zeros_like(rms)
+        floor = rms if use is Use.REPEATED else np.zeros_like(rms)
 
         def exact(pick: IntArray) -> FloatArray:
             some = np.take_along_axis(i, pick[..., None], axis=1)
@@ -99,10 +117,7 @@ def lasting_current(judged: Judged, i: FloatArray) -> Lasting:
             return bisect(fails, low, np.take_along_axis(peak, pick, axis=1))
 
         level, _ = exact_where_it_matters(floor, peak, exact, below=np.inf)
-    if locus.use is Use.ONCE and ratings.I_peak is not None and ratings.I_peak_pulse is not None:
-        value = level  # an rms value needs a period
-    else:
-        value = np.maximum(rms, level)
+    value = np.maximum(rms, level)
     at = np.argmin(np.abs(i - value[..., None]), axis=2)
     return Lasting(value=value, at=at, level=level, rms=rms)
 
@@ -118,11 +133,34 @@ def continuous_rating(judged: Judged) -> tuple[Traced, FloatArray]:
     return plain, plain.value[:, None] * share
 
 
-def _found(judged: Judged, lasting: Lasting, diode: Lasting | None, basis: str) -> Finding:
+def _forward(judged: Judged, i: FloatArray, allowed: FloatArray) -> tuple[Lasting, tuple[Note, ...]]:
+    """Forward conduction; one shot counts by its pulses, and a train that could not come again at once is unproven."""
+    ratings, locus = judged.device.max, judged.operating.locus
+    if locus is None:
+        raise ValueError("a duty without a locus has no current")
+    peak, width = ratings.I_peak, ratings.I_peak_pulse
+    if locus.use is not Use.ONCE or peak is None or width is None:
+        return lasting_current(judged, i, locus.use), ()
+    allowed = np.broadcast_to(allowed, i.shape[:2])
+    most = np.maximum(judged.rules.current.value * peak.value, 0.0)[:, None]
+    shot = pulses(locus.t, i, allowed, most, width.value[:, None])
+    again = lasting_current(judged, i, Use.REPEATED).value > allowed
+    text = (
+        f"A train of pulses above {ratings.I_max.symbol} that would exceed it if it came again at once; what "
+        f"{peak.symbol} allows of several pulses is not stated."
+    )
+    pause = Missing(key="load.points", where="the pause after the last pulse, to where the train can come again")
+    open_ = again & ~(shot > allowed) & is_train(i, allowed)
+    note = Note(text=text, holds=open_, best=Status.UNPROVEN, missing=(pause,))
+    return lasting_current(judged, i, Use.ONCE, shot), (note,)
+
+
+def _found(judged: Judged, i: FloatArray, diode: Lasting | None, basis: str) -> Finding:
     ratings = judged.device.max
     plain, allowed = continuous_rating(judged)
-    use = ratio(lasting.value, allowed)
-    notes: list[Note] = [*sharing(judged)]
+    lasting, train = _forward(judged, np.maximum(i, 0.0), np.where(np.isnan(allowed), plain.value[:, None], allowed))
+    use = without_backwards(judged, i, ratio(lasting.value, allowed))
+    notes: list[Note] = [*sharing(judged), *train]
     if judged.device.mosfet:
         notes += temperature_unknown(judged, judged.operating.T_case)
         notes += nothing_allowed(allowed, "The case is at the junction's limit or above it: no current is allowed.")
@@ -133,14 +171,13 @@ def _found(judged: Judged, lasting: Lasting, diode: Lasting | None, basis: str) 
     third = body_diode(judged, diode.value, use, allowed) if diode is not None else None
     if diode is not None and third is not None:
         use, notes = third.use, [*notes, *third.notes]
-        lasting = Lasting(
-            value=np.where(third.governs, diode.value, lasting.value),
-            at=np.where(third.governs, diode.at, lasting.at),
-            level=np.where(third.governs, diode.level, lasting.level),
-            rms=np.where(third.governs, diode.rms, lasting.rms),
-        )
+        lasting = diode.where(third.governs, lasting)
         basis += "; body diode: the same against k_I * I_S"
     notes += typical(plain, ratings.T_j if judged.device.mosfet else None)
+    locus = judged.operating.locus
+    if locus is not None and locus.use is not Use.HELD:  # how long the current may be above the rating decides
+        above = i.max(axis=2) > allowed
+        notes += typical(ratings.I_peak_pulse, ratings.I_peak if locus.use is Use.ONCE else None, holds=above)
     decided = verdict(judged, use, notes)
     limit = plain if not judged.device.mosfet else _derated(judged, decided, plain)
     if third is not None:
@@ -179,13 +216,13 @@ def _applied(judged: Judged, decided: Verdict, lasting: Lasting) -> Traced:
     locus = judged.operating.locus
     if locus is not None and locus.use is Use.HELD:
         return found("I_lasting", value, "A", "current of the held point")
+    once = locus is not None and locus.use is Use.ONCE
+    name, how = ("I_pulses", PULSES) if once else ("I_rms", "exact mean of i^2 over straight segments")
     parts = (
-        found("I_rms", rms, "A", "exact mean of i^2 over straight segments"),
+        found(name, rms, "A", how),
         found("I_level", level, "A", "level held without a break for longer than the peak rating's pulse"),
     )
-    if bool(np.all(value == np.maximum(rms, level))):
-        return derived("I_lasting", "max(I_rms, I_level)", "A", *parts)
-    return found("I_lasting", value, "A", "level held longer than the peak rating's pulse; one shot has no rms", *parts)
+    return derived("I_lasting", f"max({name}, I_level)", "A", *parts)
 
 
 def _pulse_missing(judged: Judged) -> tuple[Note, ...]:

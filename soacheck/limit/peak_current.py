@@ -10,7 +10,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from soacheck.limit.body_diode import body_diode
+from soacheck.limit.body_diode import body_diode, without_backwards
 from soacheck.limit.duration import HAIR, longest_run
 from soacheck.limit.found import (
     Note,
@@ -44,14 +44,15 @@ def find(judged: Judged) -> tuple[Finding, ...]:
     if locus is None:
         return (without_locus(judged, limit=NAME, basis=basis, unit="A"),)
     i = np.broadcast_to(locus.i, (judged.cases, *locus.shape[1:]))
-    diode = np.maximum(-i, 0.0) if not judged.device.bipolar else None
-    return (_found(judged, np.maximum(i, 0.0), diode, basis),)
+    return (_found(judged, i, basis),)
 
 
-def _found(judged: Judged, i: FloatArray, diode: FloatArray | None, basis: str) -> Finding:
+def _found(judged: Judged, signed: FloatArray, basis: str) -> Finding:
     ratings, locus = judged.device.max, judged.operating.locus
     if locus is None:
         raise ValueError("a duty without a locus has no current")
+    i = np.maximum(signed, 0.0)
+    diode = np.maximum(-signed, 0.0) if not judged.device.bipolar else None
     k = judged.rules.current.named("k_I")
     lasting = derived("I_allowed", f"k_I * {ratings.I_max.symbol}", "A", k, ratings.I_max)
     allowed, notes = np.broadcast_to(lasting.value[:, None], i.shape[:2]), [*sharing(judged)]
@@ -78,8 +79,9 @@ def _found(judged: Judged, i: FloatArray, diode: FloatArray | None, basis: str) 
             )
             notes.append(Note(text=text, holds=~holds))
         allowed = np.where(holds, np.maximum(short.value[:, None], lasting.value[:, None]), allowed)
+        notes += typical(ratings.I_peak_pulse, holds=over)
         lasting = short
-    use = ratio(peak, allowed)
+    use = without_backwards(judged, signed, ratio(peak, allowed))
     third = None if diode is None else body_diode(judged, diode.max(axis=2), use, allowed)
     if diode is not None and third is not None:
         use, notes = third.use, [*notes, *third.notes]

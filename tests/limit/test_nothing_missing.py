@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import fields, replace
+from typing import Any
 
 import numpy as np
 import pytest
@@ -58,7 +59,7 @@ NEEDS = {
 @pytest.mark.parametrize("limit", NEEDS)
 def test_a_figure_that_is_not_a_number_leaves_its_finding_unproven(name: str, limit: str) -> None:
     asked = judged(CASES[name], T_j=60, missing=GONE)
-    blank = {field: np.full_like(getattr(asked.operating, field), np.nan) for field in NEEDS[limit]}
+    blank: dict[str, Any] = {field: np.full_like(getattr(asked.operating, field), np.nan) for field in NEEDS[limit]}
     holed = replace(asked, operating=replace(asked.operating, **blank))
     (finding,) = [f for f in findings(holed) if f.limit == limit]
     assert status(finding) is Status.UNPROVEN
@@ -81,7 +82,8 @@ def test_no_figure_of_the_operating_point_can_be_lost_and_improve_anything(name:
         array = getattr(asked.operating, field.name)
         if not isinstance(array, np.ndarray):
             continue
-        holed = replace(asked, operating=replace(asked.operating, **{field.name: np.full_like(array, np.nan)}))
+        blank: dict[str, Any] = {field.name: np.full_like(array, np.nan)}
+        holed = replace(asked, operating=replace(asked.operating, **blank))
         for finding in findings(holed):
             assert status(finding) >= whole[finding.limit], (field.name, finding.limit)
 
@@ -92,7 +94,8 @@ def test_a_locus_with_a_hole_is_never_within(name: str) -> None:
     for what in ("v", "i"):
         holed = np.array(getattr(locus, what))
         holed[..., -1 if locus.use is Use.HELD else 2] = np.nan
-        asked = judged(replace(locus, **{what: holed}), T_j=60)
+        path: dict[str, Any] = {what: holed}
+        asked = judged(replace(locus, **path), T_j=60)
         for finding in findings(asked):
             needs = what == "v" or finding.limit != "voltage"
             needs &= what == "i" or finding.limit not in {"current", "peak-current"}

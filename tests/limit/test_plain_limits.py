@@ -2,14 +2,20 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from soacheck.device.ratings import ThermalData
+from soacheck.device.ratings import Device, ThermalData
+from soacheck.evaluate import _signed
 from soacheck.limit import current, dissipation, junction_temperature, peak_current, voltage
-from soacheck.result import Status
+from soacheck.limit.judged import Judged
+from soacheck.limit.pulses import pulses
+from soacheck.locus import Locus
+from soacheck.result import Finding, Status, status_of
 from soacheck.table import Missing
 from tests.limit.build import ZERO_C, device, held, judged, once, only, pulse, repeated, rules, said, status, value
 
@@ -33,10 +39,10 @@ def test_a_stated_base_resistance_opens_its_rating_while_only_leakage_flows() ->
     part = device(V_CER=value("V_CER", 200, "V"), R_BE=value("R_BE", 100, "ohm"))
     off = repeated([0, 1, 1, 2], [190, 190, 20, 20], [0, 0, 1, 1])
     on = repeated([0, 1, 1, 2], [190, 190, 20, 20], [1, 1, 1, 1])
-    how = {"termination": "resistor", "R_BE": value("R_BE", 47, "ohm")}
+    how: dict[str, Any] = {"termination": "resistor", "R_BE": value("R_BE", 47, "ohm")}
     assert only(voltage.find(judged(off, part, **how))).utilisation[0] == pytest.approx(190 / 200)
     assert only(voltage.find(judged(on, part, **how))).utilisation[0] == pytest.approx(190 / 160)
-    loose = {"termination": "resistor", "R_BE": value("R_BE", 220, "ohm")}
+    loose: dict[str, Any] = {"termination": "resistor", "R_BE": value("R_BE", 220, "ohm")}
     assert only(voltage.find(judged(off, part, **loose))).utilisation[0] == pytest.approx(190 / 160)
 
 
@@ -92,12 +98,102 @@ def test_a_level_held_longer_than_the_peak_pulse_counts_as_continuous() -> None:
     assert status(short) is Status.WITHIN
 
 
-def test_one_shot_has_no_rms() -> None:
-    finding = only(current.find(judged(once(*pulse(20, 18, 0.9e-3)))))
-    assert finding.utilisation[0] < 1e-3
-    staircase = only(current.find(judged(once([0, 0, 5e-3, 5e-3, 5.5e-3], [20] * 5, [0, 4, 4, 18, 18]))))
+def train(amps: float, on: float, period: float, count: int) -> tuple[list[float], list[float], list[float]]:
+    """t, v, i of a train of rectangular pulses, each followed by its pause."""
+    t = [*(k * period + at for k in range(count) for at in (0, 0, on, on)), count * period]
+    return t, [0.5] * len(t), [*[0, amps, amps, 0] * count, 0]
+
+
+def test_one_pulse_at_the_peak_rating_for_its_whole_width_just_meets_the_continuous_rating() -> None:
+    finding = only(current.find(judged(once(*pulse(20, 25, 1e-3)))))
+    assert finding.utilisation[0] == pytest.approx(1.0, rel=1e-9)
+    # By hand: sqrt(18^2 * 0.9 / (15^2 * 0.9 + (25^2 - 15^2) * 1)).
+    shorter = only(current.find(judged(once(*pulse(20, 18, 0.9e-3)))))
+    assert shorter.utilisation[0] == pytest.approx((18**2 * 0.9 / (15**2 * 0.9 + 400)) ** 0.5, rel=1e-9)
+    assert shorter.utilisation[0] < 18 / 25  # what peak-current makes of it
+    long = only(current.find(judged(once(*pulse(20, 18, 5e-3)))))
+    assert long.utilisation[0] == pytest.approx(18 / 15)
+
+
+def test_a_train_of_pulses_in_one_shot_counts_by_its_rms() -> None:
+    # 200 pulses of 19 A, 0.9 ms in every ms: 18.02 A rms, 1.20 of 15 A when repeated.
+    t, v, i = train(19, 0.9e-3, 1e-3, 200)
+    one, again = (only(current.find(judged(locus))) for locus in (once(t, v, i), repeated(t, v, i)))
+    assert again.utilisation[0] == pytest.approx(19 * 0.9**0.5 / 15)
+    assert status(one) is Status.EXCEEDS
+    assert one.utilisation[0] == pytest.approx(again.utilisation[0], rel=0.01)
+    padded = only(current.find(judged(once([*t, 10.0], [*v, 0.5], [*i, 0.0]))))  # a pause after it changes nothing
+    assert padded.utilisation[0] == pytest.approx(one.utilisation[0], rel=1e-12)
+
+
+def test_a_train_too_short_to_exceed_that_would_exceed_repeated_is_unproven() -> None:
+    t, v, i = train(19, 0.9e-3, 1e-3, 2)
+    finding = only(current.find(judged(once(t, v, i))))
+    assert status(finding) is Status.UNPROVEN
+    assert finding.utilisation[0] == pytest.approx((19**2 * 1.8 / (15**2 * 1.9 + 400)) ** 0.5, rel=1e-9)
+    assert finding.missing(0) == ("load.points",)
+    both_ends = once([0, 0.9e-3, 0.9e-3, 0.1, 0.1, 0.1009], [0.5] * 6, [19, 19, 0, 0, 19, 19])
+    assert status(only(current.find(judged(both_ends)))) is Status.UNPROVEN  # 1.8 ms without a break if it came again
+
+
+@given(st.floats(15.5, 25), st.floats(0.05, 1), st.floats(1.02, 8), st.integers(2, 12), st.floats(0, 3))
+def test_no_train_is_within_that_exceeds_when_repeated(
+    amps: float, on: float, space: float, count: int, lead: float
+) -> None:
+    t, v, i = train(amps, on * 1e-3, on * space * 1e-3, count)
+    t, v, i = [0.0, *(lead * 1e-3 + x for x in t)], [0.5, *v], [0.0, *i]
+    one, again = (only(current.find(judged(locus))) for locus in (once(t, v, i), repeated(t, v, i)))
+    if status(again) is Status.EXCEEDS:
+        assert status(one) in (Status.UNPROVEN, Status.EXCEEDS)
+    if lead == 0 and again.utilisation[0] <= 1:  # a train that may go on for ever may stop as well
+        assert one.utilisation[0] <= 1 + 1e-9
+
+
+@given(st.lists(st.tuples(st.floats(1e-4, 2e-3), st.floats(0, 25)), min_size=1, max_size=8))
+def test_the_worst_window_is_that_of_trying_them_all(steps: list[tuple[float, float]]) -> None:
+    # Second way: every window between 400 times, the integral summed over as many short steps.
+    ends = np.cumsum([0.0, *(width for width, _ in steps)])
+    t = np.repeat(ends, 2)[1:-1]
+    i = np.repeat([amps for _, amps in steps], 2)
+    fine = np.sort(np.concatenate([np.linspace(0, ends[-1], 400), ends]))
+    each = np.asarray([amps for _, amps in steps])[
+        np.clip(np.searchsorted(ends, (fine[1:] + fine[:-1]) / 2) - 1, 0, len(steps) - 1)
+    ]
+    total = np.concatenate([[0.0], np.cumsum(each**2 * np.diff(fine))])
+    length = np.maximum(fine[None] - fine[:, None], 0.0)
+    share = (total[None] - total[:, None]) / (225 * length + 400e-3)
+    got = pulses(t[None, None], i[None, None], np.asarray([[15.0]]), np.asarray([[25.0]]), np.asarray([[1e-3]]))
+    assert got[0, 0] == pytest.approx(15 * max(share.max(), 0.0) ** 0.5, rel=1e-9)
+
+
+def test_equal_ratings_leave_one_shot_its_greatest_current() -> None:
+    part = device(I_peak=value("I_CM", 15, "A"))
+    assert only(current.find(judged(once(*pulse(20, 12, 0.2e-3)), part))).utilisation[0] == pytest.approx(12 / 15)
+
+
+def test_a_level_held_in_one_shot_counts_beside_its_pulses() -> None:
+    staircase = only(current.find(judged(once([0, 0, 50e-3, 50e-3, 50.1e-3], [20] * 5, [0, 12, 12, 16, 16]))))
     assert staircase.applied is not None
-    assert staircase.applied.at(0) == pytest.approx(4.0, rel=1e-6)
+    level = next(node for node in staircase.applied.walk() if node.symbol == "I_level")
+    assert level.at(0) == pytest.approx(12.0, rel=1e-6)
+    assert staircase.applied.formula == "max(I_pulses, I_level)"
+
+
+@pytest.mark.parametrize("name", ["I_peak", "I_peak_pulse"])
+def test_a_typical_peak_rating_or_pulse_width_leaves_excursions_at_best_marginal(name: str) -> None:
+    typical = value("I_CM", 25, "A", "typical") if name == "I_peak" else value("I_CM_pulse", 1e-3, "s", "typical")
+    more: dict[str, Any] = {name: typical}
+    part = device(**more)
+    above, below = repeated(*pulse(20, 18, 0.5e-3, total=1.0)), repeated(*pulse(20, 9, 0.5e-3, total=1.0))
+    assert status(only(peak_current.find(judged(above, part)))) is Status.MARGINAL
+    for limit in (current, peak_current):
+        shot = only(limit.find(judged(once(*pulse(20, 18, 0.5e-3)), part)))
+        assert status(shot) is Status.MARGINAL
+        assert typical.symbol in said(shot)
+    assert status(only(current.find(judged(below, part)))) is Status.WITHIN
+    if name == "I_peak_pulse":
+        assert status(only(current.find(judged(above, part)))) is Status.MARGINAL
+        assert status(only(peak_current.find(judged(below, part)))) is Status.WITHIN
 
 
 def test_without_a_peak_rating_every_level_counts() -> None:
@@ -148,6 +244,87 @@ def test_a_case_without_diode_current_keeps_its_forward_figures() -> None:
     assert finding.utilisation[1] == pytest.approx(0.9)
     assert finding.allowed is not None
     assert finding.allowed.value == pytest.approx([61.8, 10.0])
+
+
+# signs
+
+ALL = (voltage, current, peak_current, dissipation, junction_temperature)
+PMOS = device("p-mosfet", I_S=value("I_S", 10, "A"))
+IGBT, IGBT_WITH_DIODE = device("n-igbt"), device("n-igbt", I_S=value("I_S", 20, "A"))
+
+
+def signed(locus: Locus, part: Device) -> dict[str, Finding]:
+    """What a stage's findings say of a locus, its signs looked at."""
+    asked: Judged = judged(locus, part)
+    made = _signed([only(limit.find(asked)) for limit in ALL], part, locus, 1)
+    return {finding.limit: finding for finding in made}
+
+
+@pytest.mark.parametrize("part", [PMOS, SWITCH, IGBT, IGBT_WITH_DIODE, device("pnp")], ids=lambda part: part.kind)
+@pytest.mark.parametrize("amps", [0.0, -0.6])
+def test_a_voltage_that_no_diode_stands_leaves_everything_unproven(part: Device, amps: float) -> None:
+    for name, finding in signed(held(-60, amps), part).items():
+        assert status(finding) is Status.UNPROVEN, name
+        assert "load.points" in finding.missing(0), name
+        assert not finding.utilisation[0] < 0, name
+        assert len({r.text for r in finding.reasons}) == len(finding.reasons), name
+
+
+def test_a_negative_voltage_counts_by_its_magnitude() -> None:
+    finding = only(voltage.find(judged(held(-60, -0.6), PMOS)))
+    assert finding.utilisation[0] == pytest.approx(60 / 160)
+    assert finding.applied is not None
+    assert finding.applied.at(0) == 60
+    assert status(signed(held(-500, 0), SWITCH)["voltage"]) is Status.EXCEEDS
+    assert only(dissipation.find(judged(held(60, -0.5), SWITCH))).utilisation[0] > 0
+
+
+def test_the_rating_for_an_open_or_reverse_driven_base_covers_forward_voltage_only() -> None:
+    part = device(V_CEV=value("V_CEV", 250, "V"))
+    finding = only(voltage.find(judged(held(-200, 0), part, termination="reverse")))
+    assert finding.utilisation[0] == pytest.approx(200 / 160)
+
+
+def test_a_body_diode_conducts_within_3_V() -> None:
+    for part in (PMOS, SWITCH, IGBT_WITH_DIODE):
+        for name, finding in signed(held(-1.1, -4.0), part).items():
+            assert status(finding) is Status.WITHIN, name
+
+
+@pytest.mark.parametrize("volts", [0.0, -0.8])
+def test_collector_current_that_flows_backwards_is_unproven(volts: float) -> None:
+    for part in (device(), device("pnp-darlington"), IGBT):
+        for name, finding in signed(held(volts, -20), part).items():
+            assert status(finding) is Status.UNPROVEN, (part.kind, name)
+            assert "load.points" in finding.missing(0), (part.kind, name)
+    for limit in (current, peak_current):
+        assert np.isnan(only(limit.find(judged(held(volts, -20)))).utilisation[0])
+    assert "max.I_S" in signed(held(volts, -20), IGBT)["dissipation"].missing(0)
+
+
+def test_current_of_the_size_of_leakage_may_point_either_way() -> None:
+    for part in (device(), IGBT, SWITCH):
+        for name, finding in signed(held(0, -0.014), part).items():
+            assert status(finding) is Status.WITHIN, (part.kind, name)
+
+
+def test_an_igbt_without_a_stated_diode_does_not_stand_negative_voltage() -> None:
+    assert status(only(voltage.find(judged(held(-1, 0), IGBT)))) is Status.UNPROVEN
+    assert status(only(voltage.find(judged(held(-1, 0), IGBT_WITH_DIODE)))) is Status.WITHIN
+
+
+def test_delivered_power_is_unproven_beside_a_point_that_is_not_a_number() -> None:
+    locus = repeated([0, 1, 2], [20, 20, 20], [-1, 1, np.nan])
+    assert all(status(finding) is Status.UNPROVEN for finding in signed(locus, SWITCH).values())
+
+
+def test_a_diode_within_its_rating_does_not_hide_that_forward_conduction_is_not_known() -> None:
+    both = repeated([0, 1, 1, 2], [-1, -1, 10, 10], [-9, -9, 2, 2])
+    finding = only(current.find(judged(both, SWITCH, T_case=np.nan)))
+    assert np.isnan(finding.utilisation[0])
+    assert status(finding) is Status.UNPROVEN
+    over = repeated([0, 1, 1, 2], [-1, -1, 10, 10], [-12, -12, 2, 2])
+    assert status(only(current.find(judged(over, SWITCH, T_case=np.nan)))) is Status.EXCEEDS
 
 
 # dissipation
@@ -215,17 +392,18 @@ def test_the_lowest_junction_limit_counts(more: dict[str, float], limit: float) 
 
 
 def test_without_a_transient_curve_the_bound_allows_and_the_mean_forbids() -> None:
-    def ask(peak: float, share: float) -> object:
+    def ask(peak: float, share: float) -> Finding:
         locus = repeated([0, share, share, 1], [20, 20, 20, 20], [peak / 20, peak / 20, 0, 0])
         return only(junction_temperature.find(judged(locus, T_case=80)))
 
     inside, between, outside = ask(60, 0.5), ask(120, 0.2), ask(120, 0.95)
-    assert status(inside) is Status.MARGINAL  # type: ignore[arg-type]  # a finding
-    assert inside.applied.formula == "T_case + R_th_jc * P_peak"  # type: ignore[attr-defined]  # a finding
-    assert status(between) is Status.UNPROVEN  # type: ignore[arg-type]  # a finding
-    assert between.missing(0) == ("thermal.Z_th_jc",)  # type: ignore[attr-defined]  # a finding
-    assert status(outside) is Status.EXCEEDS  # type: ignore[arg-type]  # a finding
-    assert outside.utilisation[0] == pytest.approx((80 + 120 * 0.95 * 125 / 150 - 25) / 125)  # type: ignore[attr-defined]  # a finding
+    assert status(inside) is Status.MARGINAL
+    assert inside.applied is not None
+    assert inside.applied.formula == "T_case + R_th_jc * P_peak"
+    assert status(between) is Status.UNPROVEN
+    assert between.missing(0) == ("thermal.Z_th_jc",)
+    assert status(outside) is Status.EXCEEDS
+    assert outside.utilisation[0] == pytest.approx((80 + 120 * 0.95 * 125 / 150 - 25) / 125)
 
 
 def test_an_ambient_at_the_limit_exceeds_without_a_number() -> None:
@@ -235,6 +413,18 @@ def test_an_ambient_at_the_limit_exceeds_without_a_number() -> None:
 
 
 # all
+
+
+def test_the_marginal_share_itself_is_within_and_the_whole_allowance_marginal() -> None:
+    assert [Status(s) for s in status_of(np.asarray([0.8, 0.8 + 1e-12, 1.0, 1.0 + 1e-12]), np.asarray([0.8]))] == [
+        Status.WITHIN, Status.MARGINAL, Status.MARGINAL, Status.EXCEEDS]  # fmt: skip
+    assert status(only(voltage.find(judged(held(128, 0.1))))) is Status.WITHIN
+
+
+@pytest.mark.parametrize(("keys", "words"), [(("a.x",), "a.x is not stated"), (("a.x", "b.y"), "a.x, b.y are not")])
+def test_what_the_temperatures_lack_is_named_in_a_sentence(keys: tuple[str, ...], words: str) -> None:
+    gone = tuple(Missing(key=key, where="the drawing") for key in keys)
+    assert words in said(only(dissipation.find(judged(held(10, 1), T_case=np.nan, missing=gone))))
 
 
 @given(st.floats(1.0, 5.0), st.floats(0.1, 12.0), st.floats(1e-4, 0.5))
