@@ -59,9 +59,16 @@ class Cells:
         self.sheet.declared.key(self.table, name)
         return name in self.data
 
+    def _ask(self, name: str) -> Key | None:
+        """The declaration of a key whose value a reader takes now, and a note that it did."""
+        key = self.sheet.declared.key(self.table, name)
+        if key is not None:
+            self.sheet.ledger.asked.add(key.path)
+        return key
+
     def _value(self, name: str) -> tuple[Key | None, Value | None]:
         """Declaration and checked value; the default's, which is then listed as an assumption."""
-        key = self.sheet.declared.key(self.table, name)
+        key = self._ask(name)
         if key is None or name in self.data:
             return key, self.sheet.values.get(joined(self.path, name))
         if key.default is None:
@@ -150,9 +157,8 @@ class Cells:
         """The inline table of a key, or a sub-table; None when absent or not a table."""
         path = f"{self.table}.{name}" if self.table else name
         declared = self.sheet.declared
-        key = declared.own(self.table).get(name)
+        key = self._ask(name) if path not in declared.tables or name in declared.own(self.table) else None
         if key is None and path not in declared.tables:
-            declared.key(self.table, name)  # KeyError for a name that nobody declared
             return None
         raw = self.data.get(name)
         if not isinstance(raw, dict) or (key is not None and key.not_built):
@@ -163,7 +169,7 @@ class Cells:
 
     def listed(self, name: str) -> tuple[Cells, ...]:
         """The elements of an array of tables."""
-        key = self.sheet.declared.key(self.table, name)
+        key = self._ask(name)
         raw = self.data.get(name)
         if key is None or not isinstance(raw, list):
             return ()
@@ -177,7 +183,7 @@ class Cells:
     def raw(self, name: str) -> object:
         """The TOML value as it stands (tree, or a quantity's text), or the default's; None when absent or
         refused."""
-        key = self.sheet.declared.key(self.table, name)
+        key = self._ask(name)
         if key is None or key.not_built:
             return None
         if name in self.data:

@@ -41,6 +41,7 @@ class Ledger:
     spreads: dict[str, Spread] = field(default_factory=dict)
     assumptions: dict[str, None] = field(default_factory=dict)  # an ordered set
     cautions: dict[tuple[str, str], None] = field(default_factory=dict)
+    asked: set[str] = field(default_factory=set)  # paths, as declared, of the keys whose values a reader took
     _problems: dict[tuple[str, str], str] = field(default_factory=dict)  # (dotted key, problem) -> remedy
 
     @property
