@@ -292,7 +292,7 @@ def _check_swing(cells: Cells, stage: PushPull, Z_mod: np.ndarray, phi: np.ndarr
 
 
 def duties(load: PushPull, fitted: Fitted) -> tuple[Duty, ...]:
-    """idle when I_Q is stated; worst-level, full-level and any-level, or at-level; shorted-output with I_limit."""
+    """idle; worst-level, full-level and any-level, or at-level; shorted-output with I_limit."""
     return every_duty(load, fitted)
 
 
@@ -315,7 +315,7 @@ def not_analysed(load: PushPull) -> tuple[str, ...]:
     """What the file leaves open, by name."""
     left = []
     if not load.I_Q_stated:
-        left.append("idle (I_Q not stated)")
+        left.append("idle at a bias current (I_Q not stated, taken as 0)")
     if load.I_limit is None:
         left.append("shorted output (no I_limit)")
     if load.f is not None and not load.dc_protected:

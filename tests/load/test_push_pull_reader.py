@@ -190,12 +190,12 @@ def test_a_rail_that_is_not_stated_brings_no_second_problem() -> None:
     assert [key for key, _ in refused(text + more)] == ["load.V_rail"]
 
 
-def test_an_idle_current_that_is_not_stated_is_asked_for_and_gives_no_idle_duty() -> None:
+def test_an_idle_current_that_is_not_stated_is_asked_for_and_counts_as_nothing() -> None:
     made = stages.document("push-pull", PLAIN)
     stage = push_pull.read(made.table("load"), Surround(folder=Path("."), device_kind="npn"))
     assert any("I_Q not stated" in said and "state I_Q" in said for said in made.assumptions)
-    assert "idle (I_Q not stated)" in push_pull.not_analysed(stage)
-    assert list(stages.duties("push-pull", PLAIN)) == ["worst-level", "full-level", "any-level"]
+    assert "idle at a bias current (I_Q not stated, taken as 0)" in push_pull.not_analysed(stage)
+    assert list(stages.duties("push-pull", PLAIN)) == ["idle", "worst-level", "full-level", "any-level"]
     stated = PLAIN + 'I_Q = "0 A"\n'
     assert not any("idle" in said for said in push_pull.not_analysed(read(stated)))
     assert next(iter(stages.duties("push-pull", stated))) == "idle"

@@ -26,9 +26,7 @@ def every_duty(load: PushPull, fitted: Fitted) -> tuple[Duty, ...]:
         levels = _any_level(load, fitted, driven)
     else:
         levels = _at_level(load, fitted, driven)
-    # Without a stated idle current an idle duty of 0 W would be evidence of nothing.
-    idle = (_idle(load, fitted, driven),) if load.I_Q_stated else ()
-    return (*idle, *levels, *_shorted(load, fitted))
+    return (_idle(load, fitted, driven), *levels, *_shorted(load, fitted))
 
 
 def _always(locus: Locus) -> Callable[[FloatArray | None], Locus]:
