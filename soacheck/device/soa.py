@@ -28,8 +28,8 @@ class Allowed:
     """Allowance of one curve; the arrays share the broadcast shape of v and T.
 
     current: [A], NaN right of the last point or where an input is not a number.
-    rating_limited: the allowance is the current rating, or a flat that is printed at the rating or above
-    it; then the current limits judge, not the safe area.
+    rating_limited: the allowance is the current rating; then the current limits judge, not the safe area.
+    A flat that `reading` lowers below the rating is a curve like any other.
     """
 
     current: FloatArray
@@ -175,13 +175,46 @@ def allowed_current(
     stack = np.stack(lines)
     unknown = np.isnan(stack).any(axis=0)
     current = np.where(unknown, np.nan, stack.min(axis=0))
-    # Within a hair of the least: where the rating or a flat that stands for it meets another line, the rating counts.
-    at_rating, at_flat = stack[:2] <= current * (1 + 1e-9)
-    flat_is_rating = curve.points[:, 1].max() >= rating * (1.0 - 1e-9)
+    # Within a hair of the least: where the rating meets another line, the rating counts.
+    at_rating = rating <= current * (1 + 1e-9)
     return Allowed(
         current=np.asarray(current, dtype=np.float64),
-        rating_limited=np.asarray((current > 0.0) & (at_rating | (at_flat & flat_is_rating)), dtype=np.bool_),
+        rating_limited=np.asarray((current > 0.0) & at_rating, dtype=np.bool_),
     )
+
+
+def heat_current(
+    curve: SafeAreaCurve,
+    v: FloatArray,
+    *,
+    T: FloatArray,
+    T_j_max: float | FloatArray,
+    derating: SafeAreaDerating,
+    Z: FloatArray | None,
+    voltage_scaled: bool,
+) -> FloatArray:
+    """What second breakdown and dissipation would allow at a voltage, were there no rating and no flat. [A]
+
+    The line below the flat goes on to the left, at its own slope and never flatter than constant power.
+    Parameters as of `allowed_current`; NaN right of the last point.
+    Range: 0 < v. Infinite for a rectangle that neither a slope nor a known Z limits.
+    """
+    v = np.asarray(v, dtype=np.float64)
+    points = effective_points(curve)
+    convention = derating if Z is not None else SafeAreaDerating(convention="like-dissipation")
+    factor = breakdown_factor(convention, T, curve.T_ref, T_j_max)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        heat = np.inf if Z is None else np.maximum((T_j_max - T) / (Z * np.maximum(v, _TINY)), 0.0)
+        scaled_v = v / factor if voltage_scaled else v
+    if len(points) == 1 and Z is not None:
+        line = np.where(np.isnan(factor), np.nan, np.inf)
+    else:
+        steep = max(1.0, _slope(points, 0)) if len(points) > 1 else 1.0
+        log_v = np.log(np.clip(scaled_v, _TINY, 1e12))  # a factor of 0 puts v at infinity; that allowance is 0 below
+        left = np.clip(steep * (np.log(points[0, 0]) - log_v), 0.0, 200.0)
+        below = _scaled_voltage(points, v, factor, Z is None) if voltage_scaled else curve_current(points, v) * factor
+        line = np.where(factor <= 0.0, 0.0, below * np.exp(left))
+    return np.asarray(np.where(v > points[-1, 0], np.nan, np.minimum(line, heat)), dtype=np.float64)
 
 
 def _log_current(points: FloatArray, log_v: FloatArray) -> FloatArray:

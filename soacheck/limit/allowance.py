@@ -12,7 +12,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from soacheck.device.ratings import SafeAreaCurve, SafeAreaDerating
-from soacheck.device.soa import Allowed, allowed_current
+from soacheck.device.soa import Allowed, allowed_current, heat_current
 from soacheck.heat.ladder import network
 from soacheck.limit.judged import Judged
 from soacheck.limit.path import Path
@@ -76,11 +76,14 @@ class Share:
 
     r (case, member, time): i/allowance; 0 where the point does not count or a current rating is the allowance.
     raw: the same where a current rating is the allowance too; NaN where the line says nothing.
+    exempt: conducts, and the current limits alone judge (a rating is the allowance, or the device is on), or the
+    reverse-bias area does.
     beyond, zero (case, member): conducts where nothing is known; conducts where nothing is allowed.
     """
 
     r: FloatArray
     raw: FloatArray
+    exempt: BoolArray
     beyond: BoolArray
     zero: BoolArray
 
@@ -155,19 +158,45 @@ def allowed(line: Line, v: FloatArray, members: IntArray) -> Allowed:
 
     members (1 or case, member): which members of the duty the voltages belong to.
     """
-    T = np.broadcast_to(line.T, (v.shape[0], line.T.shape[1]))
-    if T.shape[1] > 1:
-        T = np.take_along_axis(T, np.broadcast_to(members, v.shape[:2]), axis=1)
     return allowed_current(
         line.curve,
         v,
-        T=T[..., None],
+        T=_T_of(line, v, members),
         T_j_max=line.T_j_max[:, None, None],
         derating=line.derating,
         Z=None if line.Z is None else line.Z[..., None],
         I_rating=line.rating[:, None, None],
         voltage_scaled=line.voltage_scaled,
     )
+
+
+def _T_of(line: Line, v: FloatArray, members: IntArray) -> FloatArray:
+    T = np.broadcast_to(line.T, (v.shape[0], line.T.shape[1]))
+    if T.shape[1] > 1:
+        T = np.take_along_axis(T, np.broadcast_to(members, v.shape[:2]), axis=1)
+    return T[..., None]
+
+
+def warmth(line: Line, path: Path, one: Share) -> FloatArray | None:
+    """Share of the points that the line does not judge: what they do to the hot spot, (case, member, time).
+
+    Not to be judged does not keep a point from heating. It counts with i over what second breakdown or dissipation
+    would allow there, never more than 1, so that it cannot touch by itself. None where there is no such point.
+    """
+    if not bool(np.any(one.exempt)):
+        return None
+    would = heat_current(
+        line.curve,
+        path.v,
+        T=_T_of(line, path.v, path.members),
+        T_j_max=line.T_j_max[:, None, None],
+        derating=line.derating,
+        Z=None if line.Z is None else line.Z[..., None],
+        voltage_scaled=line.voltage_scaled,
+    )
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        x = path.i / (would * line.factor[:, None, None])
+    return np.where(one.exempt, np.where(x < 1, x, 1.0), 0.0)
 
 
 def share(line: Line, path: Path) -> Share:
@@ -182,34 +211,54 @@ def share(line: Line, path: Path) -> Share:
     return Share(
         r=np.where(judged_here & ~np.isnan(raw), np.minimum(raw, NOTHING), 0.0),
         raw=np.where(path.counted, raw, 0.0),
+        exempt=(path.v > 0) & path.conducts & ~judged_here,
         beyond=np.asarray(np.any(unknown, axis=2), dtype=np.bool_),
         zero=np.asarray(np.any(none, axis=2), dtype=np.bool_),
     )
 
 
-def shares(
-    lines: Lines, path: Path, dc: Share | None, duty_factor: FloatArray, only: list[int] | None = None
-) -> tuple[FloatArray, ...]:
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Shares:
     """r of every distinct pulse width, rising, (case, member, time).
 
+    known: the same, 0 where the curve of a width says nothing, so that nothing rests on what stands in for it.
+    ended: conducts right of a pulse curve's last point, (pulse curve, case, member).
+    """
+
+    r: tuple[FloatArray, ...]
+    known: tuple[FloatArray, ...]
+    ended: BoolArray
+
+
+def shares(
+    lines: Lines, path: Path, dc: Share | None, duty_factor: FloatArray, only: list[int] | None = None
+) -> Shares:
+    """Shares of the pulse curves.
+
     Two curves of one width: the lower counts. A curve for repeated pulses that the locus repeats too densely for is
-    stood in for by the next longer one. Where the dc curve allows more, it counts.
+    stood in for by the next longer one, and so is a curve that says nothing at a voltage, right of its last point.
+    Where the dc curve allows more, it counts.
     duty_factor: of the locus, (case, member). only: numbers of the widths that are wanted, all when absent.
     """
-    longer = None if dc is None else dc.r
-    made: list[FloatArray] = []
+    longer = longer_known = None if dc is None else dc.r
+    made: list[tuple[FloatArray, FloatArray]] = []
+    ended = np.zeros((len(lines.pulses), *path.v.shape[:2]), dtype=np.bool_)
     wanted = lines.widths if only is None else tuple(lines.widths[k] for k in only)
     for width in reversed(wanted):
-        here: FloatArray | None = None
-        for line in lines.pulses:
+        here: list[tuple[FloatArray, FloatArray]] = []
+        for number, line in enumerate(lines.pulses):
             if line.pulse != width:
                 continue
             one = share(line, path)
-            r = one.r if dc is None else np.where(np.isnan(one.raw), dc.r, np.where(dc.raw < one.r, dc.raw, one.r))
-            if np.isfinite(line.duty_factor) and longer is not None:
-                r = np.where(duty_factor[..., None] <= line.duty_factor, r, longer)
-            here = r if here is None else np.maximum(here, r)
-        if here is not None:
-            made.append(here)
-            longer = here
-    return tuple(reversed(made))
+            r = known = one.r if dc is None else np.where(dc.raw < one.r, dc.raw, one.r)
+            if bool(np.any(one.beyond)):
+                ended[number] = one.beyond
+                r = r if longer is None else np.where(np.isnan(one.raw), longer, r)
+            if np.isfinite(line.duty_factor) and longer is not None and longer_known is not None:
+                sparse = duty_factor[..., None] <= line.duty_factor
+                r, known = np.where(sparse, r, longer), np.where(sparse, known, longer_known)
+            here.append((r, known))
+        longer, longer_known = (np.maximum.reduce(each) for each in zip(*here, strict=True))
+        made.append((longer, longer_known))
+    r_of, known_of = zip(*reversed(made), strict=True) if made else ((), ())
+    return Shares(r=r_of, known=known_of, ended=ended)

@@ -6,11 +6,11 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from soacheck.limit.allowance import Line, Lines, share
+from soacheck.limit.allowance import Line, Lines, allowed, share
 from soacheck.limit.by_hand import hand_calculation, plain_name
 from soacheck.limit.found import Point, Verdict
 from soacheck.limit.judged import Judged
-from soacheck.limit.path import path_of
+from soacheck.limit.path import Path, path_of
 from soacheck.limit.screen import Screen
 from soacheck.limit.superposition import printed
 from soacheck.limit.two_tests import Tests, Worked, tests_of
@@ -58,14 +58,27 @@ def governing(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked:
 
     region = np.take_along_axis(path.region, at[:, None, None], axis=2)[:, 0, 0]
     point = Point(t=there(path.t), v=there(path.v), i=there(path.i), region=np.where(nothing, -1, region))
-    trace = hand_calculation(judged, lines, decided, point.v, curve[:, 0], test == RESIDENCE)
-    applied = found("I", point.i, "A", "current at the point that touches")
+    idle = use == 0
+    v_idle = _nearest(measure, path)
+    trace = hand_calculation(judged, lines, decided, np.where(idle, v_idle, point.v), curve[:, 0], test == RESIDENCE)
+    applied = found(
+        "I", np.where(idle, 0.0, point.i), "A", "current at the point that touches; 0 where no point is judged"
+    )
     zero = decided.of(seen.zero)
     shape = _response(lines, seen, pick) if lines.widths and path.use is not Use.HELD else ()
     allowed = _allowed(path.use, lines, use, zero, applied, stay[:, 0], tests, trace, shape)
     held = path.use is Use.HELD
-    reasons = () if held else _reasons(lines, test, curve[:, 0], ~np.isnan(use) & (use > 0))
+    reasons = () if held else _reasons(lines, test, curve[:, 0], tests.warmed[:, 0], ~np.isnan(use) & (use > 0))
     return Governing(point=point, applied=applied, allowed=allowed, trace=trace, reasons=reasons)
+
+
+def _nearest(measure: Line, path: Path) -> FloatArray:
+    """Voltage of the point with the largest share of a curve's allowance, judged or not, (case,). [V]"""
+    may = allowed(measure, path.v, path.members).current
+    with np.errstate(divide="ignore", invalid="ignore"):
+        ratio = np.where(np.isnan(may), -1.0, path.i / may)
+    at = np.argmax(np.where(np.isnan(ratio), -1.0, ratio), axis=2)
+    return np.asarray(np.take_along_axis(path.v, at[..., None], axis=2)[:, 0, 0], dtype=np.float64)
 
 
 def _largest(
@@ -85,14 +98,16 @@ def _largest(
 def _response(lines: Lines, seen: Screen, pick: IntArray) -> tuple[Traced, ...]:
     """The hot spot's step response as it was read from the curves, and the greatest x."""
     v = np.take_along_axis(seen.v_top, pick, axis=1)
-    _, g = printed(lines, v, pick)
+    _, g, unknown = printed(lines, v, pick)
     labels = {line.pulse: line.label for line in lines.pulses}
+    how = "I_dc/I(t_p) at V_g, both scaled"
+    ended = f"{how}; where this curve has ended, that of the next longer pulse"
     V = found("V_g", v[:, 0], "V", "voltage of the greatest x")
     return (
         V,
         found("x_max", np.take_along_axis(seen.top, pick, axis=1)[:, 0], "1", "greatest x = i/I_dc(v)", V),
         *(
-            found(f"g_{plain_name(labels[width])}", g[:, 0, k], "1", "I_dc/I(t_p) at V_g, both scaled", V)
+            found(f"g_{plain_name(labels[width])}", g[:, 0, k], "1", ended if unknown[:, 0, k].any() else how, V)
             for k, width in enumerate(lines.widths)
         ),
     )
@@ -111,6 +126,8 @@ def _allowed(
 ) -> Traced:
     with np.errstate(divide="ignore", invalid="ignore"):
         limit = np.where(utilisation > 0, applied.value / utilisation, np.where(zero, 0.0, np.nan))
+    # Where nothing is judged, what the curve that everything is measured by allows at the point nearest to it.
+    limit = np.where(utilisation == 0, trace[-1].value, limit)
     if use is Use.HELD and lines.dc is not None:
         return found("I_allowed", limit, "A", "the dc curve scaled to the temperature reached", *trace[-1:])
     how = "current at the point that touches over the utilisation, the largest of the tests"
@@ -129,7 +146,7 @@ def _allowed(
     )
 
 
-def _reasons(lines: Lines, test: IntArray, curve: IntArray, clear: BoolArray) -> tuple[Reason, ...]:
+def _reasons(lines: Lines, test: IntArray, curve: IntArray, warmed: BoolArray, clear: BoolArray) -> tuple[Reason, ...]:
     """Which test governs, said of the cases in which it does."""
     labels = {line.pulse: line.label for line in lines.pulses}
     names = [*(labels[width] for width in lines.widths), "dc"]
@@ -141,6 +158,11 @@ def _reasons(lines: Lines, test: IntArray, curve: IntArray, clear: BoolArray) ->
         (
             "Superposition governs: the response of the hot spot to the whole locus touches (own derivation).",
             test == SUPERPOSITION,
+        ),
+        (
+            "Points that the current limits judge, or at which the device is on, are part of the response; they warm "
+            "the hot spot and cannot touch.",
+            (test == SUPERPOSITION) & warmed,
         ),
         ("The share of the shortest printed curve governs.", test == SHORTEST),
         ("The reverse-bias area at turn-off governs.", test == TURN_OFF),

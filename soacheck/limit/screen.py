@@ -6,7 +6,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from soacheck.limit.allowance import Lines, Share, share, shares
+from soacheck.limit.allowance import Lines, Share, share, shares, warmth
 from soacheck.limit.duration import time_above
 from soacheck.limit.hot_spot import printed_response
 from soacheck.limit.judged import Judged
@@ -17,14 +17,14 @@ from soacheck.locus import Use
 from soacheck.trace import BoolArray, FloatArray, IntArray
 
 ELEMENTS = 2_000_000  # of the largest array of one piece of work
-FIT = 1.1  # room for the fit of the hot spot's response
+FIT = 1.01  # room for the fit of the hot spot's response
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Screen:
     """Per (case, member), measured by the dc curve or, without one, by the longest pulse.
 
-    top: greatest share; v_top: the voltage it stands at. low, high: bounds of the utilisation.
+    top: greatest share that is judged; v_top: the voltage it stands at. low, high: bounds of the utilisation.
     duty_factor: the larger of the share of time above the measure and P_mean/P_peak.
     lasting: without a dc curve, active conduction that lasts or repeats beyond the longest pulse.
     beyond, zero: conducts where nothing is known, where nothing is allowed. reversed: collector below emitter. hole: a
@@ -95,12 +95,16 @@ def _piece(judged: Judged, lines: Lines, members: IntArray) -> Screen:
     with np.errstate(divide="ignore", invalid="ignore"):
         crest = np.nan_to_num(pick(operating.P_mean) / pick(operating.P_peak))
     density = np.maximum(time_above(path.t, one.r, 1.0, path.use), crest)
-    mean = np.minimum(mean_of(path, one.r), top) if path.use is Use.REPEATED else np.zeros(shape)
     if path.use is Use.HELD:
         low = high = top
     else:
-        low = mean if lines.dc is not None else np.zeros(shape)
-        high = _high(lines, path, one, density, top, v_top, mean)
+        warm = warmth(measure, path, one)
+        whole = one.r if warm is None else one.r + warm
+        mean = mean_of(path, whole) if path.use is Use.REPEATED else np.zeros(shape)
+        # What is not judged warms the hot spot, but does not touch: the mean bounds nothing from below there.
+        certain = warm is None and lines.dc is not None
+        low = np.minimum(mean, top) if certain else np.zeros(shape)
+        high = np.where(top > 0, _high(lines, path, one, density, whole.max(axis=2), v_top, mean), 0.0)
 
     return Screen(
         top=top,
@@ -130,7 +134,7 @@ def _high(
     """Upper bound of the utilisation, from the curves that a locus of this length can stay above for too long.
 
     Of the superposition: what happened within the last period answers with g(period) at most, what happened before with
-    the mean (g grows no faster than time).
+    the mean (g grows no faster than time). top, mean: of all that warms the hot spot.
     """
     if lines.dc is None or not lines.widths:
         return top
@@ -140,8 +144,8 @@ def _high(
         return top
     number = max(int(np.searchsorted(widths, longest)), 0)  # the longest curve whose next shorter width is less
     none = np.zeros((1, 1))
-    r = shares(lines, path, one, density, only=sorted({0, number}))
-    times, g = printed(lines, v_top, path.members)
+    r = shares(lines, path, one, density, only=sorted({0, number})).r
+    times, g, _ = printed(lines, v_top, path.members)
     grown = printed_response(times, g, np.asarray([longest]))[..., 0]
     slow = np.all(np.diff(np.log(g), axis=-1) <= np.diff(np.log(times)) * (1 + 1e-9), axis=-1)
     response = np.where(slow, FIT * grown * top + (mean if path.use is Use.REPEATED else none), top)

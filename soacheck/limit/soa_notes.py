@@ -13,6 +13,7 @@ from soacheck.limit.two_tests import Worked
 from soacheck.locus import Use
 from soacheck.result import Status
 from soacheck.table import Missing
+from soacheck.trace import BoolArray
 
 DC_MISSING = Missing(key="soa[dc]", where="safe-area chart: the line marked dc")
 SHORTER_MISSING = Missing(key="soa[shorter]", where="safe-area chart: a line for a shorter pulse")
@@ -58,6 +59,7 @@ def _shorter(judged: Judged, lines: Lines, worked: Worked) -> tuple[Note, ...]:
     if not bool(np.any(worked.shorter)):
         return ()
     label = lines.pulses[0].label if lines.pulses else "dc"
+    ended = worked.ended.any(axis=0)
     above = f"Above the {label} curve, the shortest printed one, for less than its width"
     answer = (
         f"The response of the hot spot touches only because nothing is known below {label}, the shortest printed curve"
@@ -69,9 +71,29 @@ def _shorter(judged: Judged, lines: Lines, worked: Worked) -> tuple[Note, ...]:
     open_ = worked.shorter & ~worked.crossed
     return (
         Note(text=f"{above}: {needed}", holds=open_ & worked.above, best=Status.UNPROVEN, missing=(SHORTER_MISSING,)),
-        Note(text=f"{answer}: {needed}", holds=open_ & ~worked.above, best=Status.UNPROVEN, missing=(SHORTER_MISSING,)),
+        Note(
+            text=f"{answer}: {needed}",
+            holds=open_ & ~worked.above & ~ended,
+            best=Status.UNPROVEN,
+            missing=(SHORTER_MISSING,),
+        ),
+        *_ended(lines, worked.ended & open_),
         Note(text=f"{above}, and {crossed}", holds=worked.shorter & worked.crossed, best=Status.EXCEEDS),
     )
+
+
+def _ended(lines: Lines, holds: BoolArray) -> tuple[Note, ...]:
+    """Right of a pulse curve's last point, and the longer curves in its stead do not show the locus to be inside."""
+    notes = []
+    for line, where in zip(lines.pulses, holds, strict=True):
+        end = line.curve.points[-1, 0]
+        text = (
+            f"Current flows above {end:.4g} V, where the {line.label} curve ends; nothing is known there, and the "
+            "longer curves do not allow it."
+        )
+        more = Missing(key=f"soa[{line.label}]", where=f"safe-area chart: the line beyond {end:.4g} V")
+        notes.append(Note(text=text, holds=where, best=Status.UNPROVEN, missing=(more,)))
+    return tuple(notes)
 
 
 def _dense(judged: Judged, lines: Lines, seen: Screen, worked: Worked) -> tuple[Note, ...]:

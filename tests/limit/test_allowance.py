@@ -53,7 +53,7 @@ def test_a_repeated_curve_is_stood_in_for_by_the_next_longer_one() -> None:
     assert lines.dc is not None
     dc = share(lines.dc, path)
     for density, allowed in ((0.1, 10.0), (0.3, 10.0), (0.31, 6.0)):
-        ten, hundred = shares(lines, path, dc, np.array([[density]]))
+        ten, hundred = shares(lines, path, dc, np.array([[density]])).r
         assert ten.max() == pytest.approx(4 / allowed)
         assert hundred.max() == pytest.approx(4 / 6)
 
@@ -87,7 +87,7 @@ def test_of_many_members_the_worst_is_found() -> None:
     # Second way: each member asked alone.
     random = np.random.default_rng(11)
     t = np.linspace(0, 1, 25) * 8e-3
-    v, i = random.uniform(5, 120, (40, 25)), random.uniform(0, 3, (40, 25)) * random.uniform(0.1, 1.5, (40, 1))
+    v, i = random.uniform(5, 120, (40, 25)), random.uniform(0, 9, (40, 25)) * random.uniform(0.1, 1.5, (40, 1))
     together = only(safe_area.find(judged(repeated(t, v, i))))
     alone = [only(safe_area.find(judged(repeated(t, v[m], i[m])))) for m in range(40)]
     worst = max(status(one) for one in alone)

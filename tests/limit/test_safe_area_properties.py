@@ -66,7 +66,7 @@ def test_more_current_is_never_better(locus: Locus, name: str, factor: float) ->
 @given(loci(), st.floats(5.0, 100.0), names, st.floats(1.0, 1.5))
 def test_more_voltage_is_never_better(locus: Locus, v: float, name: str, factor: float) -> None:
     here = flat_voltage(locus, v)
-    # The response of the hot spot is read at one voltage and fitted to about 1 %.
+    # The response of the hot spot is read at one voltage.
     assert no_better(ask(replace(here, v=here.v * factor), name), ask(here, name), hair=0.02)
 
 
@@ -84,7 +84,9 @@ def test_a_locus_inside_the_scaled_dc_curve_is_inside(locus: Locus, name: str, s
     seen = screen(asked, lines_of(asked))
     assume(bool(seen.top[0, 0] > 0) and not bool(seen.beyond[0, 0]))
     finding = ask(replace(locus, i=locus.i * (share / seen.top[0, 0])), name)
-    assert finding.utilisation[0] <= share * (1 + 1e-6)
+    # Points that are left to the current limits warm the hot spot, with a share of 1 at most.
+    left_out = any("warm the hot spot" in reason.text for reason in finding.reasons)
+    assert finding.utilisation[0] <= (1.0 if left_out else share) * (1 + 1e-6)
     assert status(finding) in (Status.WITHIN, Status.MARGINAL)
 
 

@@ -57,6 +57,10 @@ def test_a_flat_at_the_current_rating_is_left_to_the_current_limits() -> None:
     finding = only(safe_area.find(judged(held(10, 19.0), PART)))
     assert finding.utilisation[0] == 0.0
     assert "current limits judge" in said(finding)
+    # In words and figures: none of the current is judged here, of the rating that the chart allows.
+    assert finding.applied is not None
+    assert finding.allowed is not None
+    assert (finding.applied.at(0), finding.allowed.at(0)) == (0.0, 20.0)
 
 
 @pytest.mark.parametrize("T_case", [25, 50, 75, 100, 125])
@@ -129,6 +133,14 @@ def test_the_lower_reading_is_used() -> None:
     less = only(safe_area.find(judged(held(80, 1.0), device(soa=(curve("dc", np.inf, (10, 15), (160, 0.9),
                                                                        reading=0.1),)))))  # fmt: skip
     assert less.utilisation[0] == pytest.approx(plain.utilisation[0] / 0.9, rel=1e-9)
+
+
+def test_a_flat_that_is_read_lower_is_a_curve_and_no_rating() -> None:
+    # By hand: a flat of 15 A = I_C read 10 % lower is 13.5 A.
+    lowered = device(soa=(curve("dc", np.inf, (5, 15), (10, 15), (50, 3), (160, 0.2), reading=0.1),))
+    finding = only(safe_area.find(judged(repeated([0, 1], [6, 6], [14.5, 14.5]), lowered)))
+    assert finding.utilisation[0] == pytest.approx(14.5 / 13.5, rel=1e-9)
+    assert status(finding) is Status.EXCEEDS
 
 
 def test_own_safe_area_factor_takes_its_share() -> None:
