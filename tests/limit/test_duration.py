@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import assume, given
 from hypothesis import strategies as st
 
 from soacheck.limit.duration import bisect, exact_where_it_matters, longest_run, time_above
@@ -53,6 +53,7 @@ def test_runs_are_those_of_fine_sampling(points: list[tuple[float, float]], use:
     # Second way: the straight line sampled finely, its runs counted one by one.
     t = np.cumsum([0.0] + [dt for dt, _ in points[1:]])
     r = np.array([value for _, value in points])
+    assume(not bool(np.any(r == 1.0)))  # a touch breaks a run, and samples do not see it
     step = t[-1] / 20000
     fine = np.arange(20000) * step + step / 2
     above = np.interp(fine, t, r) > 1.0
