@@ -171,10 +171,7 @@ def allowed_current(
         heat = np.inf if Z is None else np.maximum((T_j_max - T) / (Z * np.maximum(v, _TINY)), 0.0)
 
     flat, rating = points[0, 1], np.asarray(I_rating, dtype=np.float64)
-    lines = np.broadcast_arrays(rating, flat, np.minimum(scaled, printed), heat)
-    stack = np.stack(lines)
-    unknown = np.isnan(stack).any(axis=0)
-    current = np.where(unknown, np.nan, stack.min(axis=0))
+    current = np.minimum(np.minimum(scaled, printed), np.minimum(np.minimum(rating, flat), heat))  # NaN stays
     # Within a hair of the least: where the rating meets another line, the rating counts.
     at_rating = rating <= current * (1 + 1e-9)
     return Allowed(

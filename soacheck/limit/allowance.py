@@ -14,6 +14,7 @@ import numpy as np
 from soacheck.device.ratings import SafeAreaCurve, SafeAreaDerating
 from soacheck.device.soa import Allowed, allowed_current, heat_current
 from soacheck.heat.ladder import network
+from soacheck.heat.modes import Modes
 from soacheck.limit.judged import Judged
 from soacheck.limit.path import Path
 from soacheck.locus import Use
@@ -95,6 +96,7 @@ def lines_of(judged: Judged) -> Lines:
     T_case = operating.T_before if once else operating.T_case_peak
     T_air = operating.T_before if once else operating.T_air
     made, left_out = [], []
+    transient = _transient(judged)
     for curve in device.soa:
         if curve.bias != "forward":
             continue
@@ -113,7 +115,7 @@ def lines_of(judged: Judged) -> Lines:
                 curve=curve,
                 derating=device.soa_derating,
                 T=T_air if from_air else T_case,
-                Z=_Z(judged, curve.pulse, from_air),
+                Z=_Z(judged, transient, curve.pulse, from_air),
                 T_j_max=ratings.T_j.value,
                 rating=_rating(judged, curve.pulse),
                 factor=judged.rules.safe_area.value,
@@ -137,7 +139,15 @@ def _rating(judged: Judged, pulse: float) -> FloatArray:
     return np.where(short, ratings.I_peak.value, ratings.I_max.value)
 
 
-def _Z(judged: Judged, pulse: float, from_air: bool) -> FloatArray | None:
+def _transient(judged: Judged) -> Modes | None:
+    """Modes from the junction to a case that is held; None where they are not known."""
+    ladder, R = judged.operating.ladder, judged.operating.R_th_jc
+    if ladder is None or R is None:
+        return None
+    return network(ladder, R.value, np.full_like(R.value, 1e-9), None, None)
+
+
+def _Z(judged: Judged, modes: Modes | None, pulse: float, from_air: bool) -> FloatArray | None:
     """Thermal resistance from the junction to the curve's node for a pulse width, (case, 1); None where not known."""
     operating, R_ja = judged.operating, judged.device.thermal.R_th_ja
     if from_air:
@@ -147,9 +157,8 @@ def _Z(judged: Judged, pulse: float, from_air: bool) -> FloatArray | None:
         return None
     if np.isinf(pulse):
         return R.value[:, None]
-    if operating.ladder is None:
+    if modes is None:
         return None
-    modes = network(operating.ladder, R.value, np.full_like(R.value, 1e-9), None, None)
     return modes.step(np.asarray([pulse]))[:, modes.nodes.index("junction"), :]
 
 

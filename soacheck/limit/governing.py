@@ -6,13 +6,12 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from soacheck.limit.allowance import Line, Lines, allowed, share
+from soacheck.limit.allowance import Line, Lines, allowed
 from soacheck.limit.by_hand import hand_calculation, plain_name
 from soacheck.limit.found import Point, Verdict
 from soacheck.limit.judged import Judged
 from soacheck.limit.path import Path, path_of
 from soacheck.limit.screen import Screen
-from soacheck.limit.superposition import printed
 from soacheck.limit.two_tests import Tests, Worked, tests_of
 from soacheck.locus import Use
 from soacheck.result import Reason
@@ -38,14 +37,14 @@ def governing(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked:
     """Both tests worked out in full for the worst member of each case."""
     pick = decided.member[:, None]
     path = path_of(judged, pick)
-    tests = tests_of(judged, lines, seen, path)
+    tests = worked.tests(decided.member) or tests_of(judged, lines, seen, path)
     use = decided.of(worked.use)
     top = np.maximum(np.take_along_axis(seen.top, pick, axis=1), np.maximum(tests.shortest, tests.superposition.value))
     stay = np.where(tests.residence.fails(LOW * top), tests.residence.utilisation(LOW * top, top), 0.0)
     stay_at, curve = tests.residence.touching(np.where(stay > 0, stay, top))
     test, at = _largest(seen, tests, stay, stay_at, pick)
 
-    raw = share(measure, path).raw
+    raw = tests.measure.raw
     unknown = path.active & np.isnan(raw)
     blind = np.isnan(use) & np.any(unknown[:, 0], axis=1)
     at = np.where(blind, unknown.argmax(axis=2)[:, 0], at)
@@ -59,7 +58,7 @@ def governing(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked:
     region = np.take_along_axis(path.region, at[:, None, None], axis=2)[:, 0, 0]
     point = Point(t=there(path.t), v=there(path.v), i=there(path.i), region=np.where(nothing, -1, region))
     idle = use == 0
-    v_idle = _nearest(measure, path)
+    v_idle = _nearest(measure, path) if bool(np.any(idle)) else point.v
     trace = hand_calculation(judged, lines, decided, np.where(idle, v_idle, point.v), curve[:, 0], test == RESIDENCE)
     applied = found(
         "I", np.where(idle, 0.0, point.i), "A", "current at the point that touches; 0 where no point is judged"
@@ -98,7 +97,7 @@ def _largest(
 def _response(lines: Lines, seen: Screen, pick: IntArray) -> tuple[Traced, ...]:
     """The hot spot's step response as it was read from the curves, and the greatest x."""
     v = np.take_along_axis(seen.v_top, pick, axis=1)
-    _, g, unknown = printed(lines, v, pick)
+    g, unknown = (np.take_along_axis(a, pick[..., None], axis=1) for a in (seen.g, seen.g_unknown))
     labels = {line.pulse: line.label for line in lines.pulses}
     how = "I_dc/I(t_p) at V_g, both scaled"
     ended = f"{how}; where this curve has ended, that of the next longer pulse"

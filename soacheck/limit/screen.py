@@ -11,7 +11,7 @@ from soacheck.limit.duration import time_above
 from soacheck.limit.hot_spot import printed_response
 from soacheck.limit.judged import Judged
 from soacheck.limit.path import Path, path_of
-from soacheck.limit.superposition import mean_of, printed
+from soacheck.limit.superposition import mean_of, printed, times_of
 from soacheck.limit.turn_off import TurnOff, turn_off
 from soacheck.locus import Use
 from soacheck.trace import BoolArray, FloatArray, IntArray
@@ -24,7 +24,8 @@ FIT = 1.01  # room for the fit of the hot spot's response
 class Screen:
     """Per (case, member), measured by the dc curve or, without one, by the longest pulse.
 
-    top: greatest share that is judged; v_top: the voltage it stands at. low, high: bounds of the utilisation.
+    top: greatest share that is judged; v_top: the voltage it stands at; g, g_unknown: what `printed` gives there
+    (case, member, n), nothing for held points or without pulse curves. low, high: bounds of the utilisation.
     duty_factor: the larger of the share of time above the measure and P_mean/P_peak.
     lasting: without a dc curve, active conduction that lasts or repeats beyond the longest pulse.
     beyond, zero: conducts where nothing is known, where nothing is allowed. reversed: collector below emitter. hole: a
@@ -33,6 +34,8 @@ class Screen:
 
     top: FloatArray
     v_top: FloatArray
+    g: FloatArray
+    g_unknown: BoolArray
     low: FloatArray
     high: FloatArray
     duty_factor: FloatArray
@@ -62,6 +65,8 @@ def screen(judged: Judged, lines: Lines) -> Screen:
         for name in (
             "top",
             "v_top",
+            "g",
+            "g_unknown",
             "low",
             "high",
             "duty_factor",
@@ -95,6 +100,9 @@ def _piece(judged: Judged, lines: Lines, members: IntArray) -> Screen:
     with np.errstate(divide="ignore", invalid="ignore"):
         crest = np.nan_to_num(pick(operating.P_mean) / pick(operating.P_peak))
     density = np.maximum(time_above(path.t, one.r, 1.0, path.use), crest)
+    g, g_unknown = np.ones((*shape, 0)), np.zeros((*shape, 0), dtype=np.bool_)
+    if lines.widths and path.use is not Use.HELD:
+        g, g_unknown = printed(lines, v_top, members)
     if path.use is Use.HELD:
         low = high = top
     else:
@@ -104,11 +112,13 @@ def _piece(judged: Judged, lines: Lines, members: IntArray) -> Screen:
         # What is not judged warms the hot spot, but does not touch: the mean bounds nothing from below there.
         certain = warm is None and lines.dc is not None
         low = np.minimum(mean, top) if certain else np.zeros(shape)
-        high = np.where(top > 0, _high(lines, path, one, density, whole.max(axis=2), v_top, mean), 0.0)
+        high = np.where(top > 0, _high(lines, path, one, density, whole.max(axis=2), g, mean), 0.0)
 
     return Screen(
         top=top,
         v_top=v_top,
+        g=g,
+        g_unknown=g_unknown,
         low=low * (1 - 1e-9),
         high=high,
         duty_factor=density,
@@ -128,7 +138,7 @@ def _high(
     one: Share,
     density: FloatArray,
     top: FloatArray,
-    v_top: FloatArray,
+    g: FloatArray,
     mean: FloatArray,
 ) -> FloatArray:
     """Upper bound of the utilisation, from the curves that a locus of this length can stay above for too long.
@@ -145,7 +155,7 @@ def _high(
     number = max(int(np.searchsorted(widths, longest)), 0)  # the longest curve whose next shorter width is less
     none = np.zeros((1, 1))
     r = shares(lines, path, one, density, only=sorted({0, number})).r
-    times, g, _ = printed(lines, v_top, path.members)
+    times = times_of(lines)
     grown = printed_response(times, g, np.asarray([longest]))[..., 0]
     slow = np.all(np.diff(np.log(g), axis=-1) <= np.diff(np.log(times)) * (1 + 1e-9), axis=-1)
     response = np.where(slow, FIT * grown * top + (mean if path.use is Use.REPEATED else none), top)

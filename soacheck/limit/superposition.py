@@ -44,11 +44,9 @@ class Superposition:
     at: IntArray
 
 
-def printed(
-    lines: Lines, v: FloatArray, members: IntArray, *, least: bool = False
-) -> tuple[FloatArray, FloatArray, BoolArray]:
-    """Times (n,), g (case, member, n) of the printed curves at one voltage (case, member) of each member, and where it
-    is not printed, because a pulse curve says nothing at that voltage.
+def printed(lines: Lines, v: FloatArray, members: IntArray, *, least: bool = False) -> tuple[FloatArray, BoolArray]:
+    """g (case, member, n) of the printed curves at `times_of` and one voltage (case, member) of each member, and where
+    it is not printed, because a pulse curve says nothing at that voltage.
 
     There g is what the next longer pulse has, the most it can be; or, `least`, no less than the next shorter pulse has,
     and below the shortest that is known in proportion to time.
@@ -64,17 +62,15 @@ def printed(
         with np.errstate(divide="ignore", invalid="ignore"):
             # Lower of two curves of one width.
             made.append(np.clip(norm / np.minimum.reduce(each), 1e-9, 1.0))
-    times = list(widths)
     if lines.dc is not None:
-        times.append(DC_ABOVE * widths[-1])
         made.append(np.ones_like(norm))
     else:
         made[-1] = np.ones_like(norm)
     g = np.stack(made, axis=-1)
     unknown = np.isnan(g)
     if bool(np.any(unknown)):
-        g = _filled(np.asarray(times), g, least)
-    return np.asarray(times), np.maximum.accumulate(g, axis=-1), unknown
+        g = _filled(times_of(lines), g, least)
+    return np.maximum.accumulate(g, axis=-1), unknown
 
 
 def _filled(times: FloatArray, g: FloatArray, least: bool) -> FloatArray:
@@ -175,13 +171,22 @@ def _touches(path: Path, x: FloatArray, warm: FloatArray) -> BoolArray:
     return np.asarray(near & ~(warm[..., ::2] > 0), dtype=np.bool_)
 
 
-def spots_of(lines: Lines, v: FloatArray, members: IntArray) -> tuple[HotSpot, HotSpot | None]:
-    """Modes of the hot spot at one voltage of each member, and the slowest it can be where that is not known."""
-    times, g, unknown = printed(lines, v, members)
+def spots_of(
+    lines: Lines, g: FloatArray, unknown: BoolArray, v: FloatArray, members: IntArray
+) -> tuple[HotSpot, HotSpot | None]:
+    """Modes of the hot spot from what `printed` gave at voltages v of members, and the slowest it can be where that is
+    not known."""
+    times = times_of(lines)
     spot = fit(times, g)
     if not bool(np.any(unknown)):
         return spot, None
-    return spot, fit(times, printed(lines, v, members, least=True)[1])
+    return spot, fit(times, printed(lines, v, members, least=True)[0])
+
+
+def times_of(lines: Lines) -> FloatArray:
+    """Printed pulse widths and the time that stands for dc, rising, (n,). [s]"""
+    widths = lines.widths
+    return np.asarray(widths if lines.dc is None else (*widths, DC_ABOVE * widths[-1]))
 
 
 def mean_of(path: Path, x: FloatArray) -> FloatArray:

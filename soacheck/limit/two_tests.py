@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from typing import TypeVar
 
 import numpy as np
 
-from soacheck.limit.allowance import Lines, share, shares, warmth
+from soacheck.limit.allowance import Lines, Share, share, shares, warmth
 from soacheck.limit.duration import exact_where_it_matters
 from soacheck.limit.judged import Judged
 from soacheck.limit.junction_temperature import limit_of
@@ -17,8 +18,12 @@ from soacheck.limit.superposition import Superposition, mean_of, spots_of, super
 from soacheck.locus import Use
 from soacheck.trace import BoolArray, FloatArray, IntArray
 
+A = TypeVar("A", FloatArray, IntArray, BoolArray)
+
 TOGETHER = 8  # members worked out in full at a time
 TOUCH = 1e-12  # a share of 1 within rounding touches, and does not cross
+SHARE = ("r", "raw", "exempt", "beyond", "zero")
+KEPT = 4  # times so many members: kept for the one that governs
 MODES = 24  # arrays of the size of the locus that the hot spot's modes take, about
 
 
@@ -26,11 +31,13 @@ MODES = 24  # arrays of the size of the locus that the hot spot's modes take, ab
 class Tests:
     """Both tests of some members, (case, member).
 
-    certain: residence where every curve is known. shortest: greatest share of the shortest printed curve, for any time
-    at all; above: whether it is more than 1 where that curve is known. ended: conducts right of a pulse curve's last
-    point, (pulse curve, case, member). warmed: points that are not judged have their part in the superposition.
+    measure: share of the curve that everything is measured by. certain: residence where every curve is known. shortest:
+    greatest share of the shortest printed curve, for any time at all; above: whether it is more than 1 where that curve
+    is known. ended: conducts right of a pulse curve's last point, (pulse curve, case, member). warmed: points that are
+    not judged have their part in the superposition.
     """
 
+    measure: Share
     residence: Residence
     certain: Residence
     superposition: Superposition
@@ -40,6 +47,37 @@ class Tests:
     ended: BoolArray
     warmed: BoolArray
 
+    def of(self, which: IntArray) -> Tests:
+        """The tests of some of the members, (case, some)."""
+        both = (self.residence, self.certain)
+        residence, certain = (
+            replace(
+                one,
+                t=one.t
+                if one.t.shape[1] == 1
+                else _taken(np.broadcast_to(one.t, (len(which), *one.t.shape[1:])), which),
+                r=tuple(_taken(r, which) for r in one.r),
+                dc=None if one.dc is None else _taken(one.dc, which),
+            )
+            for one in both
+        )
+        response, measure = self.superposition, self.measure
+        return Tests(
+            measure=Share(**{name: _taken(getattr(measure, name), which) for name in SHARE}),
+            residence=residence,
+            certain=certain,
+            superposition=Superposition(
+                value=_taken(response.value, which),
+                proven=_taken(response.proven, which),
+                at=_taken(response.at, which),
+            ),
+            shortest=_taken(self.shortest, which),
+            shortest_at=_taken(self.shortest_at, which),
+            above=_taken(self.above, which),
+            ended=np.take_along_axis(self.ended, which[None], axis=2),
+            warmed=_taken(self.warmed, which),
+        )
+
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Worked:
@@ -48,7 +86,7 @@ class Worked:
     exceeds: a crossing that is proven. shorter: beyond what is known of pulses shorter than the shortest printed curve,
     and no crossing proven; above: because the locus goes above that curve; crossed: while peak current, voltage or
     junction temperature of the same member is exceeded. ended: conducts right of a pulse curve's last point, (pulse
-    curve, case, member).
+    curve, case, member). kept: members that were tested together, and their tests.
     """
 
     use: FloatArray
@@ -57,25 +95,39 @@ class Worked:
     above: BoolArray
     crossed: BoolArray
     ended: BoolArray
+    kept: tuple[tuple[IntArray, Tests], ...] = ()
+
+    def tests(self, member: IntArray) -> Tests | None:
+        """Tests of one member of each case (case,), if they were kept."""
+        for pick, tests in self.kept:
+            here = pick == member[:, None]
+            if bool(np.all(here.any(axis=1))):
+                return tests.of(here.argmax(axis=1)[:, None])
+        return None
+
+
+def _taken(array: A, which: IntArray) -> A:
+    """Members (case, some) of an array whose first axes are (case, member)."""
+    return np.take_along_axis(array, which.reshape(*which.shape, *[1] * (array.ndim - 2)), axis=1)
 
 
 def tests_of(judged: Judged, lines: Lines, seen: Screen, path: Path) -> Tests:
     """Both tests of the members of a path."""
-    dc = None if lines.dc is None else share(lines.dc, path)
+    if lines.longest is None:
+        raise ValueError("without curves there is nothing to test")
+    measure = share(lines.longest, path)
+    dc = None if lines.dc is None else measure
     members = np.broadcast_to(path.members, (judged.cases, path.members.shape[1]))
 
-    def of(array: FloatArray) -> FloatArray:
-        return np.take_along_axis(array, members, axis=1)
+    def of(array: A) -> A:
+        return _taken(array, members)
 
     pulses = shares(lines, path, dc, of(seen.duty_factor))
     x = dc.r if dc is not None else pulses.r[-1]
-    warm = None
-    if path.use is not Use.HELD:
-        longest = lines.dc if lines.dc is not None else lines.pulses[-1]
-        warm = warmth(longest, path, dc if dc is not None else share(longest, path))
+    warm = None if path.use is Use.HELD else warmth(lines.longest, path, measure)
     nearest, known = (pulses.r[0], pulses.known[0]) if pulses.r else (x, x)
     if lines.widths and path.use is not Use.HELD:
-        spot, least = spots_of(lines, of(seen.v_top), members)
+        spot, least = spots_of(lines, of(seen.g), of(seen.g_unknown), of(seen.v_top), members)
         response = superpose(path, x, spot, warm=warm, least=least)
     else:
         response = _without_pulses(path, x, x if warm is None else x + warm)
@@ -88,6 +140,7 @@ def tests_of(judged: Judged, lines: Lines, seen: Screen, path: Path) -> Tests:
         between=judged.rules.pulse_between,
     )
     return Tests(
+        measure=measure,
         residence=residence,
         certain=replace(residence, r=pulses.known),
         superposition=response,
@@ -120,8 +173,12 @@ def work(judged: Judged, lines: Lines, seen: Screen) -> Worked:
     above = np.zeros(seen.top.shape, dtype=np.bool_)
     ended = np.zeros((len(lines.pulses), *seen.top.shape), dtype=np.bool_)
 
+    kept: list[tuple[IntArray, Tests]] = []
+
     def evaluate(pick: IntArray) -> FloatArray:
         tests = tests_of(judged, lines, seen, path_of(judged, pick))
+        if len(kept) < KEPT:
+            kept.append((pick, tests))
         low = np.maximum(tests.superposition.value, tests.shortest)
         high = np.maximum(np.take_along_axis(seen.top, pick, axis=1), low)
         stays = tests.certain.fails(np.take_along_axis(one, pick, axis=1))
@@ -141,7 +198,9 @@ def work(judged: Judged, lines: Lines, seen: Screen) -> Worked:
     use = np.where(no_number, np.nan, use)
     if seen.turned_off is not None:
         use = np.maximum(use, seen.turned_off.value)
-    return Worked(use=use, exceeds=exceeds, shorter=shorter, above=above, crossed=crossed, ended=ended)
+    return Worked(
+        use=use, exceeds=exceeds, shorter=shorter, above=above, crossed=crossed, ended=ended, kept=tuple(kept)
+    )
 
 
 def _others_crossed(judged: Judged) -> BoolArray:
