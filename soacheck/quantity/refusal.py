@@ -12,9 +12,7 @@ from soacheck.quantity.writing import write
 _NAMES = {"ratio": "percentage", "voltage tempco": "temperature coefficient of a voltage"}
 # 4k7, 2R2, 3V3: the prefix as decimal point
 _MARKED = re.compile(r"([pnumkKMGRVvAWF]|ohm)([0-9]{1,3})(?: ?(.*))?")
-_CONDUCTIVITY = frozenset(
-    ("W/mK", "W/m K", "W/m*K", "W/m degC", "W/mdegC", "W/m*degC", "W/Km", "W/K m", "W/K*m")
-)
+_CONDUCTIVITY = frozenset(("W/mK", "W/m K", "W/m*K", "W/m degC", "W/mdegC", "W/m*degC", "W/Km", "W/K m", "W/K*m"))
 _RESISTOR = {
     "R": "ohm", "r": "ohm", "E": "ohm", "m": "mohm", "k": "kohm", "K": "kohm", "M": "Mohm", "meg": "Mohm",
     "Meg": "Mohm", "MEG": "Mohm",
@@ -59,15 +57,11 @@ def not_text(value: object, dimension: str) -> QuantityError:
 def _bare(number: str, dimension: str) -> QuantityError:
     if dimension == "ratio":
         return _instead("a ratio is written in per cent", f"{float(number) * 100:.12g} %")
-    return _instead(
-        f"a number without a unit; {a(dimension)} is wanted here", f"{number} {DIMENSIONS[dimension]}"
-    )
+    return _instead(f"a number without a unit; {a(dimension)} is wanted here", f"{number} {DIMENSIONS[dimension]}")
 
 
 def _example(problem: str, dimension: str) -> QuantityError:
-    return QuantityError(
-        problem, f'write a number and a unit in quotes, such as "10 {output_unit(dimension)}"'
-    )
+    return QuantityError(problem, f'write a number and a unit in quotes, such as "10 {output_unit(dimension)}"')
 
 
 def not_a_quantity(text: str, dimension: str) -> QuantityError:  # noqa: PLR0911 one return per mistake known
@@ -94,15 +88,11 @@ def not_a_quantity(text: str, dimension: str) -> QuantityError:  # noqa: PLR0911
         return _example("a comma stands in the text", dimension)
     if match := _GROUPED.fullmatch(text):
         digits = re.sub("[ _']", "", match[1])
-        return _instead(
-            "the digits of a number are written together", f"{digits} {plain(match[2].strip()) or unit}"
-        )
+        return _instead("the digits of a number are written together", f"{digits} {plain(match[2].strip()) or unit}")
     if not any(ch.isdigit() for ch in text):
         return _example(f"no number in {plain(text)!r}", dimension)
     if _RANGE.match(text):
-        return _example(
-            "two numbers; a range is a list of two quantities, or min and max in a table", dimension
-        )
+        return _example("two numbers; a range is a list of two quantities, or min and max in a table", dimension)
     if any(sign in text for sign in "*^/()") and text[0] in "0123456789.+-(":
         return _example("nothing is evaluated: no arithmetic, one number and its unit", dimension)
     if re.match(r"[+-]?[0-9.]+[eE](?![+-]?[0-9])", text):
@@ -131,10 +121,7 @@ def trap(number: str, spelling: str, written: str, dimension: str) -> None:
             raise _instead(f"{plain(written)} is not a thermal resistance", f"{number} K/W")
     if dimension == "voltage tempco" and (match := re.fullmatch(r"([mu]?V)/(?:C|c|k|deg|degK)", spelling)):
         raise _instead(f"{plain(written)} is not a voltage per kelvin", f"{number} {match[1]}/K")
-    if (
-        spelling in ("c", "degc", "degK", "\u0394K", "\u0394degC", "dK", "F", "k")
-        and "temperature" in dimension
-    ):
+    if spelling in ("c", "degc", "degK", "\u0394K", "\u0394degC", "dK", "F", "k") and "temperature" in dimension:
         unit = "degC" if dimension == "temperature" else "K"
         raise _instead(f"{plain(written)} is not how {a(dimension)} is written", f"{number} {unit}")
     if _folded(spelling):
@@ -175,9 +162,7 @@ def unknown_unit(number: str, spelling: str, written: str, dimension: str) -> Qu
     if near:
         return QuantityError(problem, f'was "{number} {near[0]}" meant?', f"{number} {near[0]}")
     unit = output_unit(dimension)
-    return QuantityError(
-        f"{problem}; {a(dimension)} is wanted here", f'write it in {unit}: "{number} {unit}"'
-    )
+    return QuantityError(f"{problem}; {a(dimension)} is wanted here", f'write it in {unit}: "{number} {unit}"')
 
 
 def temperature_kinds(number: str, unit: str, offset: bool, dimension: str) -> None:
@@ -185,9 +170,7 @@ def temperature_kinds(number: str, unit: str, offset: bool, dimension: str) -> N
     if dimension == "temperature" and not offset:
         size = float(number)
         text = f"{number} degC" if size < 200 else f"{size - ZERO_CELSIUS:.6g} degC"
-        raise QuantityError(
-            f"a temperature is wanted here, {unit} measures a difference", f"was {text} meant?", text
-        )
+        raise QuantityError(f"a temperature is wanted here, {unit} measures a difference", f"was {text} meant?", text)
     if dimension == "temperature difference" and offset:
         raise QuantityError(
             f"a difference of temperatures is wanted here, {unit} states a temperature",
@@ -206,18 +189,12 @@ def wrong_dimension(number: str, spelling: str, written: str, found: str, dimens
         if spelling in ("C", "deg"):
             unit = "degC" if dimension == "temperature" else "K"
             meaning = "coulomb" if spelling == "C" else "an angle"
-            return _instead(
-                f"{a(dimension)} is wanted here, {plain(written)} alone is {meaning}", f"{number} {unit}"
-            )
+            return _instead(f"{a(dimension)} is wanted here, {plain(written)} alone is {meaning}", f"{number} {unit}")
     if spelling in ("K", "m") and dimension == "resistance":
-        return _instead(
-            f"{plain(written)} alone is not a unit of resistance", f"{number} {_RESISTOR[spelling]}"
-        )
+        return _instead(f"{plain(written)} alone is not a unit of resistance", f"{number} {_RESISTOR[spelling]}")
     offers = [name for name in _folded(spelling) if UNITS[name].dimension == dimension]
     unit = offers[0] if offers else output_unit(dimension)
-    return _instead(
-        f"{a(dimension)} is wanted here, {plain(written)} measures {a(found)}", f"{number} {unit}"
-    )
+    return _instead(f"{a(dimension)} is wanted here, {plain(written)} measures {a(found)}", f"{number} {unit}")
 
 
 def implausible(

@@ -211,9 +211,7 @@ def test_a_reading_at_the_rating_itself_is_reached_to_a_thousandth() -> None:
         ([1e-3, 1e-2, 1e-1], [0.0, 0.3, 0.9], 1.0, "place 1"),
     ],
 )
-def test_a_curve_that_no_body_has_is_an_input_error(
-    t: list[float], z: list[float], rated: float, words: str
-) -> None:
+def test_a_curve_that_no_body_has_is_an_input_error(t: list[float], z: list[float], rated: float, words: str) -> None:
     with pytest.raises(InputError) as caught:
         ladder_of(thermal("pulse", t, z, rated), file="part.toml")
     problem = caught.value.problems[0]

@@ -44,9 +44,7 @@ def test_response_is_linear_in_power(wave: Wave, factor: float) -> None:
 
 
 @given(waves(), st.floats(0, 50))
-def test_more_power_never_cools_and_none_is_never_below_the_boundary(
-    wave: Wave, more: float
-) -> None:
+def test_more_power_never_cools_and_none_is_never_below_the_boundary(wave: Wave, more: float) -> None:
     t, p, p_mid = wave
     one, other = periodic(modes(), t, p, p_mid).rise, periodic(modes(), t, p + more, p_mid + more).rise
     rounding = 1e-12 * max(float(other.max()), 1e-300)
@@ -129,9 +127,7 @@ def test_heat_that_goes_in_comes_out_or_stays(wave: Wave) -> None:
     for k in range(n - 1):
         between[0, k, k + 1] = between[0, k + 1, k] = 1 / R[k]
     out[0, -1] = 1 / R[-1]
-    net = modes_of(
-        Graph(between=between, out=out, capacity=C[None]), heated=0, observed={str(k): k for k in range(n)}
-    )
+    net = modes_of(Graph(between=between, out=out, capacity=C[None]), heated=0, observed={str(k): k for k in range(n)})
     start = 11.0 * net.uniform[:, None, :]
     rise = one_shot(net, t, p, p_mid, start)
     assert rise.rise[0, 0, :, 0] == pytest.approx(np.full(n, 11.0), rel=1e-9)
