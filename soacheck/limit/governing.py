@@ -56,7 +56,8 @@ def governing(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked:
         return np.where(nothing, np.nan, np.take_along_axis(full, at[:, None, None], axis=2)[:, 0, 0])
 
     region = np.take_along_axis(path.region, at[:, None, None], axis=2)[:, 0, 0]
-    point = Point(t=there(path.t), v=there(path.v), i=there(path.i), region=np.where(nothing, -1, region))
+    t = np.full(judged.cases, np.nan) if path.use is Use.HELD else there(path.t)  # a held point has no time
+    point = Point(t=t, v=there(path.v), i=there(path.i), region=np.where(nothing, -1, region))
     idle = use == 0
     v_idle = _nearest(measure, path) if bool(np.any(idle)) else point.v
     trace = hand_calculation(judged, lines, decided, np.where(idle, v_idle, point.v), curve[:, 0], test == RESIDENCE)
