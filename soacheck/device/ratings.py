@@ -12,6 +12,8 @@ KINDS: tuple[Kind, ...] = ("npn", "pnp", "npn-darlington", "pnp-darlington", "n-
 BIPOLAR = frozenset({"npn", "pnp", "npn-darlington", "pnp-darlington"})
 MOSFET = frozenset({"n-mosfet", "p-mosfet"})
 IGBT = frozenset({"n-igbt"})
+INSULATED_GATE = MOSFET | IGBT
+BIPOLAR_OR_IGBT = BIPOLAR | IGBT
 DARLINGTON = frozenset({"npn-darlington", "pnp-darlington"})
 
 
