@@ -7,10 +7,9 @@ from __future__ import annotations
 
 from typing import Any
 
-from soacheck.device.ratings import BIPOLAR, IGBT, MOSFET
+from soacheck.device.ratings import BIPOLAR, IGBT, INSULATED_GATE, MOSFET
 from soacheck.table import Key
 
-INSULATED_GATE = MOSFET | IGBT
 BIPOLAR_OR_IGBT = BIPOLAR | IGBT
 
 _TABLE = "table of electrical characteristics"

@@ -7,7 +7,6 @@ from dataclasses import dataclass
 from soacheck.device.ratings import BIPOLAR, IGBT, MOSFET
 
 BASE_DRIVEN = BIPOLAR  # a base current drives the device
-GATE_DRIVEN = MOSFET | IGBT  # a gate voltage drives it
 NAMED_AS_BIPOLAR = BIPOLAR | IGBT  # supply, resistors and currents are named after collector and emitter
 
 

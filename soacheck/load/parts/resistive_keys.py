@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from soacheck.device.ratings import MOSFET
-from soacheck.load.parts.family import BASE_DRIVEN, GATE_DRIVEN, NAMED_AS_BIPOLAR
+from soacheck.device.ratings import INSULATED_GATE, MOSFET
+from soacheck.load.parts.family import BASE_DRIVEN, NAMED_AS_BIPOLAR
 from soacheck.load.parts.turn_off_drive import KEYS as TURN_OFF
 from soacheck.table import Key
 
@@ -164,7 +164,7 @@ KEYS: tuple[Key, ...] = (
     _volts("V_BB", BASE_DRIVEN, "bias", "Voltage of a separate base supply.", table="load.bias"),
     _volts(
         "V_GG",
-        GATE_DRIVEN,
+        INSULATED_GATE,
         "bias",
         "Voltage of a separate gate supply, against the common rail.",
         table="load.bias",
@@ -207,7 +207,7 @@ KEYS: tuple[Key, ...] = (
     ),
     *TURN_OFF,
     _amperes("I_B", BASE_DRIVEN, "", "Base current of each device while on.", where="the drive circuit"),
-    _volts("V_GS", GATE_DRIVEN, "", "Gate-source (gate-emitter) voltage while on.", where="the drive circuit"),
+    _volts("V_GS", INSULATED_GATE, "", "Gate-source (gate-emitter) voltage while on.", where="the drive circuit"),
 )
 
 # Which keys of [load] only some of the uses read.

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from soacheck.load.parts.family import BASE_DRIVEN, GATE_DRIVEN
+from soacheck.device.ratings import INSULATED_GATE
+from soacheck.load.parts.family import BASE_DRIVEN
 from soacheck.table import Cells, Key
 from soacheck.trace import Traced
 
@@ -27,7 +28,7 @@ def _reverse(name: str, belongs: frozenset[str], at: str) -> Key:
 
 KEYS: tuple[Key, ...] = (
     _reverse("V_BE_off", BASE_DRIVEN, "base"),
-    _reverse("V_GS_off", GATE_DRIVEN, "gate"),
+    _reverse("V_GS_off", INSULATED_GATE, "gate"),
     Key(
         table="load",
         name="I_B2",
@@ -44,7 +45,7 @@ KEYS: tuple[Key, ...] = (
         dimension="resistance",
         sign="non-negative",
         band=(0.0, 1e6),
-        belongs_to=GATE_DRIVEN,
+        belongs_to=INSULATED_GATE,
         grade="",
         meaning="Resistance that the gate is driven through: some turn-off areas hold only for so much of it.",
         where=_WHERE,
