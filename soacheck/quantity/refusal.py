@@ -56,7 +56,8 @@ def not_text(value: object, dimension: str) -> QuantityError:
 
 def _bare(number: str, dimension: str) -> QuantityError:
     if dimension == "ratio":
-        return _instead("a ratio is written in per cent", f"{float(number) * 100:.12g} %")
+        value = float(number)  # above 1 it was per cent already, but for its sign
+        return _instead("a ratio is written in per cent", f"{value if abs(value) > 1 else 100 * value:.12g} %")
     return _instead(f"a number without a unit; {a(dimension)} is wanted here", f"{number} {DIMENSIONS[dimension]}")
 
 

@@ -106,3 +106,10 @@ def test_control_characters_of_the_text_do_not_reach_the_message() -> None:
         with pytest.raises(QuantityError) as caught:
             read(text, "voltage")
         assert str(caught.value).isprintable()
+
+
+@pytest.mark.parametrize(("written", "right"), [("80", "80 %"), ("0.8", "80 %"), ("1", "100 %")])
+def test_a_bare_ratio_is_offered_in_per_cent_as_it_was_meant(written: str, right: str) -> None:
+    with pytest.raises(QuantityError) as caught:
+        read(written, "ratio")
+    assert right in caught.value.remedy
