@@ -80,7 +80,9 @@ class Duty:
     """One operating situation of a stage, for the worst of its parallel devices.
 
     locus: function of the junction temperature (case, member) [K], or None while unknown; gives the Locus.
-    heat_ratio: dissipation of all devices of the stage over this device's, (1 or case, 1 or member). [1]
+    heat_ratio: dissipation of all devices of the stage over this device's, (1 or case, 1). [1]
+    others: heat of all other devices of the stage, (1 or case, 1 or member) [W], for held points at which it is no
+    fixed multiple of this device's; counts in place of heat_ratio.
     facts: traced values of the duty for the sheet, the governing formula first.
     facts_at: function of a chosen member (case,): its own working, ready to be redone by hand, the result first.
     unknown: what the load kind lacked; findings that need the locus are then unproven.
@@ -94,6 +96,7 @@ class Duty:
     members: Members = field(default_factory=Members)
     locus: Callable[[FloatArray | None], Locus] | None
     heat_ratio: FloatArray
+    others: FloatArray | None = None
     facts: tuple[Traced, ...] = ()
     facts_at: Callable[[IntArray], tuple[Traced, ...]] | None = None
     unknown: tuple[Missing, ...] = ()

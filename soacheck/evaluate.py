@@ -24,6 +24,10 @@ from soacheck.table import Missing
 SINK_CAPACITY = Missing(
     key="heat_path.heatsink.C_th", where="mass of the sink times its specific heat; a long shot warms it"
 )
+BARE_CASE = Missing(
+    key="heat_path.heatsink",
+    where="a bare case has no heat capacity to state: a heat sink with its C_th, or a shorter pulse",
+)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -62,7 +66,7 @@ def _sit(stage: Stage, fitted: Fitted, place: Place) -> Sitting:
         of_duty = [f for limit in LIMITS for f in limit(asked)]
         if lower is not None:
             again = [f for limit in LIMITS for f in limit(replace(asked, operating=lower))]
-            of_duty = [_either(upper, low) for upper, low in zip(of_duty, again, strict=True)]
+            of_duty = [_either(upper, low, place) for upper, low in zip(of_duty, again, strict=True)]
         findings += _signed(_typical(of_duty, place), fitted.device, operating.locus, cases)
     return Sitting(fitted=fitted, place=place, judged=tuple(judged), findings=tuple(findings))
 
@@ -133,10 +137,11 @@ def _said_once(reasons: tuple[Reason, ...], more: Reason) -> tuple[Reason, ...]:
     return (*(own for own in reasons if own.text != more.text), more)
 
 
-def _either(upper: Finding, lower: Finding) -> Finding:
+def _either(upper: Finding, lower: Finding, place: Place) -> Finding:
     """A finding between two bounds: the upper one decides `within`, `exceeds` needs the lower one too."""
     if bool(np.all(lower.status == Status.EXCEEDS)):
-        return lower
+        text = "Exceeded even by the lower bound, with the sink held at its mean; the duties show the upper one."
+        return replace(lower, reasons=(*lower.reasons, Reason(text=text, applies=np.asarray([True]))))
     open_ = (upper.status == Status.EXCEEDS) & (lower.status != Status.EXCEEDS)
     if not bool(np.any(open_)):
         return upper
@@ -144,6 +149,6 @@ def _either(upper: Finding, lower: Finding) -> Finding:
         text="This lasts long enough to warm a sink or case whose heat capacity is not stated: held at its mean it "
         "would do, following at once it would not.",
         applies=open_,
-        missing=(SINK_CAPACITY,),
+        missing=(BARE_CASE if place.path.sink == "none" else SINK_CAPACITY,),
     )
     return replace(upper, status=np.where(open_, int(Status.UNPROVEN), upper.status), reasons=(*upper.reasons, reason))

@@ -55,7 +55,7 @@ def chain(operating: Operating, place: Place, member: IntArray | None = None) ->
     over = {Use.HELD: "held point", Use.ONCE: "shot", Use.REPEATED: "period"}[locus.use]
     facts = tuple(fact for fact in duty.facts if fact.symbol not in {"P_mean", "P_peak", "V_peak", "I_peak"})[:1]
     P_mean = found("P_mean", pick(operating.P_mean), "W", f"mean of v*i over the {over}", *facts)
-    P_peak = found("P_peak", operating.P_peak.max(axis=1), "W", f"greatest v*i of the {over}", *facts)
+    P_peak = found("P_peak", operating.P_peak.max(axis=1), "W", f"greatest v*i of the {over}")
     V_peak = found(
         "V_peak",
         np.broadcast_to(locus.v_peak, operating.P_mean.shape).max(axis=1),
@@ -78,26 +78,48 @@ def chain(operating: Operating, place: Place, member: IntArray | None = None) ->
     return _steady(figures, operating, place, P_mean, pick)
 
 
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class _Part:
+    """Part of a formula: its text and what it is made of."""
+
+    text: str
+    inputs: tuple[Traced, ...]
+
+
+def _shared_heat(
+    operating: Operating, place: Place, ratio: FloatArray, P_mean: Traced, pick: Pick
+) -> tuple[_Part, _Part]:
+    """Heat of the whole stage and of the sink, from this device's."""
+    if operating.duty.others is None:
+        n_stage = given("n_stage", ratio[:, 0], "1", "dissipation of all devices of the stage over this one's")
+        on_sink = place.sink_ratio(ratio)[:, 0]
+        n_sink = given("n_sink", on_sink, "1", "dissipation of all devices on the sink over this one's")
+        return (
+            _Part(text="P_mean * n_stage", inputs=(P_mean, n_stage)),
+            _Part(text="P_mean * n_sink", inputs=(P_mean, n_sink)),
+        )
+    others = found("P_others", pick(operating.duty.others), "W", "heat of the other devices of the stage at this point")
+    heat = pick(place.beside(operating.duty).sink_heat(operating.P_mean, ratio))
+    P_sink = found("P_sink", heat, "W", "heat of all devices on the sink at this point", P_mean, others)
+    return _Part(text="P_mean + P_others", inputs=(P_mean, others)), _Part(text="P_sink", inputs=(P_sink,))
+
+
 def _steady(figures: Chain, operating: Operating, place: Place, P_mean: Traced, pick: Pick) -> Chain:
     path, R_jc, T_ambient = place.path, place.R_th_jc, place.path.T_ambient
     ratio = np.broadcast_to(ratio_of(operating.duty), (operating.P_mean.shape[0], 1))
     if T_ambient is None or R_jc is None:
         return figures
-    n_stage = given("n_stage", ratio[:, 0], "1", "dissipation of all devices of the stage over this one's")
-    n_sink = given(
-        "n_sink", place.sink_ratio(ratio)[:, 0], "1", "dissipation of all devices on the sink over this one's"
-    )
+    stage_heat, on_sink = _shared_heat(operating, place, ratio, P_mean, pick)
     extra, box = path.extra_heat.named("P_extra"), path.extra_box_heat.named("P_box")
     air = T_ambient
     if not path.sink_outside and bool(np.any(path.R_th_enclosure.value > 0)):
         air = derived(
             "T_air",
-            "T_ambient + R_th_enclosure * (P_mean * n_stage + P_extra + P_box)",
+            f"T_ambient + R_th_enclosure * ({stage_heat.text} + P_extra + P_box)",
             "degC",
             T_ambient,
             path.R_th_enclosure,
-            P_mean,
-            n_stage,
+            *stage_heat.inputs,
             extra,
             box,
         )
@@ -119,12 +141,11 @@ def _steady(figures: Chain, operating: Operating, place: Place, P_mean: Traced, 
         else:
             sink = derived(
                 "T_heatsink",
-                f"{air.symbol} + R_th_sa * (P_mean * n_sink + P_extra)",
+                f"{air.symbol} + R_th_sa * ({on_sink.text} + P_extra)",
                 "degC",
                 air,
                 path.R_th_sink.named("R_th_sa"),
-                P_mean,
-                n_sink,
+                *on_sink.inputs,
                 extra,
             )
         case = derived("T_case", "T_heatsink + R_th_cs * P_mean", "degC", sink, path.interface.named("R_th_cs"), P_mean)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -21,7 +21,8 @@ class Place:
     """A device on its heat path.
 
     devices: devices of the whole stage; on_sink: devices on this sink, this one included.
-    R_th_jc: as used. Temperatures below are functions of this device's mean power (case, member) [W] and of
+    R_th_jc: as used. others: heat of the stage's other devices (case, member) [W] where a duty states it.
+    Temperatures below are functions of this device's mean power (case, member) [W] and of
     `ratio` (case, 1), dissipation of all devices of the stage over this one's.
     """
 
@@ -32,6 +33,11 @@ class Place:
     on_sink: int
     R_th_jc: Traced | None
     missing: tuple[Missing, ...]
+    others: FloatArray | None = None
+
+    def beside(self, duty: Duty) -> Place:
+        """The same place with the heat of the stage's other devices in a duty that states it."""
+        return self if duty.others is None else replace(self, others=np.asarray(duty.others, dtype=np.float64))
 
     @property
     def R_jc(self) -> FloatArray:
@@ -67,21 +73,32 @@ class Place:
             return ratio * self.on_sink / self.devices
         return 1.0 + np.minimum(ratio - 1.0, self.on_sink - 1.0)
 
+    def sink_heat(self, P: FloatArray, ratio: FloatArray) -> FloatArray:
+        """Heat of all devices on the sink, (case, member). [W]
+
+        Where the others are hotter than this one, all of their heat is taken to be on its sink.
+        """
+        if self.others is None:
+            return np.asarray(P * self.sink_ratio(ratio), dtype=np.float64)
+        if self.on_sink >= self.devices:
+            return np.asarray((P + self.others) * self.on_sink / self.devices, dtype=np.float64)
+        cooler = self.others <= P * (self.devices - 1)
+        return np.asarray(P + np.where(cooler, np.minimum(self.others, P * (self.on_sink - 1)), self.others))
+
     def air(self, P: FloatArray, ratio: FloatArray) -> FloatArray:
         """Air at the sink, or a case temperature that is held. [K]"""
         room = _column(self.path.T_case if self.path.sink == "case" else self.path.T_ambient)
         if self.path.sink_outside:
             return np.broadcast_to(room, np.broadcast_shapes(P.shape, room.shape))
-        box = P * ratio + self.extra + _column(self.path.extra_box_heat)
+        stage = P * ratio if self.others is None else P + self.others
+        box = stage + self.extra + _column(self.path.extra_box_heat)
         return np.asarray(room + _column(self.path.R_th_enclosure) * box, dtype=np.float64)
 
     def sink(self, P: FloatArray, ratio: FloatArray) -> FloatArray:
         """Sink temperature; without a sink there is none. [K]"""
         if self.path.sink in ("none", "case"):
             return np.full(np.broadcast_shapes(P.shape, ratio.shape), np.nan)
-        return np.asarray(
-            self.air(P, ratio) + self.R_sink * (P * self.sink_ratio(ratio) + self.extra), dtype=np.float64
-        )
+        return np.asarray(self.air(P, ratio) + self.R_sink * (self.sink_heat(P, ratio) + self.extra), dtype=np.float64)
 
     def case(self, P: FloatArray, ratio: FloatArray) -> FloatArray:
         """Mean case temperature. [K]"""

@@ -46,6 +46,7 @@ def settle(
     before: for a one-shot duty, the operating point it starts from. sink_follows: where a sink of unknown heat capacity
     cannot be taken as held (`needs_sink_bound`), let it follow the heat at once: the upper bound of all temperatures.
     """
+    place = place.beside(duty)
     if duty.locus is None:
         return unknown(duty, place, cases)
     locus = duty.locus(None)
@@ -270,19 +271,34 @@ def _nodes(
 
 
 def _peak(T: FloatArray, t: FloatArray) -> FloatArray:
-    """Greatest value over time, with a parabola through the three samples about it (never below the sample)."""
+    """Greatest value over time, with a parabola through the three samples about it (never below the sample).
+
+    Where power turns a corner the temperature does, too, and the sample at the corner is the peak: the slopes that
+    the two sides have there must agree in sign before anything is put between the samples.
+    """
     at = np.argmax(np.nan_to_num(T, nan=-np.inf), axis=2)[..., None]
-    inner = np.clip(at, 1, T.shape[2] - 2)
+    inner = np.clip(at, 2, T.shape[2] - 3)
     t = np.broadcast_to(t, T.shape)
-    (a, b, c), (ta, tb, tc) = ([np.take_along_axis(x, inner + k, axis=2)[..., 0] for k in (-1, 0, 1)] for x in (T, t))
-    top = T.max(axis=2)
+    (z, a, b, c, d), (tz, ta, tb, tc, td) = (
+        [np.take_along_axis(x, inner + k, axis=2)[..., 0] for k in (-2, -1, 0, 1, 2)] for x in (T, t)
+    )
+    top: FloatArray = T.max(axis=2)
     with np.errstate(divide="ignore", invalid="ignore"):
-        s1, s2 = (b - a) / (tb - ta), (c - b) / (tc - tb)
+        s0, s1, s2, s3 = (a - z) / (ta - tz), (b - a) / (tb - ta), (c - b) / (tc - tb), (d - c) / (td - tc)
+        left = s1 + (s1 - s0) / (tb - tz) * (tb - ta)
+        right = s2 - (s3 - s2) / (td - tb) * (tc - tb)
         curve = (s2 - s1) / (tc - ta)
         s = 0.5 * (ta + tb) - s1 / (2 * curve)
         value = a + s1 * (s - ta) + curve * (s - ta) * (s - tb)
-    good = (curve < 0) & (s > ta) & (s < tc) & (value > top) & (value - top < np.maximum(b - a, b - c))
-    return np.where(good, value, top)
+    good = (
+        (left * right > 0)
+        & (curve < 0)
+        & (s > ta)
+        & (s < tc)
+        & (value > top)
+        & (value - top < np.maximum(b - a, b - c))
+    )
+    return np.where(good & (at[..., 0] == inner[..., 0]), value, top)
 
 
 def _members(a: FloatArray, part: slice) -> FloatArray:

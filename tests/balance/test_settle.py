@@ -161,3 +161,16 @@ def test_a_start_below_the_air_leaves_the_sink_in_the_air(tmp_path: Path) -> Non
     op = operating(tmp_path, put(PROFILE, repeat='false\nT_start = "-40 degC"'))
     assert op.T_before[0, 0] == pytest.approx(233.15)
     assert op.T_heatsink[0, 0] == pytest.approx(T_AIR)
+
+
+def test_no_temperature_passes_what_the_peak_power_could_hold(tmp_path: Path) -> None:
+    # Analytic limit: from 40 degC on an ideal sink, T_j never passes T_air + P_peak * (R_jc + R_cs), kinks or not.
+    text = put(
+        PROFILE,
+        points='[["0 s", "20 V", "0 A"], ["2 s", "20 V", "2 A"], ["4 s", "20 V", "0 A"]]',
+        repeat='false\nT_start = "40 degC"',
+        heatsink='"ideal"',
+    )
+    op = operating(tmp_path, text)
+    assert op.T_j_peak[0, 0] <= T_AIR + 40 * (0.833 + R_CS)
+    assert op.T_j_peak[0, 0] == pytest.approx(op.T_j[0, 0].max(), abs=1e-3)
