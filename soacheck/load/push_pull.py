@@ -4,7 +4,8 @@ Level and frequency are searched as the file asks for. The load current is sinus
 load; the current of each half follows from the exact crossover of two exponential devices with emitter
 resistors (MOSFETs and IGBTs: of two square-law devices, which errs to more current). `level = "any"` is every
 level from silence to the largest unclipped swing; `"clipped"` is a sine driven 20 dB into the rails, flat for
-94 % of the time, with the load's answer to it. With f absent every output voltage may be held for ever.
+94 % of the time, with the load's answer to it. With f absent every output voltage of either sign may be held
+for ever, also the ones at which the other half carries the load.
 """
 
 from __future__ import annotations

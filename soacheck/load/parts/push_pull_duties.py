@@ -8,13 +8,14 @@ import numpy as np
 
 from soacheck.duty import Duty, Fitted, Level, Limiter, Members, picked
 from soacheck.load.parts import push_pull_facts as facts
-from soacheck.load.parts.levels import Driven, every_level, first_best, fractions, frequencies
+from soacheck.load.parts.levels import Driven, every_level, first_best, frequencies
 from soacheck.load.parts.push_pull_stage import PushPull, column, driven_by, law_of
-from soacheck.load.parts.swing import OVERDRIVE, clipped, held
+from soacheck.load.parts.swing import OVERDRIVE, HeldOutput, clipped, held
 from soacheck.locus import Locus, Use
-from soacheck.trace import FloatArray, IntArray, Traced, found, frozen, given
+from soacheck.trace import FloatArray, IntArray, Traced, distinct, found, frozen, given
 
 _ROUNDS, _POINTS = 5, 9
+_HELD = 257  # output voltages from rail to rail, 0 among them
 
 
 def every_duty(load: PushPull, fitted: Fitted) -> tuple[Duty, ...]:
@@ -195,73 +196,126 @@ def _stated(load: PushPull, fitted: Fitted, f: FloatArray) -> Traced:
 
 
 def _held_levels(load: PushPull, fitted: Fitted, driven: Driven) -> tuple[Duty, ...]:
-    """Each output voltage held for ever: one half of each amplifier carries the load."""
-    R = load.resistance()
+    """Each output voltage of either sign held for ever, positive towards the rail of the half looked at.
+
+    Above 0 this half carries the load; below 0 the other one does, and this half stands at more than its rail.
+    """
     sheet = facts.sheet_of(load, fitted, None)
-    V_max = column(sheet.named["V_max"])
     if load.level != "any":
-        return (_held_duty("at-level", "stated", fitted, driven, facts.stated_swing(sheet), sheet),)
+        V = facts.stated_swing(sheet)
+        return (_held_duty("at-level", "stated", fitted, driven, (V, facts.other_way(V)), sheet),)
     if load.class_b:
         V = facts.worst_held(sheet)
     else:
         V = found(
             "V",
-            _worst_held(driven, V_max, R)[:, 0],
+            _worst_held(driven, column(sheet.named["V_max"]), load.resistance())[:, 0],
             "V",
-            f"searched; {law_of(fitted.device.kind)}",
+            f"searched, both signs; {law_of(fitted.device.kind)}",
             *sheet.named.values(),
             load.I_Q.named("I_Q"),
         )
-    worst = _held_duty("worst-level", "worst", fitted, driven, V, sheet)
-    full = _held_duty("full-level", "full", fitted, driven, sheet.of("V", "V_max", "V"), sheet)
-    grid = V_max * fractions(True)
-    rows = max(grid.shape[0], V.value.shape[0])
-    both = [np.broadcast_to(x, (rows, x.shape[1])) for x in (grid, column(V))]
+    V_max = sheet.of("V", "V_max", "V")
+    worst = _held_duty("worst-level", "worst", fitted, driven, (V,), sheet)
+    full = _held_duty("full-level", "full", fitted, driven, (V_max, facts.other_way(V_max)), sheet)
+    return worst, full, _held_any(fitted, driven, V, sheet, worst.facts)
+
+
+def _held_any(fitted: Fitted, driven: Driven, worst: Traced, sheet: facts.Sheet, said: tuple[Traced, ...]) -> Duty:
+    """Every output voltage from rail to rail, rising, and the one of greatest dissipation as last member."""
+    load = sheet.load
+    V_max = column(sheet.named["V_max"])
+    tried = _held_voltages(fitted, driven, V_max, load.resistance())
+    rows = max(tried.shape[0], worst.value.size)
+    both = [np.broadcast_to(x, (rows, x.shape[1])) for x in (tried, column(worst))]
     levels = np.concatenate(both, axis=1)
-    line = held(driven.output, levels, R)
-    # One figure for the sink: that of the level which heats it most. Others heat it less, as they should.
-    P = line.locus.p_mean
-    top = np.argmax(P * line.halves, axis=1)[:, None]
-    halves = np.take_along_axis(np.broadcast_to(line.halves, P.shape), top, 1)
+    point = held(driven.output, levels, load.resistance())
+    P = point.locus.p_mean
 
     def at_member(member: IntArray) -> tuple[Traced, ...]:
         swing = facts.looked_at(sheet, picked(levels, member))
         return facts.held_facts(sheet, swing, picked(P, member), fitted)
 
-    every = Duty(
+    return Duty(
         name="any-level",
         half=fitted.half,
-        locus=_always(line.locus),
-        heat_ratio=_heat(load, fitted, halves),
+        locus=_always(point.locus),
+        heat_ratio=_held_ratio(load, fitted, point),
+        others=_others(load, fitted, point),
         listed=False,
         members=Members(name="level", unit="V", value=frozen(load.amplifiers * levels)),
-        facts=worst.facts,
+        facts=said,
         facts_at=at_member,
-        limiter=_limiter(load, fitted, line.locus),
+        limiter=_limiter(load, fitted, point.locus),
     )
-    return worst, full, every
 
 
-def _held_duty(name: str, level: Level, fitted: Fitted, driven: Driven, V: Traced, sheet: facts.Sheet) -> Duty:
+def _held_voltages(fitted: Fitted, driven: Driven, V_max: FloatArray, R: FloatArray) -> FloatArray:
+    """Output voltages looked at, (case, n), rising: evenly from rail to rail, and the corners of the safe area.
+
+    The corners are met as ideal class B would have them; an idle current moves them by its drop over a resistor.
+    """
+    corners = distinct(np.concatenate([curve.points[:, 0] for curve in fitted.device.soa] or [np.zeros(0)]))
+    above = driven.output.V_rail - corners  # what is left for the output, and the resistor where this half conducts
+    own = np.clip(np.where(above > 0, above * R / (R + driven.r), above), -V_max, V_max)
+    even = V_max * np.linspace(-1, 1, _HELD)
+    rows = max(own.shape[0], even.shape[0])
+    return np.sort(np.concatenate([np.broadcast_to(x, (rows, x.shape[1])) for x in (even, own)], axis=1), axis=1)
+
+
+def _held_duty(
+    name: str, level: Level, fitted: Fitted, driven: Driven, V: tuple[Traced, ...], sheet: facts.Sheet
+) -> Duty:
+    """One or several output voltages, each held for ever; the facts are those of the one of greatest dissipation."""
     load = sheet.load
-    point = held(driven.output, column(V), load.resistance())
+    levels = np.concatenate([column(one) for one in V], axis=1)
+    point = held(driven.output, levels, load.resistance())
+    P = point.locus.p_mean
+
+    def at_member(member: IntArray) -> tuple[Traced, ...]:
+        same = bool(np.all(member == member[0]))
+        swing = V[int(member[0])] if same else facts.looked_at(sheet, picked(levels, member))
+        return facts.held_facts(sheet, swing, picked(P, member), fitted)
+
+    one = len(V) == 1
     return Duty(
         name=name,
         half=fitted.half,
         locus=_always(point.locus),
-        heat_ratio=_heat(load, fitted, point.halves),
-        facts=facts.held_facts(sheet, V, point.locus.p_mean[:, 0], fitted),
+        heat_ratio=_held_ratio(load, fitted, point),
+        others=_others(load, fitted, point),
+        facts=at_member(first_best(P)[:, 0]),
+        facts_at=None if one else at_member,
+        members=Members() if one else Members(name="level", unit="V", value=frozen(load.amplifiers * levels)),
         level=level,
         load_angle=sheet.named["phi"],
         limiter=_limiter(load, fitted, point.locus) if level == "stated" else None,
     )
 
 
+def _others(load: PushPull, fitted: Fitted, point: HeldOutput) -> FloatArray:
+    """Dissipation of all other devices of the stage, (case, member). [W]
+
+    A half dissipates 1/share of its worst device; the amplifiers of a bridge are mirror images of each other.
+    """
+    P = point.locus.p_mean
+    return frozen(load.amplifiers * (P + point.P_other) / column(fitted.share) - P)
+
+
+def _held_ratio(load: PushPull, fitted: Fitted, point: HeldOutput) -> FloatArray:
+    """Dissipation of all devices over the worst one's, (case, 1), where that one dissipates most."""
+    P = point.locus.p_mean
+    top = first_best(P)
+    own, other = (np.take_along_axis(x, top, 1) for x in (P, point.P_other))
+    some = own > 0
+    return _heat(load, fitted, np.where(some, 1.0 + other / np.where(some, own, 1.0), 2.0))
+
+
 def _worst_held(driven: Driven, V_max: FloatArray, R: FloatArray) -> FloatArray:
     """Held output voltage of greatest dissipation, (case, 1), by a grid that narrows around its best."""
-    low, high = np.zeros((1, 1)), V_max
+    low, high = -V_max, V_max
     for n in range(_ROUNDS + 1):
-        tried = low + (high - low) * np.linspace(0, 1, 65 if n == 0 else _POINTS)
+        tried = low + (high - low) * np.linspace(0, 1, _HELD if n == 0 else _POINTS)
         P = held(driven.output, tried, R).locus.p_mean
         tried = np.broadcast_to(tried, P.shape)
         best = np.argmax(P, axis=1)[:, None]

@@ -123,8 +123,14 @@ def looked_at(sheet: Sheet, V: FloatArray) -> Traced:
     """Output peak (case,) of a level that was looked at, as a part of the largest swing."""
     with np.errstate(divide="ignore", invalid="ignore"):
         ratio = V / sheet.named["V_max"].value
-    level = found("level", ratio, "1", "level that governs, of those looked at from silence to the largest swing")
+    ends = "from silence to the largest swing" if sheet.load.f is not None else "between the largest swings either way"
+    level = found("level", ratio, "1", f"level that governs, of those looked at {ends}")
     return sheet.of("V", "level*V_max", "V", level)
+
+
+def other_way(V: Traced) -> Traced:
+    """The same output voltage towards the other half's rail."""
+    return derived("V", "-V_out", "V", V.named("V_out"), source="the other half carries the load")
 
 
 def sine_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> tuple[Traced, ...]:
@@ -158,9 +164,15 @@ def _crossing(sheet: Sheet) -> tuple[Traced, ...]:
 
 
 def held_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> tuple[Traced, ...]:
-    """Governing formula first: dissipation of one half that holds the output at V."""
-    resistor = " - r_E*V/Z_mod" if sheet.has_r else ""
-    facts = [sheet.of("P_B", f"share*(V_rail - V{resistor})*V/Z_mod", "W", V, source="output held at V, ideal class B")]
+    """Governing formula first: dissipation of one half while the output is held at V.
+
+    V is positive towards the rail of the half looked at, whose mirror image the other half is; below 0 the other half
+    carries the load, and this one stands at its own rail and the output together.
+    """
+    resistor = " - r_E*max(V, 0)/Z_mod" if sheet.has_r else ""
+    across = "output held at V, positive towards this half's own rail: voltage across the half, ideal class B"
+    V_half = sheet.of("V_half", f"V_rail - V{resistor}", "V", V, source=across)
+    facts = [sheet.of("P_B", "share*V_half*max(V, 0)/Z_mod", "W", V, V_half, source="ideal class B, output held at V")]
     if not sheet.load.class_b:
         facts.insert(
             0,
@@ -173,7 +185,7 @@ def held_facts(sheet: Sheet, V: Traced, P_mean: FloatArray, fitted: Fitted) -> t
                 *_crossing(sheet),
             ),
         )
-    facts.append(sheet.of("I_load", "V/Z_mod", "A", V))
+    facts += [V_half, sheet.of("I_load", "V/Z_mod", "A", V)]
     return (*facts, *_always(sheet, V))
 
 

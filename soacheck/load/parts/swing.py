@@ -162,19 +162,17 @@ def clipped_sine_harmonics(n: FloatArray) -> FloatArray:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class HeldOutput:
-    """A held output: the locus of the loaded device, and the heat of both halves over that device's half."""
+    """A held output: the locus of the device looked at, and the power of the like device of the other half."""
 
     locus: Locus
-    halves: FloatArray  # (case, member), at least 1
+    P_other: FloatArray  # (case, member) [W]
 
 
 def held(output: Output, V: FloatArray, R: FloatArray) -> HeldOutput:
-    """An output held at V > 0 into the resistance R: the upper half carries the load."""
+    """An output held at V into the resistance R, as the upper half sees it: below 0 the lower half carries the load."""
     V, R = np.broadcast_arrays(V, R)
     v, i = output.upper(V[..., None], (V / R)[..., None])
     v_other, i_other = output.upper(-V[..., None], -(V / R)[..., None])
     t = np.zeros((1, 1, 1))
     _locked(t, v, i)
-    with np.errstate(divide="ignore", invalid="ignore"):
-        halves = 1 + (v_other * i_other / (v * i))[..., 0]
-    return HeldOutput(locus=Locus(t=t, v=v, i=i, use=Use.HELD), halves=np.where(np.isfinite(halves), halves, 2.0))
+    return HeldOutput(locus=Locus(t=t, v=v, i=i, use=Use.HELD), P_other=(v_other * i_other)[..., 0])
