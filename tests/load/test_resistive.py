@@ -212,3 +212,20 @@ def test_a_held_line_without_a_stated_saturation_voltage_ends_at_nothing_and_say
     node = next(n for one in duty.facts for n in one.walk() if n.symbol == "V_CE_sat_min")
     assert "not stated" in node.source
     assert fact(duty, "I_end") == pytest.approx(24 / 8)
+
+
+@pytest.mark.parametrize("R_ac", [None, 2, 5, 12])
+@pytest.mark.parametrize("R_B", [0.9, 1.0, 1.5, 2.7, 5.0])
+def test_a_slow_swing_over_a_spread_of_gain_meets_the_greatest_dissipation(R_ac: float | None, R_B: float) -> None:
+    # Second way: 4001 quiescent points between the ends of the spread, the parabola of each in closed form.
+    own = "" if R_ac is None else f'R_ac = "{R_ac} ohm"\n'
+    made = device(h_FE=triple("h_FE", "1", 30, 45, 90), V_BE=triple("V_BE", "V", 0.65), **SATURATES)
+    duty = duties("resistive", f'{SWING}{own}[load.bias]\nR_B = "{R_B} kohm"', made)["full-swing"]
+    R = 8.0 if R_ac is None else R_ac
+    low, high = (min(gain * 23.35 / (R_B * 1e3), 23.5 / 8) for gain in (30, 90))
+    i_Q = np.linspace(low, high, 4001)
+    v_Q = 24 - 8 * i_Q
+    reach = np.maximum(np.minimum(i_Q, (v_Q - 0.5) / R), 0)
+    top = np.clip((v_Q / R - i_Q) / 2, -reach, reach)
+    P = (v_Q - R * top) * (i_Q + top)
+    assert greatest(locus(duty).p_mean) == pytest.approx(float(P.max()), rel=1e-3)

@@ -9,6 +9,8 @@ from soacheck.locus import Locus, Use
 from soacheck.trace import FloatArray, distinct
 
 HELD_POINTS = 257  # along the line, even in voltage: the top of the parabola is exact, an SOA slope of 5 within 1e-4
+_FOLLOWED = 9  # swings about different quiescent points that are followed from end to end
+_BETWEEN = 4  # quiescent points taken for each one: an end of the swing that turns between two is met within 0.1 %
 SEGMENTS = 256  # of one period of a sine: the mean of its square is met within 1e-4
 
 
@@ -71,6 +73,15 @@ def sine_swing(
     )
 
 
+def closer(along: FloatArray) -> FloatArray:
+    """The values (case, member), and three more between each two, straight; a single one stays alone."""
+    if along.shape[1] == 1:
+        return along
+    steps = np.arange(_BETWEEN) / _BETWEEN
+    inner = along[:, :-1, None] + np.diff(along, axis=1)[:, :, None] * steps
+    return np.concatenate([inner.reshape(len(along), -1), along[:, -1:]], axis=1)
+
+
 def slow_swing(
     i_Q: FloatArray,
     v_Q: FloatArray,
@@ -82,15 +93,23 @@ def slow_swing(
 ) -> Locus:
     """The same swing at no stated frequency: any of its points may be held for ever.
 
+    A few swings are followed closely, of every one both ends and the point of greatest dissipation are met.
     one_line: all quiescent points stand on the line of the swing; the members then run along it, v rising.
     """
-    several = i_Q.shape[1] > 1
-    chosen = distinct(np.linspace(0, i_Q.shape[1] - 1, 9).round()).astype(int) if several else np.array([0])
-    s = np.linspace(-1.0, 1.0, 65 if several else HELD_POINTS)
-    wave = np.broadcast_to(amplitude, i_Q.shape)[:, chosen, None] * s
-    v = np.broadcast_to(v_Q, i_Q.shape)[:, chosen, None] - ohms[:, None, None] * wave
-    i = np.maximum(i_Q[:, chosen, None] + wave, 0.0) * share[:, None, None]
-    v, i = (full.reshape(full.shape[0], -1) for full in np.broadcast_arrays(v, i))
+    count = i_Q.shape[1]
+    chosen = distinct(np.linspace(0, count - 1, _FOLLOWED).round()).astype(int)
+    most = np.broadcast_to(amplitude, np.broadcast_shapes(amplitude.shape, i_Q.shape))
+    even = most[:, chosen, None] * np.linspace(-1.0, 1.0, 65 if count > 1 else HELD_POINTS)
+    top = np.clip((v_Q / ohms[:, None] - i_Q) / 2, -most, most)  # where v is ohms times i, or as near as it comes
+    wave, number = even.reshape(len(even), -1), np.repeat(chosen, even.shape[2])
+    if count > 1:
+        rows = max(len(top), len(most))
+        ends = [np.broadcast_to(x, (rows, count)) for x in (-most, top, most)]
+        wave = np.concatenate([np.broadcast_to(wave, (rows, wave.shape[1])), *ends], axis=1)
+        number = np.concatenate([number, np.tile(np.arange(count), 3)])
+    v = np.broadcast_to(v_Q, (len(v_Q), count))[:, number] - ohms[:, None] * wave
+    i = np.maximum(i_Q[:, number] + wave, 0.0) * share[:, None]
+    v, i = np.broadcast_arrays(v, i)
     if one_line:
         order = np.argsort(v, axis=1)
         v, i = np.take_along_axis(v, order, axis=1), np.take_along_axis(i, order, axis=1)

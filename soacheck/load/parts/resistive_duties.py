@@ -175,7 +175,9 @@ def _full_swing(load: Resistive, bias: Bias, circuit: Circuit, fitted: Fitted) -
     share = fitted.share.value
     several = Q.i.shape[1] > 1
     if load.f is None:
-        locus = load_line.slow_swing(Q.i, Q.v, line.value, amplitude, share=share, one_line=load.R_ac is None)
+        i_Q, v_Q = load_line.closer(Q.i), load_line.closer(Q.v)
+        reach = load_line.clipping_amplitude(i_Q, v_Q, line.value[:, None], on.volts[:, None], on.ohms[:, None])
+        locus = load_line.slow_swing(i_Q, v_Q, line.value, reach, share=share, one_line=load.R_ac is None)
         members = Members(name=circuit.family.across, unit="V", value=frozen(locus.v[:, :, 0]))
         greatest = found("P_max", locus.p_mean.max(axis=1), "W", SLOW, *facts[1:])
 
