@@ -230,13 +230,16 @@ def share(line: Line, path: Path) -> Share:
 class Shares:
     """r of every distinct pulse width, rising, (case, member, time).
 
-    known: the same, 0 where the curve of a width says nothing, so that nothing rests on what stands in for it.
-    ended: conducts right of a pulse curve's last point, (pulse curve, case, member).
+    known: the same, 0 where the curve of a width says nothing, so that nothing rests on what stands in for it. What is
+    too dense for a curve is above what it may be where it is above the curve, and not where it is above the stand-in.
+    ended: conducts right of a pulse curve's last point; dense: repeats more densely than a curve is drawn for and the
+    next longer one stands in for it, (pulse curve, case, member).
     """
 
     r: tuple[FloatArray, ...]
     known: tuple[FloatArray, ...]
     ended: BoolArray
+    dense: BoolArray
 
 
 def shares(
@@ -249,9 +252,10 @@ def shares(
     Where the dc curve allows more, it counts.
     duty_factor: of the locus, (case, member). only: numbers of the widths that are wanted, all when absent.
     """
-    longer = longer_known = None if dc is None else dc.r
+    longer = None if dc is None else dc.r
     made: list[tuple[FloatArray, FloatArray]] = []
     ended = np.zeros((len(lines.pulses), *path.v.shape[:2]), dtype=np.bool_)
+    dense = np.zeros_like(ended)
     wanted = lines.widths if only is None else tuple(lines.widths[k] for k in only)
     for width in reversed(wanted):
         here: list[tuple[FloatArray, FloatArray]] = []
@@ -263,11 +267,11 @@ def shares(
             if bool(np.any(one.beyond)):
                 ended[number] = one.beyond
                 r = r if longer is None else np.where(np.isnan(one.raw), longer, r)
-            if np.isfinite(line.duty_factor) and longer is not None and longer_known is not None:
-                sparse = duty_factor[..., None] <= line.duty_factor
-                r, known = np.where(sparse, r, longer), np.where(sparse, known, longer_known)
+            if np.isfinite(line.duty_factor) and longer is not None:
+                dense[number] = ~(duty_factor <= line.duty_factor)
+                r = np.where(dense[number][..., None], longer, r)
             here.append((r, known))
-        longer, longer_known = (np.maximum.reduce(each) for each in zip(*here, strict=True))
-        made.append((longer, longer_known))
+        longer, known = (np.maximum.reduce(each) for each in zip(*here, strict=True))
+        made.append((longer, known))
     r_of, known_of = zip(*reversed(made), strict=True) if made else ((), ())
-    return Shares(r=r_of, known=known_of, ended=ended)
+    return Shares(r=r_of, known=known_of, ended=ended, dense=dense)

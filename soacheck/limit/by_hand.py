@@ -15,15 +15,15 @@ from soacheck.trace import BoolArray, FloatArray, IntArray, Traced, derived, fou
 
 
 def hand_calculation(
-    judged: Judged, lines: Lines, decided: Verdict, v: FloatArray, curve: IntArray, residence: BoolArray
+    judged: Judged, lines: Lines, decided: Verdict, v: FloatArray, curve: IntArray, wanted: BoolArray
 ) -> tuple[Traced, ...]:
-    """The curves that govern, at the voltage (case,) that touches: dc always, a pulse curve where residence decides.
+    """The curves that govern, at the voltage (case,) that touches: dc always, one width of pulse curve where wanted.
 
-    curve: number of the pulse curve (case,), rising width, dc last. residence: cases that residence decides.
+    curve: number of the pulse curve (case,), rising width, dc last. wanted: cases in which it is to be shown.
     """
     used: list[Line] = []
     for number, width in enumerate(lines.widths):
-        if bool(np.any(residence & (curve == number))):
+        if bool(np.any(wanted & (curve == number))):
             used += [line for line in lines.pulses if line.pulse == width]
     measure = lines.longest
     if measure is not None and measure not in used:
@@ -87,12 +87,33 @@ def _factor(line: Line, T: Traced, T_ref: Traced, T_j_max: Traced, name: str) ->
             symbol, f"max(0, min(1, (T_j_max - {T.symbol}) / (T_j_max - T_ref)))", "1", T_j_max, T, T_ref, source=source
         )
     value = breakdown_factor(derating, T.value, line.curve.T_ref, T_j_max.value)
+    points = derating.points
+    if derating.convention == "own-curve" and points is not None and len(points) > 1:
+        whole = _own_factor(symbol, line, T, T_ref, T_j_max, points)
+        if bool(np.all(np.isclose(whole.value, value, rtol=1e-9, equal_nan=True))):
+            return whole
     how = (
         "chart drawn for T_j at its maximum: not derated"
         if derating.convention == "held"
         else "read at T from the device's own derating curve"
     )
     return found(symbol, value, "1", how, T, source=derating.source)
+
+
+def _own_factor(symbol: str, line: Line, T: Traced, T_ref: Traced, T_j_max: Traced, points: FloatArray) -> Traced:
+    """The device's own derating curve, straight between the two points about a temperature."""
+    k = np.clip(np.searchsorted(points[:, 0], T.value), 1, len(points) - 1)
+    source = line.derating.source or "derating curve of second breakdown"
+    ends = [
+        given(f"{what}_{n}", points[k - 2 + n, column], unit, f"{source}: stated point")
+        for n in (1, 2)
+        for column, what, unit in ((0, "T", "degC"), (1, "F", "1"))
+    ]
+    formula = f"F_1 + (F_2 - F_1) * max(0, min(1, ({T.symbol} - T_1) / (T_2 - T_1)))"
+    if bool(np.all(T.value > points[-1, 0])):  # past its end the cautious convention counts where it is lower
+        like = f"(T_j_max - {T.symbol}) / (T_j_max - T_ref)"
+        return derived(symbol, f"max(0, min({formula}, {like}))", "1", T, *ends, T_j_max, T_ref, source=source)
+    return derived(symbol, formula, "1", T, *ends, source=source)
 
 
 def _printed(line: Line, at: Traced, name: str) -> Traced:

@@ -8,6 +8,7 @@ import numpy as np
 
 from soacheck.limit.allowance import Line, Lines, allowed
 from soacheck.limit.by_hand import hand_calculation, plain_name
+from soacheck.limit.duration import longest_run
 from soacheck.limit.found import Point, Verdict
 from soacheck.limit.judged import Judged
 from soacheck.limit.path import Path, path_of
@@ -43,6 +44,8 @@ def governing(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked:
     stay = np.where(tests.residence.fails(LOW * top), tests.residence.utilisation(LOW * top, top), 0.0)
     stay_at, curve = tests.residence.touching(np.where(stay > 0, stay, top))
     test, at = _largest(seen, tests, stay, stay_at, pick)
+    touching = np.take_along_axis(np.broadcast_to(path.v, tests.measure.r.shape), stay_at[..., None], axis=2)[..., 0]
+    stands = _stand_in(lines, tests, curve[:, 0], touching[:, 0])
 
     raw = tests.measure.raw
     unknown = path.active & np.isnan(raw)
@@ -60,7 +63,9 @@ def governing(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked:
     point = Point(t=t, v=there(path.v), i=there(path.i), region=np.where(nothing, -1, region))
     idle = use == 0
     v_idle = _nearest(measure, path) if bool(np.any(idle)) else point.v
-    trace = hand_calculation(judged, lines, decided, np.where(idle, v_idle, point.v), curve[:, 0], test == RESIDENCE)
+    shown = np.where(test == RESIDENCE, stands, np.where(test == SHORTEST, 0, _nearest_width(lines, path, tests)))
+    wanted = (test != TURN_OFF) & ~idle & (path.use is not Use.HELD)
+    trace = hand_calculation(judged, lines, decided, np.where(idle, v_idle, point.v), shown, wanted)
     applied = found(
         "I", np.where(idle, 0.0, point.i), "A", "current at the point that touches; 0 where no point is judged"
     )
@@ -68,8 +73,33 @@ def governing(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked:
     shape = _response(lines, seen, pick) if lines.widths and path.use is not Use.HELD else ()
     allowed = _allowed(path.use, lines, use, zero, applied, stay[:, 0], tests, trace, shape)
     held = path.use is Use.HELD
-    reasons = () if held else _reasons(lines, test, curve[:, 0], tests.warmed[:, 0], ~np.isnan(use) & (use > 0))
+    reasons = () if held else _reasons(lines, test, curve[:, 0], stands, tests.warmed[:, 0], ~np.isnan(use) & (use > 0))
     return Governing(point=point, applied=applied, allowed=allowed, trace=trace, reasons=reasons)
+
+
+def _stand_in(lines: Lines, tests: Tests, curve: IntArray, v: FloatArray) -> IntArray:
+    """Number of the curve whose allowance counts in place of each (case,) at a voltage: itself, or the next longer one
+    where it has ended or holds for smaller duty factors."""
+    numbers = {width: number for number, width in enumerate(lines.widths)}
+    out = np.zeros((len(lines.widths) + 1, len(curve)), dtype=np.bool_)
+    for line, dense in zip(lines.pulses, tests.dense, strict=True):
+        out[numbers[line.pulse]] |= dense[:, 0] | (v > line.curve.points[-1, 0])
+    if lines.dc is None and lines.widths:
+        out[-2] = False
+    answer = curve.copy()
+    for number in range(len(lines.widths)):
+        answer = np.where((answer == number) & out[number], number + 1, answer)
+    return answer
+
+
+def _nearest_width(lines: Lines, path: Path, tests: Tests) -> IntArray:
+    """Number of the pulse curve nearest to the time that a locus stays above half its greatest share, (case,)."""
+    if not lines.widths or path.use is Use.HELD:
+        return np.full(tests.measure.r.shape[0], len(lines.widths), dtype=np.int64)
+    r, widths = tests.measure.r, np.asarray(lines.widths)
+    length = longest_run(path.t, r, r.max(axis=2) / 2, path.use).duration[:, 0]
+    length = np.clip(length, widths[0], widths[-1])
+    return np.asarray(np.argmin(np.abs(np.log(length[:, None] / widths)), axis=1), dtype=np.int64)
 
 
 def _nearest(measure: Line, path: Path) -> FloatArray:
@@ -146,13 +176,27 @@ def _allowed(
     )
 
 
-def _reasons(lines: Lines, test: IntArray, curve: IntArray, warmed: BoolArray, clear: BoolArray) -> tuple[Reason, ...]:
+def _reasons(
+    lines: Lines, test: IntArray, curve: IntArray, stands: IntArray, warmed: BoolArray, clear: BoolArray
+) -> tuple[Reason, ...]:
     """Which test governs, said of the cases in which it does."""
     labels = {line.pulse: line.label for line in lines.pulses}
     names = [*(labels[width] for width in lines.widths), "dc"]
     said = [
-        (f"Residence governs: the time spent above the {name} curve touches.", (test == RESIDENCE) & (curve == number))
+        (
+            f"Residence governs: the time spent above the {name} curve touches.",
+            (test == RESIDENCE) & (curve == number) & (stands == number),
+        )
         for number, name in enumerate(names)
+    ]
+    said += [
+        (
+            f"Residence governs: the time spent above the {names[other]} curve touches; it counts in place of the "
+            f"{name} curve, which says nothing here.",
+            (test == RESIDENCE) & (curve == number) & (stands == other),
+        )
+        for number, name in enumerate(names)
+        for other in range(number + 1, len(names))
     ]
     said += [
         (

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TypeVar
 
@@ -10,7 +9,7 @@ import numpy as np
 
 from soacheck.device import laws
 from soacheck.limit.judged import Judged
-from soacheck.locus import Locus, Use
+from soacheck.locus import Use
 from soacheck.trace import BoolArray, FloatArray, IntArray
 
 A = TypeVar("A", FloatArray, IntArray, BoolArray)
@@ -20,6 +19,8 @@ A = TypeVar("A", FloatArray, IntArray, BoolArray)
 class Path:
     """A locus with the middle of every segment put in, (case, member, time); held points have one time.
 
+    A sample that no segment of positive length touches is no conduction: what stands before it is put in its place (at
+    the start, what follows); `voltage` and `peak-current` judge it. At a marked turn-off every instant counts.
     counted: forward conduction that the safe area judges (not on, not turned off by a reverse drive, not reversed).
     conducts: more than leakage. members: which members of the duty these are, (1 or case, member).
     """
@@ -59,11 +60,17 @@ def path_of(judged: Judged, members: IntArray) -> Path:
     t = some(locus.t)
     step = np.diff(t, axis=2) == 0
     v, i = (np.broadcast_to(some(a), shape) for a in (locus.v, locus.i))
+    marked = None if locus.turn_off is None else np.broadcast_to(some(_three(locus.turn_off)), shape)
+    stated = None if locus.region is None else np.broadcast_to(some(_three(locus.region)), shape)
+    lasting = _lasting(t, v + i, marked)
+    if lasting is not None:
+        v, i = (np.take_along_axis(a, lasting, axis=2) for a in (v, i))
+        marked = None if marked is None else np.take_along_axis(marked, lasting, axis=2)
+        stated = None if stated is None else np.take_along_axis(stated, lasting, axis=2)
     v, i = (_doubled(a, np.where(step, a[..., :-1], (a[..., :-1] + a[..., 1:]) / 2)) for a in (v, i))
-    region = _regions(judged, locus, v, i, some, step)
+    region = laws.regions(judged.device, v, i) if stated is None else _regions(stated, step)
     off = np.zeros(v.shape, dtype=np.bool_)
-    if locus.turn_off is not None:
-        marked = np.broadcast_to(some(_three(locus.turn_off)), shape)
+    if marked is not None:
         off = _doubled(marked, marked[..., :-1] & (marked[..., 1:] | step))
     return Path(
         t=_doubled(t, (t[..., :-1] + t[..., 1:]) / 2),
@@ -90,12 +97,27 @@ def _three(a: A) -> A:
     return a.reshape((1,) * (3 - a.ndim) + a.shape)
 
 
-def _regions(
-    judged: Judged, locus: Locus, v: FloatArray, i: FloatArray, some: Callable[[IntArray], IntArray], step: BoolArray
-) -> IntArray:
-    if locus.region is None:
-        return laws.regions(judged.device, v, i)
-    stated = np.broadcast_to(some(_three(locus.region)), (*v.shape[:2], locus.shape[2]))
+def _lasting(t: FloatArray, known: FloatArray, marked: BoolArray | None) -> IntArray | None:
+    """The sample that stands for each, (case, member, time): itself, or for one that lasts 0 s the last before it that
+    lasts, the first at the start. None where every one stands for itself.
+
+    known: not a number where the sample has to stay, so that it is seen; marked: has to stay as well.
+    """
+    step = np.diff(t, axis=2) == 0
+    if not step.any():
+        return None
+    end = np.ones((*step.shape[:2], 1), dtype=np.bool_)
+    brief = np.concatenate([end, step], axis=2) & np.concatenate([step, end], axis=2) & ~np.isnan(known)
+    if marked is not None:
+        brief &= ~marked
+    if not brief.any() or bool(np.any(brief.all(axis=2))):  # held, or a shot of no length at all
+        return None
+    each = np.where(brief, -1, np.arange(brief.shape[2]))
+    before = np.maximum.accumulate(each, axis=2)
+    return np.asarray(np.where(before < 0, np.argmin(brief, axis=2)[..., None], before), dtype=np.int64)
+
+
+def _regions(stated: IntArray, step: BoolArray) -> IntArray:
     # Between two regions the way is through the active one.
     same = step | (stated[..., :-1] == stated[..., 1:])
     return _doubled(stated, np.where(same, stated[..., :-1], laws.ACTIVE))

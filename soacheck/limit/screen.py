@@ -196,5 +196,6 @@ def _joined(pieces: list[TurnOff | None]) -> TurnOff | None:
     return TurnOff(
         value=np.concatenate([piece.value for piece in whole], axis=1),
         at=np.concatenate([piece.at for piece in whole], axis=1),
+        concerned=np.concatenate([piece.concerned for piece in whole], axis=1),
         notes=notes,
     )

@@ -17,6 +17,7 @@ from soacheck.trace import BoolArray
 
 DC_MISSING = Missing(key="soa[dc]", where="safe-area chart: the line marked dc")
 SHORTER_MISSING = Missing(key="soa[shorter]", where="safe-area chart: a line for a shorter pulse")
+IDLE = "off, on, or limited by a current rating; the current limits judge it."
 NO_DC = (
     "There is no dc curve: conduction in the active region that lasts or repeats beyond the longest printed pulse is "
     "judged neither by pulse curves nor by the dissipation line."
@@ -29,6 +30,7 @@ def notes_of(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked: 
     more = Missing(key=f"soa[{measure.label}]", where=f"safe-area chart: the line beyond {end:.4g} V")
     beyond = f"Current flows above {end:.4g} V, where the {measure.label} curve ends; nothing is known there."
     idle = (seen.top == 0) & ~seen.T_unknown & ~seen.beyond
+    marked = np.zeros_like(idle) if seen.turned_off is None else seen.turned_off.concerned
     notes = [
         *sharing(judged),
         *temperature_unknown(judged, np.where(seen.T_unknown, np.nan, 0.0)),
@@ -44,7 +46,8 @@ def notes_of(judged: Judged, lines: Lines, measure: Line, seen: Screen, worked: 
         *_shorter(judged, lines, worked),
         *_dense(judged, lines, seen, worked),
         *_typical(judged, lines, measure, seen),
-        Note(text="Every point is off, on, or limited by a current rating; the current limits judge it.", holds=idle),
+        Note(text=f"Every point is {IDLE}", holds=idle & ~marked),
+        Note(text=f"Outside the marked turn-off every point is {IDLE}", holds=idle & marked),
         *(Note(text=text, holds=ALWAYS) for text in lines.left_out),
     ]
     if judged.device.bipolar:
@@ -59,7 +62,7 @@ def _shorter(judged: Judged, lines: Lines, worked: Worked) -> tuple[Note, ...]:
     if not bool(np.any(worked.shorter)):
         return ()
     label = lines.pulses[0].label if lines.pulses else "dc"
-    ended = worked.ended.any(axis=0)
+    stood_in = (worked.ended | worked.refused).any(axis=0)
     above = f"Above the {label} curve, the shortest printed one, for less than its width"
     answer = (
         f"The response of the hot spot touches only because nothing is known below {label}, the shortest printed curve"
@@ -73,11 +76,12 @@ def _shorter(judged: Judged, lines: Lines, worked: Worked) -> tuple[Note, ...]:
         Note(text=f"{above}: {needed}", holds=open_ & worked.above, best=Status.UNPROVEN, missing=(SHORTER_MISSING,)),
         Note(
             text=f"{answer}: {needed}",
-            holds=open_ & ~worked.above & ~ended,
+            holds=open_ & ~worked.above & ~stood_in,
             best=Status.UNPROVEN,
             missing=(SHORTER_MISSING,),
         ),
         *_ended(lines, worked.ended & open_),
+        *_too_dense(lines, worked.refused & open_),
         Note(text=f"{above}, and {crossed}", holds=worked.shorter & worked.crossed, best=Status.EXCEEDS),
     )
 
@@ -92,6 +96,19 @@ def _ended(lines: Lines, holds: BoolArray) -> tuple[Note, ...]:
             "longer curves do not allow it."
         )
         more = Missing(key=f"soa[{line.label}]", where=f"safe-area chart: the line beyond {end:.4g} V")
+        notes.append(Note(text=text, holds=where, best=Status.UNPROVEN, missing=(more,)))
+    return tuple(notes)
+
+
+def _too_dense(lines: Lines, holds: BoolArray) -> tuple[Note, ...]:
+    """Repeats more densely than a curve is drawn for, and the longer ones in its stead do not show it to be inside."""
+    notes = []
+    for line, where in zip(lines.pulses, holds, strict=True):
+        text = (
+            f"The {line.label} curve holds for duty factors up to {100 * line.duty_factor:.3g} %, and that of the "
+            "locus is larger; the longer curves in its place do not allow it."
+        )
+        more = Missing(key=f"soa[{line.label}]", where="safe-area chart: the line for single pulses")
         notes.append(Note(text=text, holds=where, best=Status.UNPROVEN, missing=(more,)))
     return tuple(notes)
 

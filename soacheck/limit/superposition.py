@@ -44,12 +44,15 @@ class Superposition:
     at: IntArray
 
 
-def printed(lines: Lines, v: FloatArray, members: IntArray, *, least: bool = False) -> tuple[FloatArray, BoolArray]:
+def printed(
+    lines: Lines, v: FloatArray, members: IntArray, *, least: bool = False, duty_factor: FloatArray | None = None
+) -> tuple[FloatArray, BoolArray]:
     """g (case, member, n) of the printed curves at `times_of` and one voltage (case, member) of each member, and where
     it is not printed, because a pulse curve says nothing at that voltage.
 
     There g is what the next longer pulse has, the most it can be; or, `least`, no less than the next shorter pulse has,
-    and below the shortest that is known in proportion to time.
+    and below the shortest that is known in proportion to time. duty_factor (case, member): what repeats more densely
+    than a curve is drawn for has nothing proven by it; absent: every curve counts.
     """
     widths = lines.widths
     measure = lines.longest
@@ -59,6 +62,9 @@ def printed(lines: Lines, v: FloatArray, members: IntArray, *, least: bool = Fal
     made = []
     for width in widths:
         each = [allowed(line, v[..., None], members).current[..., 0] for line in lines.pulses if line.pulse == width]
+        if duty_factor is not None:
+            bounds = (line.duty_factor for line in lines.pulses if line.pulse == width)
+            each = [np.where(duty_factor > most, np.nan, one) for one, most in zip(each, bounds, strict=True)]
         with np.errstate(divide="ignore", invalid="ignore"):
             # Lower of two curves of one width.
             made.append(np.clip(norm / np.minimum.reduce(each), 1e-9, 1.0))
@@ -172,15 +178,16 @@ def _touches(path: Path, x: FloatArray, warm: FloatArray) -> BoolArray:
 
 
 def spots_of(
-    lines: Lines, g: FloatArray, unknown: BoolArray, v: FloatArray, members: IntArray
+    lines: Lines, g: FloatArray, unknown: BoolArray, v: FloatArray, members: IntArray, duty_factor: FloatArray
 ) -> tuple[HotSpot, HotSpot | None]:
     """Modes of the hot spot from what `printed` gave at voltages v of members, and the slowest it can be where that is
-    not known."""
+    not known, or rests on a curve for repeated pulses of a smaller duty factor."""
     times = times_of(lines)
     spot = fit(times, g)
-    if not bool(np.any(unknown)):
+    dense = any(bool(np.any(duty_factor > line.duty_factor)) for line in lines.pulses)
+    if not dense and not bool(np.any(unknown)):
         return spot, None
-    return spot, fit(times, printed(lines, v, members, least=True)[0])
+    return spot, fit(times, printed(lines, v, members, least=True, duty_factor=duty_factor)[0])
 
 
 def times_of(lines: Lines) -> FloatArray:

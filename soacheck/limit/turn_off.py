@@ -28,10 +28,14 @@ MISSING = Missing(key="soa[reverse]", where="reverse-bias (turn-off) safe-area c
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class TurnOff:
-    """Share of the reverse-bias area (case, member), the sample that uses most, and what is to be said of it."""
+    """Share of the reverse-bias area (case, member), the sample that uses most, and what is to be said of it.
+
+    concerned (case, member): conducts at a marked instant. Where no area is known, the sample is that of most power.
+    """
 
     value: FloatArray
     at: IntArray
+    concerned: BoolArray
     notes: tuple[Note, ...]
 
 
@@ -40,7 +44,6 @@ def turn_off(judged: Judged, path: Path) -> TurnOff:
     marked = path.turn_off & path.conducts & (path.v > 0)
     concerned = np.asarray(marked.any(axis=2), dtype=np.bool_)
     curves = [curve for curve in judged.device.soa if curve.bias == "reverse"]
-    zero = np.zeros(concerned.shape)
     if not curves:
         note = Note(
             text="The device is turned off by a reverse drive and no reverse-bias safe area is stated.",
@@ -48,7 +51,9 @@ def turn_off(judged: Judged, path: Path) -> TurnOff:
             best=Status.UNPROVEN,
             missing=(MISSING,),
         )
-        return TurnOff(value=np.where(concerned, np.nan, 0.0), at=zero.astype(np.int64), notes=(note,))
+        return TurnOff(
+            value=np.where(concerned, np.nan, 0.0), at=_hardest(path, marked), concerned=concerned, notes=(note,)
+        )
     each = [_one(judged, path, marked, curve) for curve in curves]
     # The first curve whose conditions hold counts, the widest if several do; where none does, the first one's reasons.
     open_ = np.stack([_unproven(one, concerned) for one in each])
@@ -60,8 +65,14 @@ def turn_off(judged: Judged, path: Path) -> TurnOff:
     return TurnOff(
         value=np.take_along_axis(value, chosen[None], axis=0)[0],
         at=np.take_along_axis(at, chosen[None], axis=0)[0],
+        concerned=concerned,
         notes=tuple(notes),
     )
+
+
+def _hardest(path: Path, where: BoolArray) -> IntArray:
+    """The sample of most power among some, (case, member)."""
+    return np.asarray(np.argmax(np.where(where, path.v * path.i, -1.0), axis=2), dtype=np.int64)
 
 
 def _unproven(one: TurnOff, concerned: BoolArray) -> BoolArray:
@@ -90,7 +101,8 @@ def _one(judged: Judged, path: Path, marked: BoolArray, curve: SafeAreaCurve) ->
         _temperature(judged, curve, concerned),
         *typical_named((f"soa[{curve.label}]",) if curve.grade == "typical" else (), holds=concerned),
     )
-    return TurnOff(value=r.max(axis=2), at=r.argmax(axis=2), notes=notes)
+    at = np.where(beyond.any(axis=2), _hardest(path, beyond), r.argmax(axis=2))
+    return TurnOff(value=r.max(axis=2), at=at, concerned=concerned, notes=notes)
 
 
 def _temperature(judged: Judged, curve: SafeAreaCurve, concerned: BoolArray) -> Note:

@@ -8,7 +8,7 @@ from typing import TypeVar
 import numpy as np
 
 from soacheck.limit.allowance import Lines, Share, share, shares, warmth
-from soacheck.limit.duration import exact_where_it_matters
+from soacheck.limit.duration import exact_where_it_matters, longest_run
 from soacheck.limit.judged import Judged
 from soacheck.limit.junction_temperature import limit_of
 from soacheck.limit.path import Path, path_of
@@ -33,8 +33,9 @@ class Tests:
 
     measure: share of the curve that everything is measured by. certain: residence where every curve is known. shortest:
     greatest share of the shortest printed curve, for any time at all; above: whether it is more than 1 where that curve
-    is known. ended: conducts right of a pulse curve's last point, (pulse curve, case, member). warmed: points that are
-    not judged have their part in the superposition.
+    is known. ended: conducts right of a pulse curve's last point; dense: repeats too densely for a curve; refused: for
+    a curve on which the verdict hangs, (pulse curve, case, member). warmed: points that are not judged have their part
+    in the superposition.
     """
 
     measure: Share
@@ -45,6 +46,8 @@ class Tests:
     shortest_at: IntArray
     above: BoolArray
     ended: BoolArray
+    dense: BoolArray
+    refused: BoolArray
     warmed: BoolArray
 
     def of(self, which: IntArray) -> Tests:
@@ -75,6 +78,8 @@ class Tests:
             shortest_at=_taken(self.shortest_at, which),
             above=_taken(self.above, which),
             ended=np.take_along_axis(self.ended, which[None], axis=2),
+            dense=np.take_along_axis(self.dense, which[None], axis=2),
+            refused=np.take_along_axis(self.refused, which[None], axis=2),
             warmed=_taken(self.warmed, which),
         )
 
@@ -85,8 +90,9 @@ class Worked:
 
     exceeds: a crossing that is proven. shorter: beyond what is known of pulses shorter than the shortest printed curve,
     and no crossing proven; above: because the locus goes above that curve; crossed: while peak current, voltage or
-    junction temperature of the same member is exceeded. ended: conducts right of a pulse curve's last point, (pulse
-    curve, case, member). kept: members that were tested together, and their tests.
+    junction temperature of the same member is exceeded. ended: conducts right of a pulse curve's last point; refused:
+    repeats too densely for a curve on which the verdict hangs, (pulse curve, case, member).
+    kept: members that were tested together, and their tests.
     """
 
     use: FloatArray
@@ -95,6 +101,7 @@ class Worked:
     above: BoolArray
     crossed: BoolArray
     ended: BoolArray
+    refused: BoolArray
     kept: tuple[tuple[IntArray, Tests], ...] = ()
 
     def tests(self, member: IntArray) -> Tests | None:
@@ -127,7 +134,7 @@ def tests_of(judged: Judged, lines: Lines, seen: Screen, path: Path) -> Tests:
     warm = None if path.use is Use.HELD else warmth(lines.longest, path, measure)
     nearest, known = (pulses.r[0], pulses.known[0]) if pulses.r else (x, x)
     if lines.widths and path.use is not Use.HELD:
-        spot, least = spots_of(lines, of(seen.g), of(seen.g_unknown), of(seen.v_top), members)
+        spot, least = spots_of(lines, of(seen.g), of(seen.g_unknown), of(seen.v_top), members, of(seen.duty_factor))
         response = superpose(path, x, spot, warm=warm, least=least)
     else:
         response = _without_pulses(path, x, x if warm is None else x + warm)
@@ -148,8 +155,21 @@ def tests_of(judged: Judged, lines: Lines, seen: Screen, path: Path) -> Tests:
         shortest_at=nearest.argmax(axis=2),
         above=known.max(axis=2) > 1,
         ended=pulses.ended,
+        dense=pulses.dense,
+        refused=_refused(lines, residence, pulses.dense),
         warmed=np.zeros(x.shape[:2], dtype=np.bool_) if warm is None else warm.max(axis=2) > 0,
     )
+
+
+def _refused(lines: Lines, residence: Residence, dense: BoolArray) -> BoolArray:
+    """The curves that a locus repeats too densely for and, by what stands in for them, stays above for too long; all
+    that it repeats too densely for where there is none such. (pulse curve, case, member)"""
+    if not bool(np.any(dense)):
+        return dense
+    one = np.ones(dense.shape[1:])
+    stays = [longest_run(residence.t, r, one, residence.use).duration > most for r, most in residence.curves()]
+    failing = dense & np.stack([stays[lines.widths.index(line.pulse)] for line in lines.pulses])
+    return np.where(failing.any(axis=0), failing, dense)
 
 
 def _without_pulses(path: Path, x: FloatArray, whole: FloatArray) -> Superposition:
@@ -172,6 +192,7 @@ def work(judged: Judged, lines: Lines, seen: Screen) -> Worked:
     exceeds, one = np.zeros(seen.top.shape, dtype=np.bool_), np.ones(seen.top.shape)
     above = np.zeros(seen.top.shape, dtype=np.bool_)
     ended = np.zeros((len(lines.pulses), *seen.top.shape), dtype=np.bool_)
+    refused = np.zeros_like(ended)
 
     kept: list[tuple[IntArray, Tests]] = []
 
@@ -184,7 +205,7 @@ def work(judged: Judged, lines: Lines, seen: Screen) -> Worked:
         stays = tests.certain.fails(np.take_along_axis(one, pick, axis=1))
         np.put_along_axis(exceeds, pick, stays | (tests.superposition.proven > 1), axis=1)
         np.put_along_axis(above, pick, tests.above, axis=1)
-        for whole, part in zip(ended, tests.ended, strict=True):
+        for whole, part in zip((*ended, *refused), (*tests.ended, *tests.refused), strict=True):
             np.put_along_axis(whole, pick, part, axis=1)
         return tests.residence.utilisation(low, high)
 
@@ -193,13 +214,20 @@ def work(judged: Judged, lines: Lines, seen: Screen) -> Worked:
     use = np.where(np.abs(use - 1) < TOUCH, 1.0, use)
     exceeds &= exact & (use > 1) & ~seen.T_unknown
     shorter = (use > 1) & ~exceeds & ~seen.lasting & ~seen.zero
-    crossed = shorter & (above | ~ended.any(axis=0)) & _others_crossed(judged)
+    crossed = shorter & (above | ~(ended | refused).any(axis=0)) & _others_crossed(judged)
     no_number = seen.T_unknown | seen.hole | seen.zero | seen.beyond | ((shorter | seen.lasting) & ~exceeds & ~crossed)
     use = np.where(no_number, np.nan, use)
     if seen.turned_off is not None:
         use = np.maximum(use, seen.turned_off.value)
     return Worked(
-        use=use, exceeds=exceeds, shorter=shorter, above=above, crossed=crossed, ended=ended, kept=tuple(kept)
+        use=use,
+        exceeds=exceeds,
+        shorter=shorter,
+        above=above,
+        crossed=crossed,
+        ended=ended,
+        refused=refused,
+        kept=tuple(kept),
     )
 
 

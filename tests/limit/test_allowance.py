@@ -7,7 +7,7 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
-from soacheck.device.ratings import SafeAreaDerating
+from soacheck.device.ratings import SafeAreaCurve, SafeAreaDerating
 from soacheck.limit import safe_area
 from soacheck.limit.allowance import lines_of, share, shares
 from soacheck.limit.path import path_of
@@ -56,6 +56,78 @@ def test_a_repeated_curve_is_stood_in_for_by_the_next_longer_one() -> None:
         ten, hundred = shares(lines, path, dc, np.array([[density]])).r
         assert ten.max() == pytest.approx(4 / allowed)
         assert hundred.max() == pytest.approx(4 / 6)
+
+
+def repeated_curves() -> tuple[SafeAreaCurve, ...]:
+    return tuple(replace(one, single=False, duty_factor=0.1) for one in PULSES)
+
+
+def test_beyond_the_duty_factor_of_a_repeated_curve_nothing_is_known() -> None:
+    # 50 V: dc 3 A, the 1 ms curve 20 A. Single-pulse curves allow 4 A at 20 %; at 10 % these do as well.
+    fifth, tenth = (repeated(*pulse(50, 4, 1e-3, total=total)) for total in (5e-3, 10e-3))
+    finding = only(safe_area.find(judged(fifth, device(soa=(*repeated_curves(), DC)))))
+    assert status(finding) is Status.UNPROVEN
+    assert np.isnan(finding.utilisation[0])
+    assert "The 1 ms curve holds for duty factors up to 10 %" in said(finding)
+    assert "10 ms curve" not in said(finding)
+    assert "touches" not in said(finding)
+    assert finding.missing(0) == ("soa[1 ms]",)
+    assert status(only(safe_area.find(judged(fifth)))) is Status.MARGINAL
+    assert status(only(safe_area.find(judged(tenth, device(soa=(*repeated_curves(), DC)))))) is Status.WITHIN
+
+
+def test_what_a_repeated_curve_refuses_it_refuses_at_a_larger_duty_factor_too() -> None:
+    # Above the 10 ms curve (10 A at 50 V) for 15 ms, and dc 3 A in the mean.
+    dense = repeated(*pulse(50, 12, 15e-3, total=30e-3))
+    long = repeated(*pulse(50, 21, 1.5e-3, total=14e-3))  # above the 1 ms curve, 20 A, for 1.5 ms; mean 2.25 A
+    for locus in (dense, long):
+        finding = only(safe_area.find(judged(locus, device(soa=(*repeated_curves(), DC)))))
+        assert status(finding) is Status.EXCEEDS
+
+
+def test_a_stand_in_is_named_as_what_touches() -> None:
+    part = device(soa=(*repeated_curves(), DC))
+    finding = only(safe_area.find(judged(repeated(*pulse(50, 2.8, 1e-3, total=5e-3)), part)))
+    # 2.8 A of 3 A at 50 V, though the 1 ms curve has 20 A there.
+    assert finding.utilisation[0] == pytest.approx(2.8 / 3)
+    assert "time spent above the dc curve touches; it counts in place of the 1 ms curve" in said(finding)
+    assert "I_dc_allowed" in {one.symbol for one in finding.trace}
+    assert "I_1ms_allowed" not in {one.symbol for one in finding.trace}
+
+
+def test_a_point_that_lasts_no_time_is_no_conduction() -> None:
+    # 100 V allows 10 A for 1 ms and 1.5 A for ever; 12 A there would need a shorter curve.
+    t, v, i = [0, 0.001, 0.001], [20, 20, 100], [1, 1, 12]
+    plain = only(safe_area.find(judged(once(t[:2], v[:2], i[:2]))))
+    for use in (once, repeated):
+        after = only(safe_area.find(judged(use(t, v, i))))
+        before = only(safe_area.find(judged(use([0, 0, 0.001], v[::-1], i[::-1]))))
+        for finding in (after, before):
+            assert status(finding) is Status.WITHIN
+            assert finding.where.v[0] == pytest.approx(20)
+    assert only(safe_area.find(judged(once(t, v, i)))).utilisation == pytest.approx(plain.utilisation)
+
+
+def test_a_point_that_lasts_no_time_sets_no_response_of_the_hot_spot() -> None:
+    # The greatest x is at 50 V; the last point, at 100 V, must not take its place.
+    t = [0, 5e-3, 5e-3]
+    plain, more = (only(safe_area.find(judged(once(t[:n], [50, 50, 100][:n], [4, 4, 8][:n])))) for n in (2, 3))
+    shown = [{one.symbol: one.at(0) for one in found.allowed.walk()} for found in (plain, more) if found.allowed]
+    assert shown[0]["V_g"] == shown[1]["V_g"] == pytest.approx(50)
+    assert more.utilisation == pytest.approx(plain.utilisation)
+
+
+def test_a_point_that_lasts_no_time_does_not_end_a_run() -> None:
+    # 12 A at 50 V for 6 ms, above the 10 ms curve throughout: a break of no length changes nothing.
+    whole = once(*pulse(50, 12, 6e-3))
+    broken = once([0, 0, 3e-3, 3e-3, 3e-3, 6e-3, 6e-3, 7e-3], np.full(8, 50.0), [0, 12, 12, 0, 12, 12, 0, 0])
+    a, b = (only(safe_area.find(judged(locus))) for locus in (whole, broken))
+    assert b.utilisation == pytest.approx(a.utilisation, rel=1e-6)
+
+
+def test_a_point_that_is_not_a_number_is_seen_however_short() -> None:
+    finding = only(safe_area.find(judged(once([0, 1e-3, 1e-3], [10, 10, np.nan], [1, 1, 1]))))
+    assert status(finding) is Status.UNPROVEN
 
 
 def test_a_repeated_curve_without_its_duty_factor_counts_for_one_shot_only() -> None:

@@ -52,6 +52,29 @@ def test_the_response_of_the_hot_spot_is_shown() -> None:
     assert [shown[f"g_{name}"].at(0) for name in ("1ms", "10ms", "100ms")] == pytest.approx([0.15, 0.3, 0.5])
 
 
+def test_where_the_response_governs_the_nearest_pulse_curve_is_shown() -> None:
+    # Five pulses of 5 ms, 1 ms apart: no run is too long, the sum is. 10 ms is the nearest width.
+    starts = 6e-3 * np.arange(5)
+    t = np.column_stack([starts, starts, starts + 5e-3, starts + 5e-3]).ravel()
+    finding = only(safe_area.find(judged(once(t, np.full(20, 50.0), np.tile([0, 4, 4, 0], 5)))))
+    assert any("Superposition governs" in reason.text for reason in finding.reasons)
+    assert finding.allowed is not None
+    shown = named((finding.allowed, *finding.trace))
+    assert shown["I_dc_allowed"].at(0) / shown["I_10ms_allowed"].at(0) == pytest.approx(shown["g_10ms"].at(0))
+    assert finding.trace[-1].symbol == "I_dc_allowed"
+
+
+@pytest.mark.parametrize(("T", "F"), [(20.0, 1.0), (50.0, 0.9), (100.0, 0.6), (140.0, 0.08)])
+def test_an_own_derating_curve_shows_the_points_it_was_read_from(T: float, F: float) -> None:
+    points = np.array([[25 + ZERO_C, 1.0], [75 + ZERO_C, 0.8], [125 + ZERO_C, 0.4]])
+    own = SafeAreaDerating(convention="own-curve", points=points, stated=True)
+    shown = named(only(safe_area.find(judged(held(60, 0.1), device(soa_derating=own), T_case=T))).trace)
+    # By hand: straight between the points; past the last the lower of 0.4 and (150 - T)/(150 - 25).
+    assert shown["F_dc"].at(0) == pytest.approx(F)
+    assert {"T_1", "F_1", "T_2", "F_2"} <= {one.symbol for one in shown["F_dc"].walk()}
+    assert "F_1" in str(shown["F_dc"].formula)
+
+
 def test_the_picture_has_printed_and_scaled_curves() -> None:
     shot = judged(once(*pulse(50, 4, 5e-3)), T_case=75, listed=False)
     picture = safe_area.picture(shot, 0)

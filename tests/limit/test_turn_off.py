@@ -54,6 +54,17 @@ def test_without_a_reverse_bias_area_turn_off_is_unproven() -> None:
     finding = ask(locus())
     assert status(finding) is Status.UNPROVEN
     assert finding.missing(0) == ("soa[reverse]",)
+    assert 1e-3 <= finding.where.t[0] <= 1e-3 + 1e-6
+    assert finding.where.v[0] > 100
+
+
+def test_points_of_the_marked_turn_off_are_not_said_to_be_off_or_on() -> None:
+    text = said(ask(locus(), area()))
+    assert "Every point is off" not in text
+    assert "Outside the marked turn-off every point is off, on" in text
+    silent = locus()
+    silent = Locus(t=silent.t, v=silent.v, i=silent.i, use=silent.use, turn_off=np.zeros(5, dtype=np.bool_))
+    assert "Outside the marked turn-off" not in said(ask(silent, area()))
 
 
 @pytest.mark.parametrize(
