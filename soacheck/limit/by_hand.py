@@ -49,11 +49,7 @@ def _one(judged: Judged, line: Line, decided: Verdict, v: FloatArray) -> tuple[T
     if line.voltage_scaled:
         at = derived(f"V_{name}", f"V / {factor.symbol}", "V", V, factor)
     printed = _printed(line, at, name)
-    scaled = (
-        printed
-        if line.voltage_scaled
-        else derived(f"I_{name}_scaled", f"{printed.symbol} * {factor.symbol}", "A", printed, factor)
-    )
+    scaled = printed if line.voltage_scaled else _scaled(line, at, printed, factor, name)
     parts = [scaled]
     k = judged.rules.safe_area.named("k_SOA")
     if line.Z is not None:
@@ -71,6 +67,34 @@ def _one(judged: Judged, line: Line, decided: Verdict, v: FloatArray) -> tuple[T
         return (*_order(T, factor, printed, parts), total)
     how = "k_SOA times the least of rating, flat, scaled curve (it goes on under the flat) and dissipation line"
     return (*_order(T, factor, printed, parts), found(f"I_{name}_allowed", value, "A", how, k, rating, *parts))
+
+
+def _scaled(line: Line, V: Traced, printed: Traced, factor: Traced, name: str) -> Traced:
+    """The printed curve times the factor; left of its corner, the line that goes on to the left under the flat."""
+    points, symbol = effective_points(line.curve), f"I_{name}_scaled"
+    if len(points) == 1 and line.Z is not None:
+        return printed  # a rectangle has no line of its own; dissipation alone scales it
+    if not bool(np.all((V.value > 0) & (V.value <= points[0, 0]))):
+        return derived(symbol, f"{printed.symbol} * {factor.symbol}", "A", printed, factor)
+    source = line.curve.source or f"safe-area chart, {line.label}"
+    corner = given("V_1", points[0, 0], "V", f"{source}: corner of the flat")
+    ends, steep = [corner], "1"
+    if len(points) > 1:
+        steep = f"max(1, ln({printed.symbol} / I_2) / ln(V_2 / V_1))"
+        ends += [
+            given("V_2", points[1, 0], "V", f"{source}: printed point"),
+            given("I_2", points[1, 1], "A", f"{source}: printed point"),
+        ]
+    on = derived(
+        f"I_{name}_line",
+        f"{printed.symbol} * (V_1 / {V.symbol}) ** {steep}",
+        "A",
+        printed,
+        V,
+        *ends,
+        source="the line below the flat goes on under it, no flatter than constant power",
+    )
+    return derived(symbol, f"min({printed.symbol}, {on.symbol} * {factor.symbol})", "A", printed, on, factor)
 
 
 def _order(T: Traced, factor: Traced, printed: Traced, parts: list[Traced]) -> tuple[Traced, ...]:

@@ -64,6 +64,15 @@ def test_where_the_response_governs_the_nearest_pulse_curve_is_shown() -> None:
     assert finding.trace[-1].symbol == "I_dc_allowed"
 
 
+def test_left_of_the_corner_the_line_under_the_flat_is_written_out() -> None:
+    # 30 V is left of the corner of the 1 ms curve, 40 V and 25 A: it goes on at 1000 W to 33.3 A; hot, times 0.6.
+    finding = only(safe_area.find(judged(once(*pulse(30, 12, 1e-3)), T_case=75)))
+    shown = named(finding.trace)
+    assert shown["I_1ms_line"].at(0) == pytest.approx(1000 / 30)
+    assert shown["I_1ms_allowed"].at(0) == pytest.approx(20)
+    assert shown["I_1ms_allowed"].formula
+
+
 @pytest.mark.parametrize(("T", "F"), [(20.0, 1.0), (50.0, 0.9), (100.0, 0.6), (140.0, 0.08)])
 def test_an_own_derating_curve_shows_the_points_it_was_read_from(T: float, F: float) -> None:
     points = np.array([[25 + ZERO_C, 1.0], [75 + ZERO_C, 0.8], [125 + ZERO_C, 0.4]])
