@@ -7,6 +7,7 @@ import numpy as np
 from soacheck.duty import Level
 from soacheck.guard.seen import Raised, Seen
 from soacheck.limit.judged import Judged
+from soacheck.locus import Use
 from soacheck.quantity import write
 
 # Multiples of the resistive case at the same modulus of impedance (derivation: class-B stage on a sine, ideal swing;
@@ -27,12 +28,15 @@ def class_b_worst(seen: Seen) -> tuple[Raised, ...]:
     worst, full = _at(seen, "worst"), _at(seen, "full")
     if worst is None or full is None or not _mean(worst) > 1.005 * _mean(full):
         return ()
+    locus = worst.operating.locus
+    held = locus is not None and locus.use is Use.HELD
+    where = "an output held at half of the rail" if held else "a sine of 2/pi of the rail"
     return (
         Raised(
             id="class-b-worst",
             text=(
                 f"The greatest mean dissipation, {_mean(worst):.3g} W a device, is not at full level "
-                f"({_mean(full):.3g} W): for a resistive load it stands at 2/pi of the rail."
+                f"({_mean(full):.3g} W): into a resistance and in class B it stands at {where}."
             ),
         ),
     )

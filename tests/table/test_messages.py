@@ -77,7 +77,7 @@ def test_all_errors_of_a_file_come_together_in_its_order() -> None:
         ('P_tot = { value = "1 W", mni = "1 W" }', "max", "max.P_tot.mni", "'1 W'", "not a key of a quantity",
          "was min meant?"),
         ('P_tot = { value = "1 W", source = 3 }', "max", "max.P_tot.source", "3", "a text", "source = "),
-        ('P_tot = { value = "1 W", tol = 5 }', "max", "max.P_tot.tol", "5", "per cent", 'tol = "500 %"'),
+        ('P_tot = { value = "1 W", tol = 5 }', "max", "max.P_tot.tol", "5", "per cent", 'tol = "5 %"'),
         ('T_j = { value = "150 degC", tol = "5 %" }', "max", "max.T_j.tol", "'5 %'", "difference", 'tol = "5 K"'),
         ('P_tot = { value = "1.1 mW", tol = "50 %" }', "max", "max.P_tot.tol", "'50 %'", "leaves what is plausible",
          "check"),
