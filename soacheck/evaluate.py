@@ -139,7 +139,8 @@ def _said_once(reasons: tuple[Reason, ...], more: Reason) -> tuple[Reason, ...]:
 
 def _either(upper: Finding, lower: Finding, place: Place) -> Finding:
     """A finding between two bounds: the upper one decides `within`, `exceeds` needs the lower one too."""
-    if np.array_equal(upper.utilisation, lower.utilisation, equal_nan=True):
+    same = np.array_equal(upper.utilisation, lower.utilisation, equal_nan=True)
+    if same and np.array_equal(upper.status, lower.status):
         return upper  # a limit that no temperature touches
     if bool(np.all(lower.status == Status.EXCEEDS)):
         text = "Exceeded even by the lower bound, with the sink held at its mean; the duties show the upper one."
