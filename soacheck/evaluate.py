@@ -24,6 +24,7 @@ from soacheck.table import Missing
 SINK_CAPACITY = Missing(
     key="heat_path.heatsink.C_th", where="mass of the sink times its specific heat; a long shot warms it"
 )
+BOX_AIR = Missing(key="surroundings.T_ambient", where="air at the sink in the hottest stretch, without R_th_enclosure")
 BARE_CASE = Missing(
     key="heat_path.heatsink",
     where="a bare case has no heat capacity to state: a heat sink with its C_th, or a shorter pulse",
@@ -137,21 +138,28 @@ def _said_once(reasons: tuple[Reason, ...], more: Reason) -> tuple[Reason, ...]:
     return (*(own for own in reasons if own.text != more.text), more)
 
 
+def _lacks(place: Place) -> Missing:
+    """What would decide between the two bounds."""
+    if place.path.sink == "resistance" and place.path.C_th_sink is None:
+        return SINK_CAPACITY
+    return BARE_CASE if place.path.sink == "none" else BOX_AIR
+
+
 def _either(upper: Finding, lower: Finding, place: Place) -> Finding:
     """A finding between two bounds: the upper one decides `within`, `exceeds` needs the lower one too."""
     same = np.array_equal(upper.utilisation, lower.utilisation, equal_nan=True)
     if same and np.array_equal(upper.status, lower.status):
         return upper  # a limit that no temperature touches
     if bool(np.all(lower.status == Status.EXCEEDS)):
-        text = "Exceeded even by the lower bound, with the sink held at its mean; the duties show the upper one."
+        text = "Exceeded even by the lower bound, with sink and air held at their means; the duties show the upper one."
         return replace(lower, reasons=(*lower.reasons, Reason(text=text, applies=np.asarray([True]))))
     open_ = (upper.status == Status.EXCEEDS) & (lower.status != Status.EXCEEDS)
     if not bool(np.any(open_)):
         return upper
     reason = Reason(
-        text="This lasts long enough to warm a sink or case whose heat capacity is not stated: held at its mean it "
-        "would do, following at once it would not.",
+        text="This lasts long enough to warm a sink, a case or the air of a box whose heat capacity is not stated: "
+        "held at its mean it would do, following at once it would not.",
         applies=open_,
-        missing=(BARE_CASE if place.path.sink == "none" else SINK_CAPACITY,),
+        missing=(_lacks(place),),
     )
     return replace(upper, status=np.where(open_, int(Status.UNPROVEN), upper.status), reasons=(*upper.reasons, reason))

@@ -99,8 +99,12 @@ def _shared_heat(
             _Part(text="P_mean * n_sink", inputs=(P_mean, n_sink)),
         )
     others = found("P_others", pick(operating.duty.others), "W", "heat of the other devices of the stage at this point")
-    heat = pick(place.beside(operating.duty).sink_heat(operating.P_mean, ratio))
-    P_sink = found("P_sink", heat, "W", "heat of all devices on the sink at this point", P_mean, others)
+    stages = max(place.on_sink / place.devices, 1.0)
+    k_sink = given("k_sink", stages, "1", f"{place.on_sink} devices on the sink, {place.devices} in the stage")
+    formula = "(P_mean + P_others) * k_sink"
+    if place.on_sink == 1:
+        return _Part(text="P_mean + P_others", inputs=(P_mean, others)), _Part(text="P_mean", inputs=(P_mean,))
+    P_sink = derived("P_sink", formula, "W", P_mean, others, k_sink)
     return _Part(text="P_mean + P_others", inputs=(P_mean, others)), _Part(text="P_sink", inputs=(P_sink,))
 
 

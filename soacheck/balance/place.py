@@ -35,6 +35,12 @@ class Place:
     missing: tuple[Missing, ...]
     others: FloatArray | None = None
 
+    @property
+    def boxed(self) -> bool:
+        """Whether the sink, or the case without one, stands in the air of a closed box that the stage warms."""
+        warms = bool(np.any(self.path.R_th_enclosure.value > 0))
+        return warms and not self.path.sink_outside and self.path.sink in ("none", "resistance", "ideal")
+
     def beside(self, duty: Duty) -> Place:
         """The same place with the heat of the stage's other devices in a duty that states it."""
         return self if duty.others is None else replace(self, others=np.asarray(duty.others, dtype=np.float64))
@@ -76,14 +82,14 @@ class Place:
     def sink_heat(self, P: FloatArray, ratio: FloatArray) -> FloatArray:
         """Heat of all devices on the sink, (case, member). [W]
 
-        Where the others are hotter than this one, all of their heat is taken to be on its sink.
+        Others that a duty states by their heat may be hotter than this one: on a sink that carries only some of them
+        all of that heat is taken to be there.
         """
         if self.others is None:
             return np.asarray(P * self.sink_ratio(ratio), dtype=np.float64)
         if self.on_sink >= self.devices:
             return np.asarray((P + self.others) * self.on_sink / self.devices, dtype=np.float64)
-        cooler = self.others <= P * (self.devices - 1)
-        return np.asarray(P + np.where(cooler, np.minimum(self.others, P * (self.on_sink - 1)), self.others))
+        return np.asarray(P + (self.others if self.on_sink > 1 else 0.0), dtype=np.float64)
 
     def air(self, P: FloatArray, ratio: FloatArray) -> FloatArray:
         """Air at the sink, or a case temperature that is held. [K]"""

@@ -82,7 +82,11 @@ def _open(place: Place, heat: _Heat) -> BoolArray:
     """Members whose sink, or case without one, is neither held nor of known heat capacity. (case, member)"""
     path = place.path
     longest = {"none": HELD_CASE, "resistance": HELD_SINK}.get(path.sink, np.inf)
-    if heat.locus.use is Use.HELD or (path.sink == "resistance" and path.C_th_sink is not None):
+    if path.sink == "resistance" and path.C_th_sink is not None:
+        longest = np.inf
+    if place.boxed:  # the air of a box has a heat capacity that nothing states
+        longest = min(longest, HELD_SINK)
+    if heat.locus.use is Use.HELD:
         longest = np.inf
     long = np.broadcast_to(heat.locus.duration, heat.P.shape) > longest
     even = (heat.locus.use is Use.REPEATED) & (heat.P_peak <= heat.P * (1 + 1e-9))  # a constant has no ripple
@@ -251,8 +255,8 @@ def _modes(
         seen = place.R_sink[:, 0] * others
         C = path.C_th_sink.value / others if path.C_th_sink is not None else None
         return network(place.ladder, R_jc, R_cs, seen, C), T_air + place.R_sink * place.extra
-    if path.sink == "none":
-        return network(place.ladder, R_jc, R_cs, None, None), T_air
+    if path.sink == "none" or (path.sink == "ideal" and sink_follows):
+        return network(place.ladder, R_jc, R_cs, None, None), np.fmax(T_air, T_sink)
     return network(place.ladder, R_jc, R_cs, None, None), T_sink
 
 

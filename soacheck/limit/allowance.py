@@ -89,12 +89,27 @@ class Share:
     zero: BoolArray
 
 
+def _of_shot(judged: Judged) -> FloatArray:
+    """Temperature that the curves of a one-shot duty are scaled to, (case, member). [K]
+
+    The junction just before it; for a shot that outlasts the longest printed pulse, which is dc to the chart, no less
+    than the case reaches during it.
+    """
+    operating, locus = judged.operating, judged.operating.locus
+    before = operating.T_before
+    printed = [curve.pulse for curve in judged.device.soa if curve.bias == "forward" and np.isfinite(curve.pulse)]
+    if locus is None:
+        return before
+    long = np.broadcast_to(locus.duration, before.shape) > max(printed, default=0.0) * (1 + 1e-9)
+    return np.where(long, np.maximum(before, operating.T_case_peak), before)
+
+
 def lines_of(judged: Judged) -> Lines:
     """The printed forward curves that count for a duty."""
     device, operating, ratings = judged.device, judged.operating, judged.device.max
     once = operating.locus is not None and operating.locus.use is Use.ONCE
-    T_case = operating.T_before if once else operating.T_case_peak
-    T_air = operating.T_before if once else operating.T_air
+    T_case = _of_shot(judged) if once else operating.T_case_peak
+    T_air = T_case if once else operating.T_air
     made, left_out = [], []
     transient = _transient(judged)
     for curve in device.soa:

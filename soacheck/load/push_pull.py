@@ -239,6 +239,8 @@ def _level(cells: Cells) -> tuple[Literal["any", "clipped", "voltage", "ratio"],
 def _check_frequency(cells: Cells, stage: PushPull, load: Impedance) -> None:
     """What depends on the load, the frequency and the swing together."""
     if stage.f is None:
+        if not cells.has("f") and cells.raw("level") == "clipped":
+            cells.refuse("level", "a clipped signal passes every output voltage and needs its frequency", 'f = "1 kHz"')
         if not cells.has("f") and not is_resistance(load):
             cells.refuse(
                 "load",

@@ -174,3 +174,31 @@ def test_no_temperature_passes_what_the_peak_power_could_hold(tmp_path: Path) ->
     op = operating(tmp_path, text)
     assert op.T_j_peak[0, 0] <= T_AIR + 40 * (0.833 + R_CS)
     assert op.T_j_peak[0, 0] == pytest.approx(op.T_j[0, 0].max(), abs=1e-3)
+
+
+@pytest.mark.parametrize("sink", ['heatsink = "ideal"', 'heatsink = { R_th = "1 K/W", C_th = "300 J/K" }'])
+@pytest.mark.parametrize("repeat", ["true", 'false\nT_start = "25 degC"'])
+def test_the_air_of_a_box_follows_four_hours_of_heat(sink: str, repeat: str, tmp_path: Path) -> None:
+    # 30 W for four hours in a box of 3 K/W: the air alone comes to 40 + 90 degC.
+    rows = (
+        '[["0 s", "10 V", "3 A"], ["14400 s", "10 V", "3 A"], ["14400 s", "10 V", "0 A"], ["28800 s", "10 V", "0 A"]]'
+    )
+    head = put(PROFILE, points=rows, repeat=repeat)
+    text = head[: head.index("[heat_path]")] + f'[heat_path]\n{sink}\ninterface = "0.4 K/W"\n[surroundings]\n'
+    text += 'T_ambient = "40 degC"\nR_th_enclosure = "3 K/W"\n'
+    findings = evaluate(stage_of(tmp_path, text, CAUER))[0].findings
+    hot = next(f for f in findings if f.limit == "junction-temperature")
+    assert hot.status[0] >= 2
+    assert hot.status[0] == 3 or "surroundings.T_ambient" in hot.missing(0)
+
+
+def test_a_shot_that_outlasts_the_chart_is_judged_at_the_case_it_reaches(tmp_path: Path) -> None:
+    # 120 V, 0.32 A for 2000 s is dc to the chart: what repeats for ever and what lasts once for long agree.
+    rows = '[["0 s", "120 V", "0.32 A"], ["2000 s", "120 V", "0.32 A"]]'
+    sink = '{ R_th = "0.95 K/W", C_th = "50 J/K" }'
+    shares = []
+    for repeat in ("true", 'false\nT_start = "25 degC"'):
+        text = put(PROFILE, points=rows, heatsink=sink, repeat=repeat)
+        findings = evaluate(stage_of(tmp_path, text, CAUER))[0].findings
+        shares.append(next(f for f in findings if f.limit == "safe-area").utilisation[0])
+    assert shares[1] == pytest.approx(shares[0], rel=0.01)

@@ -293,3 +293,9 @@ def test_a_table_that_cannot_be_read_is_an_input_error(tmp_path: Path) -> None:
 def test_a_capacitor_written_as_a_text_is_told_how_it_is_written(load: str, key: str, remedy: str) -> None:
     found = stages.refusals("push-pull", PLAIN.replace('"8 ohm"', load))
     assert [(one, offer) for one, _, offer in found] == [(key, remedy)]
+
+
+def test_a_clipped_signal_needs_its_frequency() -> None:
+    text = PLAIN.replace('"any"', '"clipped"')
+    without_f = "\n".join(line for line in text.split("\n") if not line.startswith("f = "))
+    assert [key for key, _ in refused(without_f)] == ["load.level"]
