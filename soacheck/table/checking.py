@@ -27,11 +27,6 @@ def check_table(sheet: Sheet, path: str, table: str, data: Mapping[str, Any]) ->
         key = own.get(name)
         if key is not None:
             _check_key(sheet, key, dotted, raw)
-        elif (idle := declared.idle_characteristic(table, name)) is not None:
-            _check_key(sheet, idle, dotted, raw)
-            kinds = ", ".join(sorted(idle.belongs_to or ()))
-            said = f"{ledger.source.base_name}: {dotted} = {plain(str(raw))} is a characteristic of {kinds}"
-            ledger.caution("other-kind", f"{said}; of this {declared.device_kind} it decides nothing")
         elif inner in declared.tables and not declared.is_foreign(table, name):
             if isinstance(raw, dict):
                 check_table(sheet, dotted, inner, raw)

@@ -41,17 +41,6 @@ class Declared:
         """Whether only other kinds of device have this key."""
         return (table, name) in self._foreign and name not in self.own(table)
 
-    def idle_characteristic(self, table: str, name: str) -> Key | None:
-        """The declaration of a characteristic that only other kinds have, and that has no counterpart here.
-
-        Data sheets print tables for several kinds, and such a line can mislead nobody: it is kept, with a caution.
-        A rating of another kind, or what stands under another name here, is an error.
-        """
-        foreign = self._foreign.get((table, name)) if self.is_foreign(table, name) else None
-        if foreign is None or table != _CHARACTERISTICS or self._twin(foreign):
-            return None
-        return foreign
-
     def _twin(self, foreign: Key) -> str:
         """What this kind of device calls the same thing, "" for nothing."""
         own = self.own(foreign.table).values()

@@ -202,22 +202,12 @@ def test_every_fault_of_a_misspelt_key_comes_in_the_same_report() -> None:
     assert 'grade = "guaranteed"' in said
 
 
-def test_a_characteristic_of_another_kind_is_kept_with_a_caution_and_a_rating_of_another_kind_refused() -> None:
+def test_a_characteristic_of_another_kind_is_refused_like_a_rating() -> None:
     more = [Key(table="typical", name="R_on", dimension="resistance", belongs_to=MOSFET)]
     text = _HEAD + '[typical]\nR_on = "45 mohm"\n'
     made = check_source(parse_source(text, shown_as="amp.toml"), (*KEYS, *more), device_kind="npn")
-    made.finish()
-    assert made.cautions == (
-        (
-            "other-kind",
-            "amp.toml: typical.R_on = 45 mohm is a characteristic of n-mosfet; of this npn it decides nothing",
-        ),
-    )
-    assert [node.symbol for node in made.stated()] == ["R_on"]
-    text = text.replace("mohm", "V")
-    wrong = check_source(parse_source(text, shown_as="amp.toml"), (*KEYS, *more), device_kind="npn")
-    with pytest.raises(InputError, match="V measures a voltage"):
-        wrong.finish()
+    with pytest.raises(InputError, match="R_on belongs to n-mosfet; the device here is npn"):
+        made.finish()
 
 
 def test_a_rating_is_never_offered_for_a_characteristic_nor_the_reverse() -> None:
