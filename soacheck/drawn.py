@@ -5,6 +5,7 @@ Pictures compute nothing; every number they show is made here or in a finding.
 
 from __future__ import annotations
 
+from dataclasses import replace
 from itertools import pairwise
 
 import numpy as np
@@ -21,23 +22,27 @@ _SAME_END = 1.02
 
 
 def series(judged: Judged) -> Series | None:
-    """The locus of a duty with its temperatures: its hottest member over time, or all its held points."""
+    """The locus of a duty with its temperatures: its hottest member over time, or all its held points.
+
+    Two held members are two situations (the output at either rail), not the ends of a line: the hotter one is shown.
+    """
     operating, locus = judged.operating, judged.operating.locus
     if locus is None:
         return None
     member = hottest(operating)[0]
     held = locus.use is Use.HELD
     shape = (1, *locus.shape[1:])
+    shown = slice(member, member + 1) if locus.shape[1] == 2 else slice(None)
 
     def line(a: FloatArray) -> FloatArray:
         full = np.broadcast_to(a, shape)
-        return np.array(full[0, :, 0] if held else full[0, member, :])
+        return np.array(full[0, shown, 0] if held else full[0, member, :])
 
     v, i = line(locus.v), line(locus.i)
     region = laws.regions(judged.device, v, i)
     if locus.region is not None:
         full = np.broadcast_to(locus.region, shape)
-        region = np.array(full[0, :, 0] if held else full[0, member, :])
+        region = np.array(full[0, shown, 0] if held else full[0, member, :])
     turn_off = np.zeros(v.shape, dtype=bool)
     if locus.turn_off is not None and not held:
         turn_off = np.array(np.broadcast_to(locus.turn_off, shape)[0, member])
@@ -51,8 +56,8 @@ def series(judged: Judged) -> Series | None:
         T_heatsink=line(operating.T_heatsink_t),
         use=locus.use.value,
         turn_off=turn_off,
-        P_allowed=dissipation.allowed_power(judged)[0] if held else np.empty(0),
-        T_air=operating.T_air[0] if held else operating.T_air[0, member : member + 1],
+        P_allowed=dissipation.allowed_power(judged)[0, shown] if held else np.empty(0),
+        T_air=operating.T_air[0, shown] if held else operating.T_air[0, member : member + 1],
     )
 
 
@@ -108,8 +113,21 @@ def safe_areas(judged: tuple[Judged, ...], findings: tuple[Finding, ...]) -> tup
         one = next((j for j in judged if (j.duty.name, j.duty.half) == (finding.duty, finding.half)), None)
         if finding.limit != "safe-area" or one is None or one.operating.locus is None or not one.device.soa:
             continue
-        return (safe_area.picture(one, 0, _member(one, float(finding.where.member[0]))),)
+        picture = safe_area.picture(one, 0, _member(one, float(finding.where.member[0])))
+        return (_with_held_line(picture, judged),)
     return ()
+
+
+def _with_held_line(picture: SafeAreaPicture, judged: tuple[Judged, ...]) -> SafeAreaPicture:
+    """The picture with the line along which every level may be held, where a duty without a row of its own has one."""
+    for one in judged:
+        locus = one.operating.locus
+        if one.duty.listed or locus is None or locus.use is not Use.HELD:
+            continue
+        v, i = (np.array(np.broadcast_to(a, (1, *locus.shape[1:]))[0, :, 0]) for a in (locus.v, locus.i))
+        order = np.argsort(v, kind="stable")
+        return replace(picture, duty=one.duty.name, v=v[order], i=i[order])
+    return picture
 
 
 def _member(judged: Judged, value: float) -> int | None:

@@ -10,7 +10,7 @@ import pytest
 import soacheck
 from soacheck.check import check
 from soacheck.stage import stage_from_text
-from tests.whole import HELD, put, result_of
+from tests.whole import HELD, PUSH_PULL, put, result_of, without
 
 EXAMPLES = Path(soacheck.__file__).parent / "examples"
 
@@ -43,3 +43,15 @@ def test_levels_at_many_frequencies_make_one_line_of_the_worst() -> None:
         if (f.limit, f.duty, f.half) == ("dissipation", "any-level", "upper") and f.allowed is not None
     )  # fmt: skip
     assert np.nanmin(sweep.P_allowed) == pytest.approx(tightest, rel=1e-6)
+
+
+def test_a_held_push_pull_line_is_drawn_as_it_runs_not_between_its_rails(tmp_path: Path) -> None:
+    # Class B into 8 ohm: the conducting half stands at i = (V_rail - v)/8 below the rail and at 0 above it.
+    stage = put(without(PUSH_PULL, "f"), I_Q='"0 A"', R_E='"0 ohm"')
+    result = result_of(tmp_path, stage)
+    picture = result.safe_area[0]
+    assert picture.i == pytest.approx(np.maximum(35 - picture.v, 0) / 8, abs=1e-9)
+    assert picture.v.max() == pytest.approx(70)
+    for duty in result.duties:
+        assert duty.series is not None
+        assert duty.series.v.size == 1, duty.name

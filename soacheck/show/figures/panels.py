@@ -84,7 +84,9 @@ def _size(column: FloatArray) -> float:
 def _swept(sweep: Sweep) -> Panel:
     """Several members at one x (a level at two frequencies) are drawn as the worst of them."""
     unit = f" ({sweep.unit})" if sweep.unit and sweep.unit != "1" else ""
-    what = "peak voltage at the load" if sweep.name == "level" else sweep.name
+    what = sweep.name
+    if sweep.name == "level":  # of a held line the level has a sign
+        what = "output voltage held" if np.any(sweep.x < 0) else "peak voltage at the load"
     order = np.argsort(sweep.x, kind="stable")
     x, starts = np.unique(sweep.x[order], return_index=True)
 
