@@ -163,6 +163,12 @@ def _with_pictures(result: Result, sittings: tuple[Sitting, ...]) -> Result:
         safe_area=tuple(p for s in sittings for p in drawn.safe_areas(s.judged, result.findings)),
         characteristics=tuple(drawn.characteristics(s.judged) for s in sittings),
         sweeps=tuple(sweep for s in sittings for sweep in drawn.sweeps(s.judged)),
+        lines=tuple(
+            DutyResult(name=j.duty.name, half=j.duty.half, series=drawn.series(j))
+            for s in sittings
+            for j in s.judged
+            if drawn.is_held_line(j)
+        ),
     )
 
 

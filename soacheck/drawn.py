@@ -118,11 +118,17 @@ def safe_areas(judged: tuple[Judged, ...], findings: tuple[Finding, ...]) -> tup
     return ()
 
 
+def is_held_line(judged: Judged) -> bool:
+    """Whether a duty without a row of its own is a line along which every level may be held."""
+    locus = judged.operating.locus
+    return not judged.duty.listed and locus is not None and locus.use is Use.HELD
+
+
 def _with_held_line(picture: SafeAreaPicture, judged: tuple[Judged, ...]) -> SafeAreaPicture:
     """The picture with the line along which every level may be held, where a duty without a row of its own has one."""
     for one in judged:
         locus = one.operating.locus
-        if one.duty.listed or locus is None or locus.use is not Use.HELD:
+        if locus is None or not is_held_line(one):
             continue
         v, i = (np.array(np.broadcast_to(a, (1, *locus.shape[1:]))[0, :, 0]) for a in (locus.v, locus.i))
         order = np.argsort(v, kind="stable")

@@ -280,3 +280,4 @@ class Result:
     safe_area: tuple[SafeAreaPicture, ...] = ()
     characteristics: tuple[Characteristics, ...] = field(default=())
     sweeps: tuple[Sweep, ...] = ()
+    lines: tuple[DutyResult, ...] = ()  # held lines of duties without a row: name, half and series

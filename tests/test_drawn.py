@@ -55,3 +55,7 @@ def test_a_held_push_pull_line_is_drawn_as_it_runs_not_between_its_rails(tmp_pat
     for duty in result.duties:
         assert duty.series is not None
         assert duty.series.v.size == 1, duty.name
+    (line,) = result.lines
+    assert line.name == "any-level"
+    assert line.series is not None
+    assert line.series.i == pytest.approx(np.maximum(35 - line.series.v, 0) / 8, abs=1e-9)

@@ -68,7 +68,7 @@ def draw(result: Result, half: str | None) -> Figure:
 
 def _order(result: Result, half: str | None) -> tuple[Drawn, ...]:
     """The duty with the worst safe-area finding first: it carries the names of ends and regions."""
-    duties = read.drawn(result, half)
+    duties = (*read.drawn(result, half), *read.held_lines(result, half))
     for finding in read.findings(result, "safe-area", half):
         if any(duty.name == finding.duty and not duty.still for duty in duties):
             return tuple(sorted(duties, key=lambda duty: duty.name != finding.duty))

@@ -58,6 +58,15 @@ def drawn(result: Result, half: str | None) -> tuple[Drawn, ...]:
     )
 
 
+def held_lines(result: Result, half: str | None) -> tuple[Drawn, ...]:
+    """Lines of one half along which every level may be held, of duties that have no row."""
+    return tuple(
+        Drawn(duty=duty, series=duty.series)
+        for duty in result.lines
+        if duty.half == half and duty.series is not None and np.any(np.isfinite(duty.series.v * duty.series.i))
+    )
+
+
 def findings(result: Result, limit: str, half: str | None) -> tuple[Finding, ...]:
     """Findings of one limit for one half, worst first."""
     return tuple(found for found in result.findings if found.limit == limit and found.half == half)
